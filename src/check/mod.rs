@@ -1,0 +1,1 @@
+//! check: not built yet.

@@ -1,0 +1,1 @@
+//! cli: not built yet.

@@ -1,0 +1,1 @@
+//! fair: not built yet.

@@ -1,0 +1,1 @@
+//! feed: not built yet.

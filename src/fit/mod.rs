@@ -1,0 +1,1 @@
+//! fit: not built yet.

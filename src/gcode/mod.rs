@@ -1,0 +1,1 @@
+//! gcode: not built yet.

@@ -1,0 +1,1 @@
+//! job: not built yet.

@@ -1,0 +1,1 @@
+//! machine: not built yet.

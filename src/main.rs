@@ -1,0 +1,3 @@
+//! The `ribband` command.
+
+fn main() {}

@@ -1,0 +1,1 @@
+//! offset: not built yet.

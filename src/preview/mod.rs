@@ -1,0 +1,1 @@
+//! preview: not built yet.

@@ -1,0 +1,1 @@
+//! read: not built yet.

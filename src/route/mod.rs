@@ -1,0 +1,1 @@
+//! route: not built yet.

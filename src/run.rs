@@ -1,0 +1,1 @@
+//! run: not built yet.
