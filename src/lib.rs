@@ -5,11 +5,14 @@
 //!
 //! Millimetres and radians inside; y up; counter-clockwise positive.
 
+pub mod cautions;
 pub mod check;
 pub mod clean;
+pub mod cli;
 pub mod error;
 pub mod fair;
 pub mod feed;
+pub mod files;
 pub mod fit;
 pub mod gcode;
 pub mod geom;
@@ -24,5 +27,3 @@ pub mod route;
 pub mod run;
 pub mod sketch;
 pub mod toolpath;
-
-pub mod cli;

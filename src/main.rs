@@ -1,3 +1,7 @@
 //! The `ribband` command.
 
-fn main() {}
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    ExitCode::from(ribband::cli::main(std::env::args_os()))
+}

@@ -1,0 +1,147 @@
+//! Settings as they are typed or stand in a job file: one list for both, nothing judged yet.
+
+use std::path::PathBuf;
+
+use clap::{Args, ValueEnum};
+use schemars::JsonSchema;
+use serde::{Deserialize, Serialize};
+
+use crate::num::{Feed, Length};
+
+/// Every setting, each of which may be absent.
+#[derive(Args, Clone, Debug, Default, Deserialize, Serialize, PartialEq)]
+#[serde(default, deny_unknown_fields, rename_all = "kebab-case")]
+pub struct Settings {
+    /// Machine profile: a built-in name, or a TOML file [default: shop-router]
+    #[arg(long, value_name = "NAME or FILE", help_heading = "Machine")]
+    pub machine: Option<String>,
+
+    /// What a bare number in the drawing means, where the drawing does not say
+    #[arg(long, value_enum, value_name = "UNIT", help_heading = "Drawing")]
+    pub drawing_unit: Option<DrawingUnit>,
+    /// Scale the drawing by this factor
+    #[arg(long, value_name = "F", help_heading = "Drawing")]
+    pub scale: Option<f64>,
+    /// Scale the drawing to this finished width
+    #[arg(long, value_name = "LEN", help_heading = "Drawing", conflicts_with = "scale")]
+    pub fit_width: Option<Length>,
+    /// Cut only these layers
+    #[arg(long, value_name = "A,B", value_delimiter = ',', help_heading = "Drawing")]
+    pub layers: Option<Vec<String>>,
+    /// Join ends that are at most this far apart [default: the tolerance]
+    #[arg(long, value_name = "LEN", help_heading = "Drawing")]
+    pub join: Option<Length>,
+
+    /// Largest distance allowed between cut path and drawing [default: 0.1mm, or what the trace supports]
+    #[arg(long, value_name = "LEN", help_heading = "Accuracy")]
+    pub tolerance: Option<Length>,
+
+    /// How deep to cut, below the top of the stock
+    #[arg(long, value_name = "LEN", help_heading = "Cut")]
+    pub depth: Option<Length>,
+    /// Deepest single pass [default: half the cutter's diameter]
+    #[arg(long, value_name = "LEN", help_heading = "Cut")]
+    pub pass: Option<Length>,
+    /// Feed along the contour [default: the profile's]
+    #[arg(long, value_name = "FEED", help_heading = "Cut")]
+    pub feed: Option<Feed>,
+    /// Feed straight down [default: a third of the feed]
+    #[arg(long, value_name = "FEED", help_heading = "Cut")]
+    pub plunge: Option<Feed>,
+    /// Spindle speed in rev/min [default: the profile's]
+    #[arg(long, value_name = "RPM", help_heading = "Cut")]
+    pub spindle: Option<f64>,
+    /// The cutter: its diameter, or a name in the machine profile
+    #[arg(long, value_name = "DIAMETER or NAME", help_heading = "Cut")]
+    pub cutter: Option<String>,
+
+    /// Where Z is zero [default: stock-top]
+    #[arg(long, value_enum, help_heading = "Setting up")]
+    pub zero: Option<Zero>,
+    /// Thickness of the stock
+    #[arg(long, value_name = "LEN", help_heading = "Setting up")]
+    pub thickness: Option<Length>,
+    /// Height above the stock at which the cutter travels [default: the profile's]
+    #[arg(long, value_name = "LEN", help_heading = "Setting up")]
+    pub clearance: Option<Length>,
+    /// Where X and Y are zero [default: lower-left]
+    #[arg(long, value_enum, help_heading = "Setting up")]
+    pub origin: Option<Origin>,
+}
+
+/// What a bare number in a drawing means.
+#[derive(Clone, Copy, Debug, Deserialize, Serialize, PartialEq, Eq, ValueEnum)]
+#[serde(rename_all = "kebab-case")]
+pub enum DrawingUnit {
+    /// Millimetres
+    Mm,
+    /// Inches
+    In,
+    /// Pixels, 96 to the inch
+    Px,
+}
+
+/// Where Z is zero.
+#[derive(Clone, Copy, Debug, Default, Deserialize, Serialize, JsonSchema, PartialEq, Eq, ValueEnum)]
+#[serde(rename_all = "kebab-case")]
+pub enum Zero {
+    /// On top of the stock
+    #[default]
+    StockTop,
+    /// On the bed, under the stock
+    Bed,
+}
+
+/// Where X and Y are zero.
+#[derive(Clone, Copy, Debug, Default, Deserialize, Serialize, JsonSchema, PartialEq, Eq, ValueEnum)]
+#[serde(rename_all = "kebab-case")]
+pub enum Origin {
+    /// At the lower left corner of the finished parts
+    #[default]
+    LowerLeft,
+    /// In the middle of the finished parts
+    Centre,
+    /// Where the drawing has it
+    Drawing,
+}
+
+/// Where outputs go, and what may be replaced.
+#[derive(Args, Clone, Debug, Default)]
+pub struct Outputs {
+    /// Where the program goes; - is standard output [default: beside the drawing]
+    #[arg(short, long, value_name = "FILE", help_heading = "Files")]
+    pub output: Option<PathBuf>,
+    /// Write a report in JSON
+    #[arg(long, value_name = "FILE", help_heading = "Files")]
+    pub report: Option<PathBuf>,
+    /// Replace outputs that exist already
+    #[arg(long, help_heading = "Files")]
+    pub overwrite: bool,
+}
+
+impl Settings {
+    /// These settings, and where one is absent, that of `other`.
+    #[must_use]
+    pub fn or(self, other: Self) -> Self {
+        Self {
+            machine: self.machine.or(other.machine),
+            drawing_unit: self.drawing_unit.or(other.drawing_unit),
+            // A typed scale replaces a width asked for in the file, and the other way round.
+            scale: if self.fit_width.is_some() { self.scale } else { self.scale.or(other.scale) },
+            fit_width: if self.scale.is_some() { self.fit_width } else { self.fit_width.or(other.fit_width) },
+            layers: self.layers.or(other.layers),
+            join: self.join.or(other.join),
+            tolerance: self.tolerance.or(other.tolerance),
+            depth: self.depth.or(other.depth),
+            pass: self.pass.or(other.pass),
+            feed: self.feed.or(other.feed),
+            plunge: self.plunge.or(other.plunge),
+            spindle: self.spindle.or(other.spindle),
+            cutter: self.cutter.or(other.cutter),
+            zero: self.zero.or(other.zero),
+            thickness: self.thickness.or(other.thickness),
+            clearance: self.clearance.or(other.clearance),
+            origin: self.origin.or(other.origin),
+        }
+    }
+}

@@ -1,0 +1,26 @@
+//! Commands that only say something, and command lines that are wrong.
+
+use assert_cmd::Command;
+
+fn ribband() -> Command {
+    Command::cargo_bin("ribband").expect("the binary is built")
+}
+
+#[test]
+fn the_cautions_are_numbered_and_folded() {
+    let out = ribband().arg("cautions").output().expect("it runs");
+    assert!(out.status.success());
+    insta::assert_snapshot!(String::from_utf8(out.stdout).expect("plain text"));
+}
+
+#[test]
+fn a_wrong_command_line_is_status_2_and_help_is_status_0() {
+    for typed in [&[][..], &["cut"], &["cautions", "--loud"]] {
+        let out = ribband().args(typed).output().expect("it runs");
+        assert_eq!(out.status.code(), Some(2), "{typed:?}");
+        assert!(out.stdout.is_empty(), "{typed:?}");
+    }
+    for typed in ["--help", "--version"] {
+        assert_eq!(ribband().arg(typed).output().expect("it runs").status.code(), Some(0), "{typed}");
+    }
+}
