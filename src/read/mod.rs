@@ -1,1 +1,106 @@
-//! read: not built yet.
+//! Text to [`Sketch`]: SVG, DXF and point lists, told apart by their content.
+//!
+//! A reader turns a file into a [`Drawing`] in the file's own units, y up, every curve exact. The scale is settled
+//! afterwards, in one place, and the curves become lines and arcs in mm.
+
+mod curve;
+mod points;
+mod sample;
+mod scale;
+
+use kurbo::Rect;
+use rayon::prelude::*;
+
+pub use curve::{Chain, Curve, Drawing, Element, EllipseArc, Nurbs};
+pub use scale::{FileUnit, MM_PER_INCH, Scale, Unit};
+
+use crate::error::{Error, Kind};
+use crate::sketch::{Contour, Sketch};
+use sample::{SAMPLING_MM, sample};
+
+/// Reads a drawing. `name` is only what messages call the file; what it is, its content tells.
+///
+/// # Errors
+/// `Kind::Input` when the content is no drawing or a broken one, `Kind::Refused` when its scale is unknown,
+/// `Kind::Settings` when `scale` itself is wrong or names a layer that the drawing does not have.
+pub fn read(name: &str, bytes: &[u8], scale: &Scale) -> Result<Sketch, Error> {
+    scale.checked().and_then(|()| read_drawing(bytes)).and_then(|d| to_sketch(d, scale)).map_err(|e| {
+        if e.kind == Kind::Settings { e } else { e.in_file(name) }
+    })
+}
+
+/// The drawing in the file's own units.
+///
+/// # Errors
+/// `Kind::Input` when the content is no drawing or a broken one.
+pub fn read_drawing(bytes: &[u8]) -> Result<Drawing, Error> {
+    points::read(bytes)
+}
+
+/// Settles the scale and turns every element into lines and arcs in mm.
+///
+/// # Errors
+/// `Kind::Refused` when the scale is unknown, `Kind::Settings` for a layer that is not there, `Kind::Input` for a
+/// drawing without geometry or with coordinates beyond reason.
+pub fn to_sketch(mut drawing: Drawing, scale: &Scale) -> Result<Sketch, Error> {
+    if let Some(layers) = &scale.layers {
+        keep_layers(&mut drawing, layers)?;
+    }
+    let bbox = drawing.elements.iter().filter_map(|e| e.chain.bbox()).reduce(|a, b| a.union(b));
+    let bbox = bbox.ok_or_else(|| nothing_drawn(&drawing.notes))?;
+    let settled = scale.settle(drawing.unit.as_ref(), bbox)?;
+    check_extent(bbox, settled.mm_per_unit)?;
+
+    let mut sketch = Sketch { mm_per_unit: settled.mm_per_unit, scale_from: settled.from, ..Sketch::default() };
+    let sampled: Vec<_> = drawing
+        .elements
+        .into_par_iter()
+        .map(|e| (sample(e.chain, settled.mm_per_unit, SAMPLING_MM), e.layer, e.colour, e.place))
+        .collect();
+    for (i, (sampled, layer, colour, place)) in sampled.into_iter().enumerate() {
+        sketch.sampling_mm = sketch.sampling_mm.max(sampled.error_mm);
+        sketch.contours.push(Contour { id: i + 1, layer, colour, place, path: sampled.path });
+    }
+    sketch.notes.extend(settled.note.into_iter().chain(drawing.notes));
+    Ok(sketch)
+}
+
+/// Coordinates beyond 10 km are a wrong scale or a damaged file, and would leave the grid that coordinates keep to.
+fn check_extent(bbox: Rect, mm_per_unit: f64) -> Result<(), Error> {
+    const LARGEST_MM: f64 = 1e7;
+    let largest = [bbox.x0, bbox.y0, bbox.x1, bbox.y1].iter().fold(0.0_f64, |m, c| m.max(c.abs()));
+    let largest_mm = largest * mm_per_unit;
+    if largest_mm <= LARGEST_MM {
+        return Ok(());
+    }
+    let what = format!("the drawing reaches {largest_mm:.3e} mm from its zero, which cannot be meant");
+    Err(Error::new(Kind::Input, what).remedy("check its unit and look for a stray point far away"))
+}
+
+fn nothing_drawn(notes: &[String]) -> Error {
+    let what = match notes {
+        [] => "the drawing holds nothing that can be cut".to_owned(),
+        notes => format!("the drawing holds nothing that can be cut ({})", notes.join("; ")),
+    };
+    Error::new(Kind::Input, what).remedy("draw paths, polylines, lines or circles and save it again")
+}
+
+/// Keeps the elements of the named layers; layer names do not tell capitals from small letters.
+fn keep_layers(drawing: &mut Drawing, layers: &[String]) -> Result<(), Error> {
+    let named = |layer: &str, wanted: &str| layer.to_lowercase() == wanted.to_lowercase();
+    let missing = layers.iter().find(|w| !drawing.elements.iter().any(|e| named(&e.layer, w)));
+    if let Some(missing) = missing {
+        let mut present: Vec<&str> = drawing.elements.iter().map(|e| e.layer.as_str()).collect();
+        present.sort_unstable();
+        present.dedup();
+        present.retain(|layer| !layer.is_empty());
+        let remedy = match present.as_slice() {
+            [] => "the drawing has no layers: leave --layers out".to_owned(),
+            present => format!("its layers are {}", present.join(", ")),
+        };
+        let what = format!("the drawing has no layer \"{missing}\" with anything to cut");
+        return Err(Error::new(Kind::Settings, what).remedy(remedy));
+    }
+    drawing.elements.retain(|e| layers.iter().any(|w| named(&e.layer, w)));
+    Ok(())
+}
