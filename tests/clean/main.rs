@@ -1,0 +1,4 @@
+//! Cleaning and measuring, through the public door.
+
+mod chaining;
+mod common;
