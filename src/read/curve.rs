@@ -152,7 +152,8 @@ impl Nurbs {
         if weights.iter().any(|w| !(w.is_finite() && *w > 0.0)) {
             return Err("a weight that is not above zero".into());
         }
-        if !knots.is_sorted() || knots.iter().any(|k| !k.is_finite()) || knots[degree] >= knots[points.len()] {
+        if !knots.is_sorted() || knots.iter().any(|k| !k.is_finite()) || knots[degree] >= knots[points.len()]
+        {
             return Err("knots that do not rise".into());
         }
         Ok(Self { degree, knots, points, weights })

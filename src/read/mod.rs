@@ -24,9 +24,11 @@ use sample::{SAMPLING_MM, sample};
 /// `Kind::Input` when the content is no drawing or a broken one, `Kind::Refused` when its scale is unknown,
 /// `Kind::Settings` when `scale` itself is wrong or names a layer that the drawing does not have.
 pub fn read(name: &str, bytes: &[u8], scale: &Scale) -> Result<Sketch, Error> {
-    scale.checked().and_then(|()| read_drawing(bytes)).and_then(|d| to_sketch(d, scale)).map_err(|e| {
-        if e.kind == Kind::Settings { e } else { e.in_file(name) }
-    })
+    scale
+        .checked()
+        .and_then(|()| read_drawing(bytes))
+        .and_then(|d| to_sketch(d, scale))
+        .map_err(|e| if e.kind == Kind::Settings { e } else { e.in_file(name) })
 }
 
 /// The drawing in the file's own units.
@@ -51,7 +53,8 @@ pub fn to_sketch(mut drawing: Drawing, scale: &Scale) -> Result<Sketch, Error> {
     let settled = scale.settle(drawing.unit.as_ref(), bbox)?;
     check_extent(bbox, settled.mm_per_unit)?;
 
-    let mut sketch = Sketch { mm_per_unit: settled.mm_per_unit, scale_from: settled.from, ..Sketch::default() };
+    let mut sketch =
+        Sketch { mm_per_unit: settled.mm_per_unit, scale_from: settled.from, ..Sketch::default() };
     let sampled: Vec<_> = drawing
         .elements
         .into_par_iter()
