@@ -48,6 +48,6 @@ fn entrances(index: usize, contour: &Routed, step_mm: f64) -> Vec<Entrance> {
 /// Where the cutter is when the contour is done.
 fn leaves_at(contour: &Routed, entry: usize) -> Point {
     let last = contour.path.vertices.len() - 1;
-    let to_and_fro = contour.cut.passes().len() % 2 == 0;
+    let to_and_fro = contour.cut.passes().len().is_multiple_of(2);
     if contour.path.closed || to_and_fro { contour.place(entry) } else { contour.place(last - entry) }
 }

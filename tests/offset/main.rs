@@ -1,0 +1,3 @@
+//! Cutter compensation, and the crossings it rests on, through the public door.
+
+mod crossings;
