@@ -1,1 +1,0 @@
-//! machine: not built yet.
