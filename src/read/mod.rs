@@ -4,9 +4,11 @@
 //! afterwards, in one place, and the curves become lines and arcs in mm.
 
 mod curve;
+mod number;
 mod points;
 mod sample;
 mod scale;
+mod text;
 
 use kurbo::Rect;
 use rayon::prelude::*;
@@ -15,8 +17,9 @@ pub use curve::{Chain, Curve, Drawing, Element, EllipseArc, Nurbs};
 pub use scale::{FileUnit, MM_PER_INCH, Scale, Unit};
 
 use crate::error::{Error, Kind};
-use crate::sketch::{Contour, Sketch};
+use crate::sketch::{Contour, Place, Sketch};
 use sample::{SAMPLING_MM, sample};
+use text::Content;
 
 /// Reads a drawing. `name` is only what messages call the file; what it is, its content tells.
 ///
@@ -36,7 +39,11 @@ pub fn read(name: &str, bytes: &[u8], scale: &Scale) -> Result<Sketch, Error> {
 /// # Errors
 /// `Kind::Input` when the content is no drawing or a broken one.
 pub fn read_drawing(bytes: &[u8]) -> Result<Drawing, Error> {
-    points::read(bytes)
+    match text::tell(bytes)? {
+        Content::Xml(_) => Err(Error::new(Kind::Input, "SVG is not read yet")),
+        Content::Dxf(_) => Err(Error::new(Kind::Input, "DXF is not read yet")),
+        Content::Points(text) => points::read(&text),
+    }
 }
 
 /// Settles the scale and turns every element into lines and arcs in mm.
@@ -60,12 +67,31 @@ pub fn to_sketch(mut drawing: Drawing, scale: &Scale) -> Result<Sketch, Error> {
         .into_par_iter()
         .map(|e| (sample(e.chain, settled.mm_per_unit, SAMPLING_MM), e.layer, e.colour, e.place))
         .collect();
-    for (i, (sampled, layer, colour, place)) in sampled.into_iter().enumerate() {
+    let mut without_length = Vec::new();
+    for (sampled, layer, colour, place) in sampled {
+        if sampled.path.vertices.iter().all(|v| v.at == sampled.path.vertices[0].at) {
+            without_length.push(place);
+            continue;
+        }
         sketch.sampling_mm = sketch.sampling_mm.max(sampled.error_mm);
-        sketch.contours.push(Contour { id: i + 1, layer, colour, place, path: sampled.path });
+        let id = sketch.contours.len() + 1;
+        sketch.contours.push(Contour { id, layer, colour, place, path: sampled.path });
     }
     sketch.notes.extend(settled.note.into_iter().chain(drawing.notes));
-    Ok(sketch)
+    sketch.notes.extend(left_out(&without_length));
+    if sketch.contours.is_empty() { Err(nothing_drawn(&sketch.notes)) } else { Ok(sketch) }
+}
+
+/// A note on elements that are single points.
+fn left_out(places: &[Place]) -> Option<String> {
+    let first = places.first()?;
+    let elements = if places.len() == 1 { "element" } else { "elements" };
+    Some(format!(
+        "{} {elements} without length left out, the first a {} on line {}",
+        places.len(),
+        first.element,
+        first.line
+    ))
 }
 
 /// Coordinates beyond 10 km are a wrong scale or a damaged file, and would leave the grid that coordinates keep to.
