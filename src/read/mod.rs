@@ -4,6 +4,7 @@
 //! afterwards, in one place, and the curves become lines and arcs in mm.
 
 mod curve;
+mod dxf;
 mod number;
 mod points;
 mod sample;
@@ -41,7 +42,7 @@ pub fn read(name: &str, bytes: &[u8], scale: &Scale) -> Result<Sketch, Error> {
 pub fn read_drawing(bytes: &[u8]) -> Result<Drawing, Error> {
     match text::tell(bytes)? {
         Content::Xml(_) => Err(Error::new(Kind::Input, "SVG is not read yet")),
-        Content::Dxf(_) => Err(Error::new(Kind::Input, "DXF is not read yet")),
+        Content::Dxf(bytes) => dxf::read(&bytes),
         Content::Points(text) => points::read(&text),
     }
 }
