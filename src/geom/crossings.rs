@@ -22,13 +22,6 @@ pub struct Crossing {
 /// share. A crossing at an angle is found to rounding error; a tangent contact only to about the square root of it.
 pub fn crossings(a: &Span, b: &Span, touch: f64) -> Vec<Crossing> {
     let mut found = Vec::new();
-    for at in carrier_crossings(a, b, touch) {
-        let (on_a, on_b) = (a.nearest(at), b.nearest(at));
-        let meeting = polished(a, b, Crossing { t: on_a.t, u: on_b.t, at: on_a.at });
-        if meeting.at.distance(b.at(meeting.u)) <= touch {
-            add(&mut found, meeting, touch);
-        }
-    }
     for (u, end) in [(0.0, b.start), (1.0, b.end)] {
         let near = a.nearest(end);
         if near.distance <= touch {
@@ -39,6 +32,13 @@ pub fn crossings(a: &Span, b: &Span, touch: f64) -> Vec<Crossing> {
         let near = b.nearest(end);
         if near.distance <= touch {
             add(&mut found, Crossing { t, u: near.t, at: end }, touch);
+        }
+    }
+    for at in carrier_crossings(a, b, touch) {
+        let (on_a, on_b) = (a.nearest(at), b.nearest(at));
+        let meeting = polished(a, b, Crossing { t: on_a.t, u: on_b.t, at: on_a.at });
+        if meeting.at.distance(b.at(meeting.u)) <= touch {
+            add(&mut found, meeting, touch);
         }
     }
     found

@@ -3,6 +3,7 @@
 mod arc_spline;
 mod crossings;
 mod span;
+mod winding;
 
 pub use arc_spline::{ArcSpline, Vertex};
 pub use crossings::{Crossing, crossings};

@@ -1,3 +1,4 @@
 //! Cutter compensation, and the crossings it rests on, through the public door.
 
 mod crossings;
+mod exact;
