@@ -1,0 +1,235 @@
+//! The certified distance between two chains of lines and arcs: a proven upper bound of the Fréchet distance.
+
+use kurbo::Point;
+
+use super::ArcSpline;
+use super::chords::{Chords, reopened};
+use super::coupling::{Coupling, Foot, Outlier, Walk, foot, nearest};
+use super::free_space::{Reach, within};
+use crate::num::Deviation;
+
+/// How far above the true distance the polylines' bound may stay before it is worked on, as a ratio.
+const LOOSE: f64 = 1.03;
+
+/// Arcs are first cut into chords this close to them, in mm: fine enough for a deviation of 0.05 mm.
+const FIRST_SAGITTA: f64 = 5e-4;
+
+/// Arcs are cut no finer than this, in mm: fine enough for a deviation of a micrometre.
+const LEAST_SAGITTA: f64 = 1e-5;
+
+/// An upper bound of the Fréchet distance between `path` and `contour`, with the place on the contour where it is
+/// reached.
+///
+/// Open chains are compared in their own directions or with one of them reversed, whichever is nearer; closed chains
+/// from any start, in either direction; a closed and an open one with the closed one opened beside the other's
+/// start. The bound is proven whatever the chains are. Where it is above a micrometre it is meant to be within 5 %
+/// of the true distance, and is so wherever the work stays linear in the number of spans (for chains that are wildly
+/// different it is not tightened further). Infinite when a chain is empty or not finite.
+///
+/// ```
+/// use kurbo::Point;
+/// use ribband::geom::{ArcSpline, frechet};
+///
+/// let line = |y| ArcSpline::polyline([Point::new(0.0, y), Point::new(10.0, y)], false);
+/// assert_eq!(frechet(&line(0.0), &line(0.5)).mm, 0.5);
+/// ```
+pub fn frechet(path: &ArcSpline, contour: &ArcSpline) -> Deviation {
+    let Some(scale) = scale(path).zip(scale(contour)).map(|(a, b)| a.max(b)) else {
+        let at = contour.vertices.first().map_or(Point::ZERO, |v| v.at);
+        return Deviation { mm: f64::INFINITY, at, certified: true };
+    };
+    // A chain of a billion times the least sagitta or more is cut relative to its size.
+    let least = LEAST_SAGITTA.max(scale * 1e-9);
+    let mut sagitta = FIRST_SAGITTA.max(least);
+    loop {
+        let (p, q) = (Chords::new(path, sagitta), Chords::new(contour, sagitta));
+        let flat = polyline_distance(&p, &q);
+        let spent = p.sagitta + q.sagitta;
+        if spent <= 0.02 * flat.mm || sagitta <= least {
+            let rounding = 16.0 * f64::EPSILON * scale;
+            let mm = if flat.mm + spent == 0.0 { 0.0 } else { flat.mm + spent + rounding };
+            return Deviation { mm, at: flat.at, certified: true };
+        }
+        sagitta = (0.008 * flat.mm).min(sagitta / 2.0).max(least);
+    }
+}
+
+/// The largest coordinate of a chain in size, bulges included; `None` when it is empty or not finite.
+fn scale(chain: &ArcSpline) -> Option<f64> {
+    let finite = |v: &super::Vertex| v.at.is_finite() && v.bulge.is_finite();
+    let bbox = if chain.vertices.iter().all(finite) { chain.bbox() } else { None }?;
+    let scale = bbox.x0.abs().max(bbox.x1.abs()).max(bbox.y0.abs()).max(bbox.y1.abs());
+    // Squares of coordinates must stay finite too.
+    (scale * scale * 16.0).is_finite().then_some(scale)
+}
+
+/// A bound with its place.
+#[derive(Clone, Copy)]
+struct Bound {
+    mm: f64,
+    at: Point,
+}
+
+impl From<Coupling> for Bound {
+    fn from(coupling: Coupling) -> Self {
+        Self { mm: coupling.mm, at: coupling.at }
+    }
+}
+
+impl Bound {
+    fn none(at: Point) -> Self {
+        Self { mm: f64::INFINITY, at }
+    }
+
+    fn least(self, other: Self) -> Self {
+        if other.mm < self.mm { other } else { self }
+    }
+}
+
+fn polyline_distance(path: &Chords, contour: &Chords) -> Bound {
+    let forward = one_way(path, contour);
+    if direction_is_settled(path, contour, forward.mm) {
+        return forward;
+    }
+    let mut reversed = contour.clone();
+    reversed.points.reverse();
+    forward.least(one_way(path, &reversed))
+}
+
+/// True when a reversed contour cannot be nearer than `mm`: by the ends of open chains; by the areas of closed ones,
+/// which differ by no more than distance times length when the chains run alike.
+fn direction_is_settled(path: &Chords, contour: &Chords, mm: f64) -> bool {
+    if path.closed != contour.closed {
+        return false;
+    }
+    if !path.closed {
+        let ends = |c: &Chords| (c.points[0], c.points[c.points.len() - 1]);
+        let ((p0, p1), (q0, q1)) = (ends(path), ends(contour));
+        return p0.distance(q1).max(p1.distance(q0)) >= mm;
+    }
+    let (p, q) = (Extent::of(path), Extent::of(contour));
+    p.area * q.area > 0.0 && p.area.abs().min(q.area.abs()) > mm * p.length.max(q.length)
+}
+
+/// Area and length of a closed polyline.
+struct Extent {
+    area: f64,
+    length: f64,
+}
+
+impl Extent {
+    fn of(chain: &Chords) -> Self {
+        let origin = chain.points[0];
+        chain.pieces().fold(Self { area: 0.0, length: 0.0 }, |sum, (a, b)| Self {
+            area: sum.area + (a - origin).cross(b - origin) / 2.0,
+            length: sum.length + a.distance(b),
+        })
+    }
+}
+
+/// The bound for chains that run the same way.
+fn one_way(path: &Chords, contour: &Chords) -> Bound {
+    let (p, q) = (path.lap(), contour.lap());
+    match (path.closed, contour.closed) {
+        (false, false) => open_bound(&p, &q),
+        (true, true) => closed_bound(&p, &q),
+        (true, false) => openings(&p, q[0]).map(|p| open_bound(&p, &q)).fold(Bound::none(q[0]), Bound::least),
+        (false, true) => openings(&q, p[0]).map(|q| open_bound(&p, &q)).fold(Bound::none(q[0]), Bound::least),
+    }
+}
+
+/// The bound for two laps, the first corner repeated. Both are opened at a matched place, which makes them open
+/// ones: beside the contour's first corner, then, where that is not good enough, where the walk shows that nothing
+/// pulls the match elsewhere.
+fn closed_bound(path: &[Point], contour: &[Point]) -> Bound {
+    let mut best: Option<(Coupling, Vec<Point>)> = None;
+    for open in openings(path, contour[0]) {
+        let coupling = Walk::new(&open, contour).couple();
+        if is_tight(&coupling, furthest(&open, contour, &coupling)) {
+            return coupling.into();
+        }
+        if best.as_ref().is_none_or(|(least, _)| coupling.mm < least.mm) {
+            best = Some((coupling, open));
+        }
+    }
+    let Some((coupling, open)) = best else { return Bound::none(contour[0]) };
+    let walk = Walk::new(&open, contour);
+    let bound = match walk.cut() {
+        Some(cut) => {
+            let contour = reopened(contour, cut.corner, contour[cut.corner]);
+            open_bound(&reopened(&open, cut.piece, cut.foot), &contour)
+        }
+        None => tightened(&open, contour, coupling),
+    };
+    bound.least(coupling.into())
+}
+
+/// A lap opened beside `start`: at each of the few places where it comes nearest, nearest first.
+fn openings(lap: &[Point], start: Point) -> impl Iterator<Item = Vec<Point>> + '_ {
+    let feet: Vec<Foot> = lap.windows(2).map(|ends| foot(start, ends[0], ends[1])).collect();
+    let n = feet.len();
+    let is_least = |&k: &usize| {
+        let (before, here, after) = (feet[(k + n - 1) % n], feet[k], feet[(k + 1) % n]);
+        n == 1 || here.squared < before.squared && here.squared <= after.squared
+    };
+    let mut minima: Vec<usize> = (0..n).filter(is_least).collect();
+    minima.sort_by(|&a, &b| feet[a].squared.total_cmp(&feet[b].squared));
+    if minima.is_empty() {
+        minima.push(0);
+    }
+    minima.truncate(3);
+    minima.into_iter().map(move |k| reopened(lap, k, lap[k].lerp(lap[k + 1], feet[k].t)))
+}
+
+/// The bound for two open polylines of at least two corners, walked from first to last.
+fn open_bound(path: &[Point], contour: &[Point]) -> Bound {
+    let coupling = Walk::new(path, contour).couple();
+    let proven = proven(path, contour, &coupling);
+    if is_tight(&coupling, proven) { coupling.into() } else { tightened(path, contour, coupling) }
+}
+
+/// True when the bound cannot be much too large, or is too small to matter.
+fn is_tight(coupling: &Coupling, proven: f64) -> bool {
+    coupling.mm <= (LOOSE * proven).max(LEAST_SAGITTA)
+}
+
+/// The distance of the furthest corner from the whole of the other chain: a lower bound, whatever the match.
+fn furthest(path: &[Point], contour: &[Point], coupling: &Coupling) -> f64 {
+    match coupling.outlier {
+        Outlier::OfPath(corner) => nearest(corner, contour),
+        Outlier::OfContour(corner) => nearest(corner, path),
+    }
+}
+
+/// A lower bound for open polylines, whose ends are matched.
+fn proven(path: &[Point], contour: &[Point], coupling: &Coupling) -> f64 {
+    let starts = path[0].distance(contour[0]);
+    let ends = path[path.len() - 1].distance(contour[contour.len() - 1]);
+    furthest(path, contour, coupling).max(starts).max(ends)
+}
+
+/// Halves the gap between the proven lower bound and the coupling's distance by deciding distances between, until
+/// it is narrow or the chains are too unlike for that in linear work.
+fn tightened(path: &[Point], contour: &[Point], coupling: Coupling) -> Bound {
+    let budget = 64 * (path.len() + contour.len()) + 300_000;
+    let mut bound = Bound::from(coupling);
+    let mut low = proven(path, contour, &coupling).max(LEAST_SAGITTA);
+    let mut high = bound.mm;
+    // The walk is seldom far off: try near its distance before halving.
+    let mut trial = high / LOOSE;
+    while high > LOOSE * low {
+        match within(path, contour, trial, budget) {
+            Reach::Within => {
+                bound.mm = trial;
+                high = trial;
+            }
+            Reach::Stuck(at) => {
+                bound.at = at;
+                low = trial;
+            }
+            Reach::Unknown => high = trial,
+        }
+        trial = (low * high).sqrt();
+    }
+    bound
+}
