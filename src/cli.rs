@@ -1,6 +1,7 @@
 //! The command line: what was typed, carried out, and told.
 
 mod args;
+mod machines;
 
 use std::ffi::OsString;
 use std::io::Write;
@@ -33,6 +34,9 @@ pub fn main(typed: impl IntoIterator<Item = OsString>) -> u8 {
 
 fn carry_out(command: Command) -> Result<(), Error> {
     match command {
+        Command::Machines { name, report, overwrite } => {
+            machines::machines(name.as_deref(), report.as_deref(), overwrite)
+        }
         Command::Cautions => print(&cautions::list()),
     }
 }

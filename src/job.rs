@@ -1,7 +1,221 @@
 //! What is asked for: settings as typed, merged from all their sources in one place, and judged before any work.
 
+mod bounds;
+mod cutting;
 mod file;
 mod settings;
 
+use std::collections::BTreeMap;
+use std::path::Path;
+
+use crate::error::{Error, Kind};
+use crate::files;
+use crate::machine::{Cutter, Machine};
+use crate::num::{Length, LengthUnit, Tolerance};
+
+pub use cutting::Cutting;
 pub use file::{JobFile, LayerSettings};
 pub use settings::{DrawingUnit, Origin, Outputs, Settings, Zero};
+
+/// A job whose settings are whole and inside their bounds. Lengths in mm, feeds in mm/min.
+#[derive(Clone, Debug)]
+pub struct Job {
+    /// The machine it is for.
+    pub machine: Machine,
+    /// How the drawing is read.
+    pub drawing: DrawingSettings,
+    /// The tolerance asked for; `None` for the default.
+    pub tolerance: Option<Tolerance>,
+    /// How far apart ends may be that are joined; `None` for the tolerance.
+    pub join_mm: Option<f64>,
+    /// The cutter's diameter.
+    pub cutter_mm: f64,
+    /// The cutter's entry in the profile, if it has one.
+    pub cutter: Option<Cutter>,
+    /// How contours are cut.
+    pub cutting: Cutting,
+    /// How the contours of single layers are cut instead; `None` where they are left out.
+    pub layers: BTreeMap<String, Option<Cutting>>,
+    /// Where Z is zero.
+    pub zero: Zero,
+    /// The stock's thickness, where it is given.
+    pub thickness_mm: Option<f64>,
+    /// How far above the stock the cutter travels.
+    pub clearance_mm: f64,
+    /// Where X and Y are zero.
+    pub origin: Origin,
+}
+
+/// How a drawing is read.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct DrawingSettings {
+    /// What a bare number in it means.
+    pub unit: Option<DrawingUnit>,
+    /// The factor it is scaled by.
+    pub scale: Option<f64>,
+    /// The width it is scaled to.
+    pub fit_width_mm: Option<f64>,
+    /// The layers to cut; `None` for all.
+    pub layers: Option<Vec<String>>,
+}
+
+/// The tolerance where none is asked for and the trace supports it, in mm.
+pub const DEFAULT_TOLERANCE_MM: f64 = 0.1;
+/// How far above the stock the cutter travels where nothing else is asked for, in mm.
+const DEFAULT_CLEARANCE_MM: f64 = 5.0;
+/// How many units of the last decimal a tolerance must span at least: fitting loses 1.5 of them to the rounding of the
+/// program's numbers.
+const LEAST_TOLERANCE_STEPS: f64 = 3.0;
+
+impl Job {
+    /// The job that `typed` asks for, the settings of `file` standing where nothing was typed.
+    ///
+    /// # Errors
+    /// [`Kind::Settings`] for a setting that is missing or out of its bounds, [`Kind::Refused`] for one that the
+    /// machine or the cutter cannot do.
+    pub fn new(typed: &Settings, file: &JobFile) -> Result<Self, Error> {
+        let all = typed.clone().or(file.settings.clone());
+        let machine = machine(all.machine.as_deref())?;
+        let mm = Units { machine: machine.unit };
+        let tolerance = mm.length(&bounds::TOLERANCE, all.tolerance)?;
+        if let Some(tolerance) = tolerance {
+            spans_decimals(tolerance, &machine)?;
+        }
+        let (cutter_mm, cutter) = cutter(all.cutter.as_deref(), &machine, mm)?;
+        let maker = cutting::Maker { machine: &machine, mm, cutter_mm, cutter: cutter.as_ref() };
+        let cutting = maker.cutting(&all)?;
+        let entry = |(name, entry): (&String, &LayerSettings)| {
+            let wanted = typed.clone().or(entry.settings()).or(file.settings.clone());
+            let cutting = if entry.skip { None } else { Some(maker.cutting(&wanted)?) };
+            Ok((name.clone(), cutting))
+        };
+        let layers = file.layers.iter().map(entry).collect::<Result<_, Error>>()?;
+        let clearance = mm.length(&bounds::CLEARANCE, all.clearance)?;
+        Ok(Self {
+            drawing: drawing(&all, mm)?,
+            tolerance: tolerance.and_then(Tolerance::new),
+            join_mm: mm.length(&bounds::JOIN, all.join)?,
+            cutter_mm,
+            cutter,
+            cutting,
+            layers,
+            zero: all.zero.unwrap_or_default(),
+            thickness_mm: thickness(&all, mm)?,
+            clearance_mm: clearance.unwrap_or(DEFAULT_CLEARANCE_MM),
+            origin: all.origin.unwrap_or_default(),
+            machine,
+        })
+    }
+
+    /// How the contours of a layer are cut; `None` where they are left out.
+    pub fn cutting_of(&self, layer: &str) -> Option<&Cutting> {
+        self.layers.get(layer).map_or(Some(&self.cutting), Option::as_ref)
+    }
+}
+
+/// The machine profile of that name, built in or in a file; `shop-router` where none is named.
+///
+/// # Errors
+/// [`Kind::Settings`] when there is no such profile, or it is wrong.
+pub fn machine(name: Option<&str>) -> Result<Machine, Error> {
+    let name = name.unwrap_or("shop-router");
+    let looks_like_file = name.contains(['/', '\\', '.']) || Path::new(name).is_file();
+    if !looks_like_file {
+        return Machine::named(name);
+    }
+    let bytes = files::read(Path::new(name)).map_err(|error| Error { kind: Kind::Settings, ..error })?;
+    let text = String::from_utf8(bytes).map_err(|_| {
+        Error::new(Kind::Settings, "the machine profile is not text in UTF-8")
+            .in_file(name)
+            .remedy("save it as UTF-8")
+    })?;
+    Machine::from_toml(&text).map_err(|error| error.in_file(name))
+}
+
+/// The settings that say how a drawing is read, judged.
+///
+/// # Errors
+/// [`Kind::Settings`] for one out of its bounds.
+pub fn drawing_settings(typed: &Settings, machine: &Machine) -> Result<DrawingSettings, Error> {
+    drawing(typed, Units { machine: machine.unit })
+}
+
+/// Turns what was typed into mm on a machine that works in the given unit.
+#[derive(Clone, Copy)]
+struct Units {
+    machine: LengthUnit,
+}
+
+impl Units {
+    /// A length inside its bounds, in mm.
+    fn length(self, bound: &bounds::Bound, typed: Option<Length>) -> Result<Option<f64>, Error> {
+        let Some(typed) = typed else { return Ok(None) };
+        let mm = typed.mm(self.machine).ok_or_else(|| bare(bound.name, &typed.to_string(), ""))?;
+        bound.hold(mm).map(Some)
+    }
+
+    /// A feed inside its bounds, in mm/min.
+    fn feed(self, bound: &bounds::Bound, typed: Option<crate::num::Feed>) -> Result<Option<f64>, Error> {
+        let Some(typed) = typed else { return Ok(None) };
+        let feed = typed.mm_min(self.machine).ok_or_else(|| bare(bound.name, &typed.to_string(), "/min"))?;
+        bound.hold(feed).map(Some)
+    }
+}
+
+/// The error for a bare number on a machine that works in inches.
+fn bare(name: &str, typed: &str, per: &str) -> Error {
+    Error::new(Kind::Settings, format!("{name} is {typed} without a unit, and the machine works in inches"))
+        .remedy(format!("write {typed}in{per} or {typed}mm{per}"))
+}
+
+fn drawing(all: &Settings, mm: Units) -> Result<DrawingSettings, Error> {
+    Ok(DrawingSettings {
+        unit: all.drawing_unit,
+        scale: all.scale.map(|scale| bounds::SCALE.hold(scale)).transpose()?,
+        fit_width_mm: mm.length(&bounds::FIT_WIDTH, all.fit_width)?,
+        layers: all.layers.clone(),
+    })
+}
+
+fn thickness(all: &Settings, mm: Units) -> Result<Option<f64>, Error> {
+    let thickness = mm.length(&bounds::THICKNESS, all.thickness)?;
+    if all.zero == Some(Zero::Bed) && thickness.is_none() {
+        let what = "zero is on the bed, and the thickness of the stock is not given";
+        return Err(Error::new(Kind::Settings, what).remedy("give --thickness, or use --zero stock-top"));
+    }
+    Ok(thickness)
+}
+
+fn spans_decimals(tolerance_mm: f64, machine: &Machine) -> Result<(), Error> {
+    let least = LEAST_TOLERANCE_STEPS * machine.last_place();
+    if tolerance_mm >= least {
+        return Ok(());
+    }
+    let what = format!(
+        "tolerance is {tolerance_mm} mm, and the decimals that {} writes need {least:.4} mm at least",
+        machine.name
+    );
+    Err(Error::new(Kind::Refused, what).remedy("ask for a wider --tolerance"))
+}
+
+/// The cutter: typed as a diameter or a name, or the profile's first.
+fn cutter(typed: Option<&str>, machine: &Machine, mm: Units) -> Result<(f64, Option<Cutter>), Error> {
+    let known = || machine.cutters.iter().map(|c| c.name.as_str()).collect::<Vec<_>>().join(", ");
+    let Some(typed) = typed else {
+        let first = machine.cutters.first().ok_or_else(|| {
+            let what = format!("no cutter is given, and the profile {} has none", machine.name);
+            Error::new(Kind::Settings, what).remedy("give its diameter with --cutter, such as --cutter 6mm")
+        })?;
+        return Ok((first.diameter, Some(first.clone())));
+    };
+    if let Some(cutter) = machine.cutter(typed) {
+        return Ok((cutter.diameter, Some(cutter.clone())));
+    }
+    let length: Length = typed.parse().map_err(|_| {
+        let what =
+            format!("there is no cutter `{typed}` in the profile {}, and it is no diameter", machine.name);
+        Error::new(Kind::Settings, what).remedy(format!("its cutters are: {}; or write 6mm, 1/4in", known()))
+    })?;
+    let diameter = mm.length(&bounds::CUTTER, Some(length))?;
+    Ok((diameter.unwrap_or_default(), None))
+}

@@ -1,1 +1,216 @@
-//! report: not built yet.
+//! The report: every figure of a job, as JSON for other programs and as the source of the summary.
+//!
+//! A field keeps its name and meaning; fields may be added. Lengths are in mm, times in seconds, the program's own
+//! coordinates where `setup` says so and the drawing's everywhere else.
+
+use std::collections::BTreeMap;
+
+use schemars::JsonSchema;
+use serde::Serialize;
+
+use crate::job::{Origin, Zero};
+
+/// A whole report.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Report {
+    /// The version that wrote it.
+    pub ribband: String,
+    /// The tolerance the program was made to.
+    pub tolerance_mm: f64,
+    /// What was drawn.
+    pub drawing: Drawing,
+    /// The contours that were cut, in the order of the drawing.
+    pub contours: Vec<Contour>,
+    /// What the machine must be set up as.
+    pub setup: Setup,
+    /// What was written.
+    pub program: Program,
+    /// What the written text was checked for.
+    pub check: Check,
+    /// What the person at the machine should know, one sentence each.
+    pub warnings: Vec<String>,
+    /// How long each stage took, in milliseconds. The only figures that differ from run to run.
+    pub timings_ms: BTreeMap<String, f64>,
+}
+
+/// The drawing as it was read.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Drawing {
+    /// The file's name as typed.
+    pub file: String,
+    /// SHA-256 of its bytes, in hexadecimal.
+    pub sha256: String,
+    /// How many mm one unit of the file is.
+    pub mm_per_unit: f64,
+    /// Where that scale came from.
+    pub scale_from: String,
+    /// Finished width.
+    pub width_mm: f64,
+    /// Finished height.
+    pub height_mm: f64,
+    /// How many contours it holds.
+    pub contours: usize,
+    /// How many vertices they have in all.
+    pub vertices: usize,
+    /// Their length, before cleaning.
+    pub length_mm: f64,
+}
+
+/// One contour: as it was drawn, and as it is cut.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Contour {
+    /// Its number in the drawing, from 1.
+    pub id: usize,
+    /// Its layer, or empty.
+    pub layer: String,
+    /// True when its end is joined to its start.
+    pub closed: bool,
+    /// Its vertices after cleaning.
+    pub vertices: usize,
+    /// Its length after cleaning.
+    pub length_mm: f64,
+    /// The box around it, in the drawing's coordinates: least x and y, largest x and y.
+    pub bbox_mm: [f64; 4],
+    /// The estimated amplitude of the trace's own jaggedness.
+    pub roughness_mm: f64,
+    /// The corners of the path it is cut on.
+    pub corners: usize,
+    /// The lines of that path.
+    pub lines: usize,
+    /// The arcs of that path.
+    pub arcs: usize,
+    /// The certified deviation between that path and the contour.
+    pub deviation_mm: f64,
+    /// What the cutter cannot reach, one sentence each.
+    pub uncut: Vec<String>,
+}
+
+/// What the machine must be set up as.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Setup {
+    /// The machine profile's name.
+    pub machine: String,
+    /// The unit the program is in: `mm` or `in`.
+    pub unit: String,
+    /// Where Z is zero.
+    pub zero: Zero,
+    /// Where X and Y are zero.
+    pub origin: Origin,
+    /// The extents of the cutter's path from that zero: least x, y, z, largest x, y, z.
+    pub extents_mm: [f64; 6],
+    /// The cutter's diameter.
+    pub cutter_mm: f64,
+    /// The side of the contour that the cutter runs on.
+    pub side: String,
+    /// `conventional` or `climb`; none on the line, where both sides of the cut are at once one and the other.
+    pub direction: Option<String>,
+    /// How deep below the top of the stock.
+    pub depth_mm: f64,
+    /// In how many passes.
+    pub passes: usize,
+    /// The largest feed along a contour.
+    pub feed_mm_min: f64,
+    /// The largest feed straight down.
+    pub plunge_mm_min: f64,
+    /// The spindle's speed.
+    pub spindle_rpm: f64,
+}
+
+/// The program as it was written.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Program {
+    /// The file's name as typed; `-` for standard output.
+    pub file: String,
+    /// Lines that a controller must execute.
+    pub blocks: usize,
+    /// Those that move an axis.
+    pub motion_blocks: usize,
+    /// The size of the text.
+    pub bytes: usize,
+    /// Length of the moves at feed.
+    pub cut_length_mm: f64,
+    /// Length of the rapids.
+    pub rapid_length_mm: f64,
+    /// Planned time of the whole program.
+    pub time_s: f64,
+    /// Planned time of the contour moves alone.
+    pub cut_time_s: f64,
+    /// Blocks whose predecessor ends with the controller's queue empty.
+    pub starved_blocks: usize,
+    /// The same job with every vertex of the drawing as a straight block.
+    pub as_drawn: AsDrawn,
+}
+
+/// The same job, cut as the drawing has it: every vertex a straight block at the process feed.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct AsDrawn {
+    /// Blocks that move an axis.
+    pub motion_blocks: usize,
+    /// Planned time of the whole program.
+    pub time_s: f64,
+    /// Planned time of the contour moves alone.
+    pub cut_time_s: f64,
+    /// Blocks whose predecessor ends with the controller's queue empty.
+    pub starved_blocks: usize,
+}
+
+/// What the written text was checked for, against the drawing.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Check {
+    /// True when no claim fails.
+    pub holds: bool,
+    /// The certified deviation between what the text cuts and the drawing, the worst of all contours and passes.
+    pub deviation_mm: f64,
+    /// The claims, one by one.
+    pub claims: Vec<Claim>,
+    /// What no program can check.
+    pub not_checked: Vec<String>,
+}
+
+/// One claim about the program.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Claim {
+    /// What is claimed.
+    pub name: String,
+    /// How it turned out.
+    pub state: State,
+    /// What was found.
+    pub value: Option<String>,
+    /// What is allowed.
+    pub limit: Option<String>,
+    /// Where it was found.
+    pub at: Option<String>,
+}
+
+/// How a claim turned out.
+#[derive(Clone, Copy, Debug, Serialize, JsonSchema, PartialEq, Eq)]
+pub enum State {
+    /// It holds.
+    #[serde(rename = "holds")]
+    Holds,
+    /// It does not.
+    #[serde(rename = "fails")]
+    Fails,
+    /// It could not be checked.
+    #[serde(rename = "not checked")]
+    NotChecked,
+}
+
+impl Report {
+    /// The report as JSON, with a line end.
+    pub fn json(&self) -> String {
+        pretty(self)
+    }
+
+    /// The schema that every report keeps to, as JSON with a line end.
+    pub fn schema() -> String {
+        pretty(&schemars::schema_for!(Self))
+    }
+}
+
+/// `value` as indented JSON with a line end.
+fn pretty(value: &impl Serialize) -> String {
+    let mut text = serde_json::to_string_pretty(value).unwrap_or_default();
+    text.push('\n');
+    text
+}

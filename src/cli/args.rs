@@ -1,5 +1,7 @@
 //! The command line as typed.
 
+use std::path::PathBuf;
+
 use clap::{Parser, Subcommand};
 
 /// Traced outlines to smooth router programs.
@@ -21,6 +23,18 @@ const EXIT_STATUSES: &str = "Exit status:
 /// The commands.
 #[derive(Subcommand, Debug)]
 pub(super) enum Command {
+    /// List the machine profiles, or check and explain one of them
+    Machines {
+        /// A built-in profile, or a TOML file
+        #[arg(value_name = "NAME or FILE")]
+        name: Option<String>,
+        /// Write names and limits as JSON instead; without a file to standard output
+        #[arg(long, value_name = "FILE", num_args = 0..=1, default_missing_value = "-")]
+        report: Option<PathBuf>,
+        /// Replace the report if it exists already
+        #[arg(long, requires = "report")]
+        overwrite: bool,
+    },
     /// Print the safety cautions
     Cautions,
 }

@@ -11,6 +11,7 @@ use serde::{Deserialize, Serialize};
 
 use crate::error::{Error, Kind};
 
+pub use crate::num::LengthUnit as Unit;
 pub use builtin::{built_in, names};
 pub use explain::{explain, to_json};
 
@@ -53,35 +54,6 @@ pub struct Machine {
     /// The cutters at hand.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub cutters: Vec<Cutter>,
-}
-
-/// A unit of length.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
-pub enum Unit {
-    /// Millimetre.
-    #[serde(rename = "mm")]
-    Mm,
-    /// Inch of 25.4 mm.
-    #[serde(rename = "in")]
-    Inch,
-}
-
-impl Unit {
-    /// How many mm the unit is.
-    pub fn mm(self) -> f64 {
-        match self {
-            Self::Mm => 1.0,
-            Self::Inch => 25.4,
-        }
-    }
-
-    /// "mm" or "in".
-    pub fn symbol(self) -> &'static str {
-        match self {
-            Self::Mm => "mm",
-            Self::Inch => "in",
-        }
-    }
 }
 
 /// Whether a machine holds its place under the cut.

@@ -12,11 +12,13 @@ use nom::{IResult, Parser};
 use serde::{Deserialize, Deserializer, Serialize, Serializer};
 
 /// A unit of length that a machine can work in.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize)]
 pub enum LengthUnit {
     /// Millimetres.
+    #[serde(rename = "mm")]
     Mm,
     /// Inches of 25.4 mm.
+    #[serde(rename = "in")]
     Inch,
 }
 
@@ -30,7 +32,7 @@ impl LengthUnit {
     }
 
     /// The unit as it is written behind a number.
-    pub fn word(self) -> &'static str {
+    pub fn symbol(self) -> &'static str {
         match self {
             Self::Mm => "mm",
             Self::Inch => "in",
@@ -137,7 +139,7 @@ fn decimal(input: &str) -> IResult<&str, f64> {
 
 impl fmt::Display for Quantity {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        write!(f, "{}{}", self.value, self.unit.map_or("", LengthUnit::word))
+        write!(f, "{}{}", self.value, self.unit.map_or("", LengthUnit::symbol))
     }
 }
 

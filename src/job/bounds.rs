@@ -1,0 +1,80 @@
+//! The bounds of the settings: each with its name, its range and the reason for it.
+
+use crate::error::{Error, Kind};
+
+/// A range that a setting must lie in, whatever the machine. Outside it the setting is a slip of unit or of the hand.
+pub(super) struct Bound {
+    /// The setting's name.
+    pub(super) name: &'static str,
+    /// The unit the range is in.
+    pub(super) unit: &'static str,
+    /// The smallest value.
+    pub(super) least: f64,
+    /// The largest value.
+    pub(super) most: f64,
+    /// Why not beyond.
+    pub(super) reason: &'static str,
+}
+
+pub(super) const TOLERANCE: Bound =
+    Bound { name: "tolerance", unit: "mm", least: 1e-5, most: 10.0, reason: "shapes are lost beyond it" };
+pub(super) const JOIN: Bound = Bound {
+    name: "join",
+    unit: "mm",
+    least: 0.0,
+    most: 100.0,
+    reason: "a longer gap is not a slip of drawing",
+};
+pub(super) const FIT_WIDTH: Bound =
+    Bound { name: "fit-width", unit: "mm", least: 0.01, most: 1e5, reason: "no machine cuts such a part" };
+pub(super) const SCALE: Bound =
+    Bound { name: "scale", unit: "", least: 1e-6, most: 1e6, reason: "no drawing is that far off its size" };
+pub(super) const DEPTH: Bound =
+    Bound { name: "depth", unit: "mm", least: 0.01, most: 1e3, reason: "no cutter cuts such a depth" };
+pub(super) const PASS: Bound =
+    Bound { name: "pass", unit: "mm", least: 0.01, most: 1e3, reason: "no cutter cuts such a depth" };
+pub(super) const FEED: Bound =
+    Bound { name: "feed", unit: "mm/min", least: 1.0, most: 1e5, reason: "no cutter works at such a feed" };
+pub(super) const PLUNGE: Bound =
+    Bound { name: "plunge", unit: "mm/min", least: 1.0, most: 1e5, reason: "no cutter works at such a feed" };
+pub(super) const SPINDLE: Bound = Bound {
+    name: "spindle",
+    unit: "rev/min",
+    least: 1.0,
+    most: 1e6,
+    reason: "no spindle turns at such a speed",
+};
+pub(super) const CUTTER: Bound =
+    Bound { name: "cutter", unit: "mm", least: 0.05, most: 200.0, reason: "no router takes such a cutter" };
+pub(super) const THICKNESS: Bound =
+    Bound { name: "thickness", unit: "mm", least: 0.01, most: 1e3, reason: "no router takes such stock" };
+pub(super) const CLEARANCE: Bound = Bound {
+    name: "clearance",
+    unit: "mm",
+    least: 0.5,
+    most: 500.0,
+    reason: "closer above the stock chips are hit",
+};
+
+impl Bound {
+    /// `value`, if it lies in the range.
+    pub(super) fn hold(&self, value: f64) -> Result<f64, Error> {
+        if (self.least..=self.most).contains(&value) {
+            return Ok(value);
+        }
+        let Self { name, unit, least, most, reason } = self;
+        let gap = if unit.is_empty() { "" } else { " " };
+        let what =
+            format!("{name} is {value}{gap}{unit}, and must be from {least} to {most}{gap}{unit}: {reason}");
+        Err(Error::new(Kind::Settings, what).remedy(format!("correct --{name}, and look at its unit")))
+    }
+}
+
+/// Refuses a value that the machine or the cutter cannot do.
+pub(super) fn at_most(name: &str, value: f64, most: f64, unit: &str, whose: &str) -> Result<(), Error> {
+    if value <= most {
+        return Ok(());
+    }
+    let what = format!("{name} is {value} {unit}, and {whose} allows {most} {unit}");
+    Err(Error::new(Kind::Refused, what).remedy(format!("lower --{name}")))
+}
