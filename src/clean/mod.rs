@@ -2,12 +2,16 @@
 //! closed, doubled lines removed. What was done is counted, and every flaw is placed.
 
 mod chain;
+mod corners;
 mod flaw;
+mod roughness;
 mod tidy;
 
 use crate::sketch::{Contour, Sketch};
 
+pub use corners::{CornerPlace, corners};
 pub use flaw::{Flaw, FlawKind};
+pub use roughness::{Roughness, Support, Texture, roughness};
 
 /// A drawing put right, with what was wrong.
 #[derive(Clone, Debug, Default)]

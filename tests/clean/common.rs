@@ -63,3 +63,48 @@ impl Dice {
         }
     }
 }
+
+/// One outline of the manifest.
+pub(crate) struct Outline {
+    pub(crate) id: String,
+    /// The figures that the manifest gives.
+    pub(crate) figures: serde_json::Value,
+    pub(crate) paths: Vec<ArcSpline>,
+}
+
+/// The outlines of the fixtures.
+pub(crate) fn outlines() -> Vec<Outline> {
+    let manifest: serde_json::Value = serde_json::from_str(&fixture("manifest.json")).unwrap();
+    let all = manifest["outlines"].as_array().unwrap();
+    all.iter()
+        .map(|figures| Outline {
+            id: figures["id"].as_str().unwrap().to_string(),
+            figures: figures.clone(),
+            paths: points(&fixture(figures["csv"].as_str().unwrap())),
+        })
+        .collect()
+}
+
+/// A text among the outlines.
+pub(crate) fn fixture(name: &str) -> String {
+    let path = format!("{}/fixtures/outlines/{name}", env!("CARGO_MANIFEST_DIR"));
+    std::fs::read_to_string(&path).unwrap_or_else(|e| panic!("{path}: {e}"))
+}
+
+/// The polylines of a point list: an empty line between them, closed where the first point is repeated.
+fn points(text: &str) -> Vec<ArcSpline> {
+    let point = |line: &str| {
+        let (x, y) = line.split_once(',')?;
+        Some(at(x.parse().ok()?, y.parse().ok()?))
+    };
+    let blocks = text.trim().split("\n\n").map(|block| block.lines().filter_map(point).collect::<Vec<_>>());
+    blocks
+        .map(|mut p| {
+            let closed = p.len() > 2 && p.first() == p.last();
+            if closed {
+                p.pop();
+            }
+            ArcSpline::polyline(p, closed)
+        })
+        .collect()
+}

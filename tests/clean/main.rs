@@ -2,3 +2,4 @@
 
 mod chaining;
 mod common;
+mod jaggedness;
