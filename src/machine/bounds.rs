@@ -151,8 +151,8 @@ fn controller_numbers(m: &Machine) -> Vec<Bounded> {
             "program.longest_line",
             f64::from(p.longest_line),
             Plain("characters"),
-            (64.0, 256.0),
-            "a block of five words must fit, and the language ends lines at 256",
+            (80.0, 256.0),
+            "a block of seven words must fit, and the language ends lines at 256",
         ),
         number(
             "program.line_numbers",

@@ -1,0 +1,4 @@
+//! Programs: written, read back, and read from elsewhere.
+
+mod common;
+mod written;
