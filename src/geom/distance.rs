@@ -54,13 +54,15 @@ pub fn frechet(path: &ArcSpline, contour: &ArcSpline) -> Deviation {
     }
 }
 
-/// The largest coordinate of a chain in size, bulges included; `None` when it is empty or not finite.
+/// A bound of the coordinates of a chain in size; `None` when it is empty or not finite.
 fn scale(chain: &ArcSpline) -> Option<f64> {
-    let finite = |v: &super::Vertex| v.at.is_finite() && v.bulge.is_finite();
-    let bbox = if chain.vertices.iter().all(finite) { chain.bbox() } else { None }?;
-    let scale = bbox.x0.abs().max(bbox.x1.abs()).max(bbox.y0.abs()).max(bbox.y1.abs());
+    let size = |p: Point| p.x.abs().max(p.y.abs());
+    let corners = chain.vertices.iter().map(|v| size(v.at)).reduce(f64::max)?;
+    let arcs = chain.spans().filter(|s| !s.is_line()).map(|s| s.sagitta()).fold(0.0, f64::max);
+    let finite = chain.vertices.iter().all(|v| v.at.is_finite() && v.bulge.is_finite());
+    let scale = corners + arcs;
     // Squares of coordinates must stay finite too.
-    (scale * scale * 16.0).is_finite().then_some(scale)
+    (finite && (scale * scale * 16.0).is_finite()).then_some(scale)
 }
 
 /// A bound with its place.
@@ -87,28 +89,40 @@ impl Bound {
 }
 
 fn polyline_distance(path: &Chords, contour: &Chords) -> Bound {
-    let forward = one_way(path, contour);
-    if direction_is_settled(path, contour, forward.mm) {
-        return forward;
+    let directions = Directions::of(path, contour);
+    let bound = one_way(path, contour, directions.against);
+    if bound.mm <= directions.other {
+        bound
+    } else {
+        bound.least(one_way(path, contour, !directions.against))
     }
-    let mut reversed = contour.clone();
-    reversed.points.reverse();
-    forward.least(one_way(path, &reversed))
 }
 
-/// True when a reversed contour cannot be nearer than `mm`: by the ends of open chains; by the areas of closed ones,
-/// which differ by no more than distance times length when the chains run alike.
-fn direction_is_settled(path: &Chords, contour: &Chords, mm: f64) -> bool {
-    if path.closed != contour.closed {
-        return false;
-    }
-    if !path.closed {
-        let ends = |c: &Chords| (c.points[0], c.points[c.points.len() - 1]);
+/// In which direction to walk the contour first.
+struct Directions {
+    /// True when against its own.
+    against: bool,
+    /// A distance that the other direction does not come below, in mm.
+    other: f64,
+}
+
+impl Directions {
+    /// By the ends of open chains; by the areas of closed ones, which differ by no more than distance times length
+    /// when the chains run alike.
+    fn of(path: &Chords, contour: &Chords) -> Self {
+        if path.closed && contour.closed {
+            let (p, q) = (Extent::of(path), Extent::of(contour));
+            let other = p.area.abs().min(q.area.abs()) / p.length.max(q.length);
+            return Self { against: p.area * q.area < 0.0, other: if other.is_nan() { 0.0 } else { other } };
+        }
+        let ends =
+            |c: &Chords| (c.points[0], if c.closed { c.points[0] } else { c.points[c.points.len() - 1] });
         let ((p0, p1), (q0, q1)) = (ends(path), ends(contour));
-        return p0.distance(q1).max(p1.distance(q0)) >= mm;
+        let along = p0.distance(q0).max(p1.distance(q1));
+        let against = p0.distance(q1).max(p1.distance(q0));
+        let other = if path.closed == contour.closed { along.max(against) } else { 0.0 };
+        Self { against: against < along, other }
     }
-    let (p, q) = (Extent::of(path), Extent::of(contour));
-    p.area * q.area > 0.0 && p.area.abs().min(q.area.abs()) > mm * p.length.max(q.length)
 }
 
 /// Area and length of a closed polyline.
@@ -127,14 +141,21 @@ impl Extent {
     }
 }
 
-/// The bound for chains that run the same way.
-fn one_way(path: &Chords, contour: &Chords) -> Bound {
-    let (p, q) = (path.lap(), contour.lap());
+/// The bound for chains walked the same way, the contour against its own direction if asked.
+fn one_way(path: &Chords, contour: &Chords, against: bool) -> Bound {
+    let (p, mut q) = (path.lap(), contour.lap());
+    if against {
+        q.reverse();
+    }
+    let open_path = |p: Vec<Point>| open_bound(&p, &q);
+    let open_contour = |q: Vec<Point>| open_bound(&p, &q);
     match (path.closed, contour.closed) {
         (false, false) => open_bound(&p, &q),
         (true, true) => closed_bound(&p, &q),
-        (true, false) => openings(&p, q[0]).map(|p| open_bound(&p, &q)).fold(Bound::none(q[0]), Bound::least),
-        (false, true) => openings(&q, p[0]).map(|q| open_bound(&p, &q)).fold(Bound::none(q[0]), Bound::least),
+        (true, false) => openings(&p, q[0]).map(|o| open_path(o.lap)).fold(Bound::none(q[0]), Bound::least),
+        (false, true) => {
+            openings(&q, p[0]).map(|o| open_contour(o.lap)).fold(Bound::none(q[0]), Bound::least)
+        }
     }
 }
 
@@ -143,13 +164,16 @@ fn one_way(path: &Chords, contour: &Chords) -> Bound {
 /// pulls the match elsewhere.
 fn closed_bound(path: &[Point], contour: &[Point]) -> Bound {
     let mut best: Option<(Coupling, Vec<Point>)> = None;
-    for open in openings(path, contour[0]) {
-        let coupling = Walk::new(&open, contour).couple();
-        if is_tight(&coupling, furthest(&open, contour, &coupling)) {
+    for opening in openings(path, contour[0]) {
+        if best.as_ref().is_some_and(|(least, _)| opening.distance >= least.mm) {
+            break;
+        }
+        let coupling = Walk::new(&opening.lap, contour).couple();
+        if is_tight(&coupling, furthest(&opening.lap, contour, &coupling)) {
             return coupling.into();
         }
         if best.as_ref().is_none_or(|(least, _)| coupling.mm < least.mm) {
-            best = Some((coupling, open));
+            best = Some((coupling, opening.lap));
         }
     }
     let Some((coupling, open)) = best else { return Bound::none(contour[0]) };
@@ -164,8 +188,15 @@ fn closed_bound(path: &[Point], contour: &[Point]) -> Bound {
     bound.least(coupling.into())
 }
 
+/// A lap opened beside a point.
+struct Opening {
+    lap: Vec<Point>,
+    /// How far the ends are from the point, in mm.
+    distance: f64,
+}
+
 /// A lap opened beside `start`: at each of the few places where it comes nearest, nearest first.
-fn openings(lap: &[Point], start: Point) -> impl Iterator<Item = Vec<Point>> + '_ {
+fn openings(lap: &[Point], start: Point) -> impl Iterator<Item = Opening> + '_ {
     let feet: Vec<Foot> = lap.windows(2).map(|ends| foot(start, ends[0], ends[1])).collect();
     let n = feet.len();
     let is_least = |&k: &usize| {
@@ -178,7 +209,10 @@ fn openings(lap: &[Point], start: Point) -> impl Iterator<Item = Vec<Point>> + '
         minima.push(0);
     }
     minima.truncate(3);
-    minima.into_iter().map(move |k| reopened(lap, k, lap[k].lerp(lap[k + 1], feet[k].t)))
+    minima.into_iter().map(move |k| Opening {
+        lap: reopened(lap, k, lap[k].lerp(lap[k + 1], feet[k].t)),
+        distance: feet[k].squared.sqrt(),
+    })
 }
 
 /// The bound for two open polylines of at least two corners, walked from first to last.
