@@ -15,6 +15,8 @@ pub struct Drawing {
     pub elements: Vec<Element>,
     /// The unit that the file states itself, if it does.
     pub unit: Option<FileUnit>,
+    /// The unit to take bare numbers for when neither the file nor the user names one.
+    pub assumed: Option<FileUnit>,
     /// What was read but not kept, or needs a word: one sentence each.
     pub notes: Vec<String>,
 }

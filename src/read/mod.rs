@@ -9,6 +9,7 @@ mod number;
 mod points;
 mod sample;
 mod scale;
+mod svg;
 mod text;
 
 use kurbo::Rect;
@@ -41,7 +42,7 @@ pub fn read(name: &str, bytes: &[u8], scale: &Scale) -> Result<Sketch, Error> {
 /// `Kind::Input` when the content is no drawing or a broken one.
 pub fn read_drawing(bytes: &[u8]) -> Result<Drawing, Error> {
     match text::tell(bytes)? {
-        Content::Xml(_) => Err(Error::new(Kind::Input, "SVG is not read yet")),
+        Content::Xml(text) => svg::read(&text),
         Content::Dxf(bytes) => dxf::read(&bytes),
         Content::Points(text) => points::read(&text),
     }
@@ -58,7 +59,7 @@ pub fn to_sketch(mut drawing: Drawing, scale: &Scale) -> Result<Sketch, Error> {
     }
     let bbox = drawing.elements.iter().filter_map(|e| e.chain.bbox()).reduce(|a, b| a.union(b));
     let bbox = bbox.ok_or_else(|| nothing_drawn(&drawing.notes))?;
-    let settled = scale.settle(drawing.unit.as_ref(), bbox)?;
+    let settled = scale.settle(&drawing, bbox)?;
     check_extent(bbox, settled.mm_per_unit)?;
 
     let mut sketch =

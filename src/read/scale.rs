@@ -2,6 +2,7 @@
 
 use kurbo::Rect;
 
+use super::curve::Drawing;
 use crate::error::{Error, Kind};
 
 /// Millimetres to an inch, exactly.
@@ -94,22 +95,20 @@ impl Scale {
     }
 
     /// Settles the scale of a drawing whose box in its own units is `bbox`.
-    pub(super) fn settle(&self, own: Option<&FileUnit>, bbox: Rect) -> Result<Settled, Error> {
+    pub(super) fn settle(&self, drawing: &Drawing, bbox: Rect) -> Result<Settled, Error> {
         if let Some(width) = self.fit_width_mm {
             return fit_width(width * self.scale, bbox);
         }
-        let settled = match (own, self.drawing_unit) {
-            (Some(own), said) => Settled {
-                mm_per_unit: own.mm,
-                from: own.said_by.clone(),
-                note: said.and_then(|unit| overruled(own, unit)),
-            },
-            (None, Some(unit)) => Settled {
+        let said = |unit: &FileUnit, note| Settled { mm_per_unit: unit.mm, from: unit.said_by.clone(), note };
+        let settled = match (&drawing.unit, self.drawing_unit, &drawing.assumed) {
+            (Some(own), named, _) => said(own, named.and_then(|unit| overruled(own, unit))),
+            (None, Some(unit), _) => Settled {
                 mm_per_unit: unit.mm(),
                 from: format!("--drawing-unit {}", unit.name()),
                 note: None,
             },
-            (None, None) => return Err(unknown(bbox)),
+            (None, None, Some(assumed)) => said(assumed, None),
+            (None, None, None) => return Err(unknown(bbox)),
         };
         Ok(self.multiplied(settled))
     }

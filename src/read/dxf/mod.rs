@@ -34,7 +34,7 @@ pub(super) fn read(bytes: &[u8]) -> Result<Drawing, Error> {
         walk.notes.sentences.push("the file has no end mark (EOF), so something may be missing".to_owned());
     }
     let unit = unit(&document, &mut walk.notes.sentences)?;
-    Ok(Drawing { elements: walk.elements, unit, notes: walk.notes.into_sentences() })
+    Ok(Drawing { elements: walk.elements, unit, assumed: None, notes: walk.notes.into_sentences() })
 }
 
 /// The unit that `$INSUNITS` states; `None` when it states none.
