@@ -47,7 +47,7 @@ pub(super) fn groups(text: &str) -> Result<Vec<Group<'_>>, Error> {
             }
             return Err(no_code(code_text, line - 1));
         };
-        let Ok((after_value, value)) = text_line(after_code) else { return Err(no_value(code, line)) };
+        let Ok((after_value, value)) = text_line(after_code) else { return Err(no_value(code, line - 1)) };
         rest = after_value;
         if code == 999 {
             continue;

@@ -76,35 +76,32 @@ impl Notes {
     /// All of it in sentences.
     pub(super) fn into_sentences(self) -> Vec<String> {
         let mut told = self.sentences;
-        let each = |counts: &Counts, told: &mut Vec<String>, tell: &dyn Fn(&str, usize) -> String| {
-            told.extend(counts.iter().map(|(name, &n)| tell(name, n)));
+        let mut tell = |counts: &Counts, sentence: &dyn Fn(&str, usize) -> String| {
+            told.extend(counts.iter().map(|(name, &n)| sentence(name, n)));
         };
-        each(&self.not_read, &mut told, &|kind, n| format!("{n} {kind} {} not read", verb(n)));
-        each(&self.empty, &mut told, &|kind, n| format!("{n} {kind} without length {} not read", verb(n)));
-        each(&self.hidden, &mut told, &|layer, n| {
-            format!("{} on layer “{layer}”, which is off or frozen, {} not read", entities(n), verb(n))
+        tell(&self.not_read, &|kind, n| format!("{} not read", entities(n, kind)));
+        tell(&self.empty, &|kind, n| format!("{} without length and not read", entities(n, kind)));
+        tell(&self.hidden, &|layer, n| {
+            format!("{} not read: layer “{layer}” is off or frozen", entities(n, ""))
         });
-        each(&self.unplotted, &mut told, &|layer, n| {
-            format!("{} on layer “{layer}”, which is not plotted, {} read all the same", entities(n), verb(n))
+        tell(&self.unplotted, &|layer, n| {
+            format!("{} read from layer “{layer}”, which is not plotted", entities(n, ""))
         });
-        each(&self.undefined, &mut told, &|block, n| {
-            format!("block “{block}” is not in the file: {n} INSERT of it {} not read", verb(n))
+        tell(&self.undefined, &|block, n| {
+            format!("{} not read: the file has no block “{block}”", entities(n, "INSERT"))
         });
-        each(&self.external, &mut told, &|block, n| {
-            format!("block “{block}” stands in another file: {n} INSERT of it {} not read", verb(n))
+        tell(&self.external, &|block, n| {
+            format!("{} not read: block “{block}” stands in another file", entities(n, "INSERT"))
         });
-        let counted: [(usize, &str); 5] = [
-            (self.invisible, "marked invisible, not read"),
-            (self.paper, "in paper space, not read"),
-            (self.sloped, "not level: read as seen from above"),
-            (
-                self.fitted,
-                "SPLINE of fit points alone: read as the cubic spline through them by chord length",
-            ),
-            (self.unclosed, "SPLINE said to be closed whose ends do not meet: left open"),
+        let counted = [
+            (self.invisible, "", "not read: marked invisible"),
+            (self.paper, "", "not read: in paper space"),
+            (self.sloped, "", "not level, and read as seen from above"),
+            (self.fitted, "SPLINE", "given by fit points alone, and read as the cubic spline through them"),
+            (self.unclosed, "SPLINE", "said to be closed, but left open: the ends do not meet"),
         ];
-        let counted = counted.iter().filter(|(n, _)| *n > 0);
-        told.extend(counted.map(|&(n, what)| format!("{} {what}", entities(n))));
+        let counted = counted.iter().filter(|(n, ..)| *n > 0);
+        told.extend(counted.map(|&(n, kind, what)| format!("{} {what}", entities(n, kind))));
         told
     }
 }
@@ -118,10 +115,9 @@ fn count(counts: &mut Counts, name: &str) {
     }
 }
 
-fn entities(n: usize) -> String {
-    format!("{n} {}", if n == 1 { "entity" } else { "entities" })
-}
-
-fn verb(n: usize) -> &'static str {
-    if n == 1 { "is" } else { "are" }
+/// "1 TEXT entity is", "2 TEXT entities are".
+fn entities(n: usize, kind: &str) -> String {
+    let blank = if kind.is_empty() { "" } else { " " };
+    let noun = if n == 1 { "entity is" } else { "entities are" };
+    format!("{n} {kind}{blank}{noun}")
 }

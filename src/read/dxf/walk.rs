@@ -136,6 +136,10 @@ impl<'d, 'a> Walk<'d, 'a> {
             return Ok(());
         }
         check_nesting(record, name, around)?;
+        if record.real_or(41, 1.0)? == 0.0 || record.real_or(42, 1.0)? == 0.0 {
+            self.notes.empty("INSERT");
+            return Ok(());
+        }
         let grid = Grid::new(record, &point(&block.record, 10)?, &around.placement)?;
         let colour = self.colour(record, layer, around)?;
         let blocks = around.blocks.iter().copied().chain([name]).collect();
