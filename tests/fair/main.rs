@@ -1,3 +1,4 @@
 //! The fairing room: cubic splines, and the least-bending one inside a tolerance.
 
+mod least;
 mod splines;
