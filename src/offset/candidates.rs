@@ -17,8 +17,8 @@ pub(super) struct Candidate {
 /// outline.
 pub(super) fn lay_out(region: &Region, radius: f64) -> Vec<Candidate> {
     let mut kept = Vec::new();
-    for (along, chain) in region.loops.iter().enumerate() {
-        for span in parallels(chain, radius).filter(|span| span.length() > region.snap) {
+    for (along, outline) in region.loops.iter().enumerate() {
+        for span in parallels(&outline.path, radius).filter(|span| span.length() > region.snap) {
             let mut stretches = Vec::new();
             let room = Room { region, radius, span, length: span.length() };
             room.open_stretches(0.0, 1.0, &mut stretches);
@@ -71,7 +71,7 @@ impl Room<'_> {
             return;
         }
         match open.last_mut() {
-            Some(last) if last.1 == t0 => last.1 = t1,
+            Some(last) if last.1.total_cmp(&t0).is_eq() => last.1 = t1,
             _ => open.push((t0, t1)),
         }
     }

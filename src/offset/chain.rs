@@ -171,7 +171,7 @@ fn line(walk: &[Piece], snap: f64) -> Option<CentreLine> {
 
 /// The spans of a walk, with the cuts taken out again where it runs on along the same candidate.
 fn merged(walk: &[Piece]) -> Vec<Span> {
-    let runs_on = |a: &Piece, b: &Piece| a.of == b.of && a.t1 == b.t0;
+    let runs_on = |a: &Piece, b: &Piece| a.of == b.of && a.t1.total_cmp(&b.t0).is_eq();
     // Begin where a candidate begins, so that the last and the first need no merging.
     let count = walk.len();
     let start = (0..count).find(|&i| !runs_on(&walk[(i + count - 1) % count], &walk[i])).unwrap_or(0);

@@ -11,6 +11,9 @@ mod candidates;
 mod chain;
 mod pieces;
 mod region;
+mod sharp;
+mod simple;
+mod uncut;
 
 use kurbo::Point;
 
@@ -19,6 +22,8 @@ use crate::geom::ArcSpline;
 
 use chain::Fault;
 use region::Region;
+
+pub use uncut::{Uncut, uncut};
 
 /// Which side of the outline the cutter stays on.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -29,11 +34,24 @@ pub enum Side {
     Outside,
 }
 
+/// How the cutter passes a corner that juts out towards it.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
+pub enum Corners {
+    /// About the corner, on an arc.
+    #[default]
+    Round,
+    /// Straight past it and back, where the corner turns by no more than a right angle and the way is free: fewer
+    /// blocks, and the corner itself is not rubbed.
+    Sharp,
+}
+
 /// The lines of the cutter's centre about one region.
 #[derive(Clone, Debug, Default)]
 pub struct Compensated {
     /// The closed lines. Each has the outline on its right, so that a cutter which turns clockwise climbs.
     pub lines: Vec<CentreLine>,
+    /// The places where the loops cross or touch themselves or each other.
+    pub contacts: Vec<Point>,
     /// The loops, by their place in the input, that no line follows: the cutter is too large for them.
     pub vanished: Vec<usize>,
 }
@@ -47,25 +65,31 @@ pub struct CentreLine {
     pub along: Vec<usize>,
 }
 
-/// The lines of the cutter's centre at `radius` mm from the region that the closed `loops` bound by even and odd, on
-/// `side` of it.
+/// The lines of the cutter's centre at `radius` mm from the region that the closed `loops` bound, on `side` of it. A
+/// point belongs to the region when an odd number of loops run round it, so that a loop in a loop is a hole; loops
+/// may cross, and the places where they do are told.
 ///
 /// A line is within rounding error of its exact place (below the square root of `f64::EPSILON` times the drawing's
-/// size); convex corners are rounded about the corner.
+/// size).
 ///
 /// # Errors
-/// Refused for a loop that is open, crosses itself or another, or that could not be followed without a doubt.
+/// Refused for a loop that is open or a point, or that could not be followed without a doubt.
 ///
 /// ```
 /// use ribband::geom::ArcSpline;
-/// use ribband::offset::{Side, compensate};
+/// use ribband::offset::{Corners, Side, compensate};
 ///
 /// let square = ArcSpline::polyline([(0.0, 0.0), (10.0, 0.0), (10.0, 10.0), (0.0, 10.0)].map(Into::into), true);
-/// let inside = compensate(&[square], 2.0, Side::Inside)?;
+/// let inside = compensate(&[square], 2.0, Side::Inside, Corners::Round)?;
 /// assert!((inside.lines[0].path.area() - 36.0).abs() < 1e-9);
 /// # Ok::<(), ribband::error::Error>(())
 /// ```
-pub fn compensate(loops: &[ArcSpline], radius: f64, side: Side) -> Result<Compensated, Error> {
+pub fn compensate(
+    loops: &[ArcSpline],
+    radius: f64,
+    side: Side,
+    corners: Corners,
+) -> Result<Compensated, Error> {
     if !(radius.is_finite() && radius > 0.0) {
         return Err(Error::new(
             Kind::Settings,
@@ -78,7 +102,13 @@ pub fn compensate(loops: &[ArcSpline], radius: f64, side: Side) -> Result<Compen
     let mut fault = Fault { at: Point::ORIGIN };
     for k in 0..TRIES {
         match follow(&region, radius + f64::from(k) * region.snap) {
-            Ok(lines) => return Ok(Compensated { vanished: vanished(loops.len(), &lines), lines }),
+            Ok(mut lines) => {
+                if corners == Corners::Sharp {
+                    lines.iter_mut().for_each(|l| l.path = sharp::sharpened(&region, radius, &l.path));
+                }
+                let vanished = vanished(loops.len(), &lines);
+                return Ok(Compensated { lines, contacts: region.contacts, vanished });
+            }
             Err(found) => fault = found,
         }
     }
@@ -89,9 +119,12 @@ pub fn compensate(loops: &[ArcSpline], radius: f64, side: Side) -> Result<Compen
 fn follow(region: &Region, radius: f64) -> Result<Vec<CentreLine>, Fault> {
     let candidates = candidates::lay_out(region, radius);
     let pieces = pieces::valid(region, radius, &candidates);
-    let lines = chain::chain(pieces, region.snap)?;
-    for line in &lines {
+    let mut lines = chain::chain(pieces, region.snap)?;
+    for line in &mut lines {
         region.verify(line, radius)?;
+        line.along = line.along.iter().flat_map(|&i| region.loops[i].along.iter().copied()).collect();
+        line.along.sort_unstable();
+        line.along.dedup();
     }
     Ok(lines)
 }

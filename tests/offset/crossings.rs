@@ -26,7 +26,8 @@ fn places(a: &Span, b: &Span) -> Vec<(f64, f64)> {
 
 #[test]
 fn spans_meet_where_geometry_says() {
-    let rows: [(&str, Span, Span, &[(f64, f64)]); 14] = [
+    type Row = (&'static str, Span, Span, &'static [(f64, f64)]);
+    let rows: [Row; 14] = [
         ("crossing lines", line(0.0, 0.0, 4.0, 4.0), line(0.0, 4.0, 4.0, 0.0), &[(2.0, 2.0)]),
         ("lines apart", line(0.0, 0.0, 1.0, 1.0), line(0.0, 4.0, 4.0, 0.0), &[]),
         ("parallel lines", line(0.0, 0.0, 4.0, 0.0), line(0.0, 1.0, 4.0, 1.0), &[]),

@@ -6,7 +6,7 @@ use approx::assert_abs_diff_eq;
 use kurbo::{Point, Vec2};
 use proptest::prelude::*;
 use ribband::geom::{ArcSpline, Vertex};
-use ribband::offset::{Compensated, Side, compensate};
+use ribband::offset::{CentreLine, Compensated, Corners, Side, compensate, uncut};
 
 fn vertex(x: f64, y: f64, bulge: f64) -> Vertex {
     Vertex { at: Point::new(x, y), bulge }
@@ -25,11 +25,11 @@ fn square(x: f64, y: f64, side: f64) -> ArcSpline {
 }
 
 fn outside(loops: &[ArcSpline], radius: f64) -> Compensated {
-    compensate(loops, radius, Side::Outside).expect("there is a line outside")
+    compensate(loops, radius, Side::Outside, Corners::Round).expect("there is a line outside")
 }
 
 fn inside(loops: &[ArcSpline], radius: f64) -> Compensated {
-    compensate(loops, radius, Side::Inside).expect("there is a line inside, or none")
+    compensate(loops, radius, Side::Inside, Corners::Round).expect("there is a line inside, or none")
 }
 
 /// Lengths and unsigned areas of all lines, largest first.
@@ -62,7 +62,7 @@ fn nist_tables_12_and_13() {
     let table_13 = [(2.0, 3.5), (3.5, 2.0), (3.5, -1.0), (2.0, -2.5), (-2.0, -2.5), (-2.9, 0.2), (1.1, 3.2)]
         .map(Point::from);
     let edge = ArcSpline { vertices: edge.to_vec(), closed: true };
-    let lines = outside(&[edge.clone()], 0.5);
+    let lines = outside(std::slice::from_ref(&edge), 0.5);
     assert_one(&lines, 12.0 + 3.0 * PI, 24.0 + 9.0 * PI / 4.0);
     let path = &lines.lines[0].path;
     assert_eq!(path.len(), table_13.len());
@@ -71,7 +71,7 @@ fn nist_tables_12_and_13() {
         assert!(nearest < 1e-9, "{expected:?} is missing by {nearest}");
     }
     // And back again: the inner parallel of table 13's path is table 12's edge.
-    assert_one(&inside(&[path.clone()], 0.5), 12.0 + 2.0 * PI, 18.0 + PI);
+    assert_one(&inside(std::slice::from_ref(path), 0.5), 12.0 + 2.0 * PI, 18.0 + PI);
 }
 
 /// Steiner: outside a convex shape by r, length grows by 2 pi r and area by L r + pi r^2.
@@ -134,7 +134,7 @@ fn a_neck_splits_the_line_in_two() {
         (0.0, 10.0),
     ]);
     // Each line: a square of 6 and a beak of less than 4 by 2 towards the channel.
-    let lines = inside(&[dumbbell.clone()], 2.0);
+    let lines = inside(std::slice::from_ref(&dumbbell), 2.0);
     let found = measures(&lines);
     assert_eq!(found.len(), 2);
     for (_, area) in &found {
@@ -142,7 +142,7 @@ fn a_neck_splits_the_line_in_two() {
     }
     assert_eq!(lines.lines[0].along, [0]);
     // A channel as wide as the cutter does not join them either; one a little wider does.
-    assert_eq!(inside(&[dumbbell.clone()], 1.5).lines.len(), 2);
+    assert_eq!(inside(std::slice::from_ref(&dumbbell), 1.5).lines.len(), 2);
     assert_eq!(inside(&[dumbbell], 1.499).lines.len(), 1);
 }
 
@@ -168,14 +168,73 @@ fn parts_closer_than_the_cutter_share_one_line() {
 }
 
 #[test]
-fn an_outline_without_sides_is_refused() {
-    let bow_tie = polygon(&[(0.0, 0.0), (10.0, 10.0), (10.0, 0.0), (0.0, 12.0)]);
-    let error = compensate(&[bow_tie], 1.0, Side::Outside).expect_err("a bow tie has no sides");
-    assert!(error.to_string().contains("crosses itself at (5.455, 5.455)"), "{error}");
+fn an_outline_that_crosses_itself_bounds_all_it_runs_round() {
+    // A bow tie of two triangles that share the corner (5, 5): the line goes about both.
+    let bow_tie = polygon(&[(0.0, 0.0), (10.0, 10.0), (10.0, 0.0), (0.0, 10.0)]);
+    let lines = outside(std::slice::from_ref(&bow_tie), 1.0);
+    assert_eq!(lines.contacts, [Point::new(5.0, 5.0)]);
+    // Each waist is a right angle that the cutter touches at both sides, sqrt 2 from the crossing.
+    let length = 2.0 * 10.0 + 4.0 * (50.0_f64.sqrt() - 1.0) + 4.0 * 3.0 * PI / 4.0;
+    let [(found, _)] = measures(&lines)[..] else { panic!("one line expected: {lines:?}") };
+    assert_abs_diff_eq!(found, length, epsilon = 1e-9);
+    let triangles = measures(&inside(&[bow_tie], 1.0));
+    assert_eq!(triangles.len(), 2);
+    // A right isosceles triangle with legs sqrt 50 and inscribed radius r0, shrunk by 1: similar, by (r0 - 1) / r0.
+    let r0 = 2.0 * 25.0 / (10.0 + 2.0 * 50.0_f64.sqrt());
+    for (_, area) in triangles {
+        assert_abs_diff_eq!(area, 25.0 * (1.0 - 1.0 / r0).powi(2), epsilon = 1e-9);
+    }
+    // Two squares that overlap: the square they share is in neither by even and odd.
+    let overlapping = [square(0.0, 0.0, 10.0), square(6.0, 6.0, 10.0)];
+    assert_eq!(inside(&overlapping, 0.5).lines.len(), 2);
+    assert_eq!(outside(&overlapping, 0.5).lines.len(), 2, "about the two, and within what they share");
+}
+
+#[test]
+fn an_outline_without_an_inside_is_refused() {
     let open = ArcSpline::polyline([(0.0, 0.0), (5.0, 0.0), (5.0, 5.0)].map(Point::from), false);
-    let error = compensate(&[open], 1.0, Side::Inside).expect_err("an open chain has no inside");
+    let error =
+        compensate(&[open], 1.0, Side::Inside, Corners::Round).expect_err("an open chain has no inside");
     assert!(error.to_string().contains("is open"), "{error}");
-    assert!(compensate(&[square(0.0, 0.0, 1.0)], f64::NAN, Side::Inside).is_err());
+    assert!(compensate(&[square(0.0, 0.0, 1.0)], f64::NAN, Side::Inside, Corners::Round).is_err());
+}
+
+#[test]
+fn sharp_corners_run_straight_past() {
+    let sharp = |loops: &[ArcSpline], radius| {
+        compensate(loops, radius, Side::Outside, Corners::Sharp).expect("there is a line outside")
+    };
+    let lines = sharp(&[square(0.0, 0.0, 10.0)], 2.0);
+    assert_one(&lines, 56.0, 196.0);
+    assert_eq!(lines.lines[0].path.len(), 4, "each side is one line");
+    // Sharper than a right angle: round. A triangle of 3, 4, 5 has one right angle only, and two arcs stay.
+    let lines = sharp(&[polygon(&[(0.0, 0.0), (4.0, 0.0), (0.0, 3.0)])], 1.0);
+    assert_eq!(lines.lines[0].path.spans().filter(|s| !s.is_line()).count(), 2);
+    assert_one(&lines, 12.0 + TAU + 2.0 - PI / 2.0, 6.0 + 12.0 + PI + 1.0 - PI / 4.0);
+    // A wall stands where the corner's point would be: that corner stays round.
+    let walled = [square(0.0, 0.0, 10.0), square(13.9, 11.9, 10.0)];
+    let arcs = |l: &CentreLine| l.path.spans().filter(|s| !s.is_line()).count();
+    assert_eq!(sharp(&walled, 2.0).lines.iter().map(arcs).collect::<Vec<_>>(), [1, 1]);
+}
+
+#[test]
+fn inside_corners_are_listed_with_what_stays() {
+    let shape = [square(0.0, 0.0, 10.0)];
+    let found = uncut(&shape, &inside(&shape, 2.0), 2.0, 0.01);
+    assert_eq!(found.len(), 4);
+    for corner in found {
+        // A cutter of radius 2 misses the corner by 2 (sqrt 2 - 1), and leaves the sides 2 mm before it, less the
+        // tolerance: where 2 - sqrt(4 - s^2) = 0.01.
+        assert_abs_diff_eq!(corner.gap_mm, 2.0 * (2.0_f64.sqrt() - 1.0), epsilon = 1e-9);
+        let side = 2.0 - (2.01_f64 * 2.01 - 4.0).sqrt();
+        assert_abs_diff_eq!(corner.length_mm, 2.0 * side, epsilon = 0.04);
+        assert!(corner.at.x % 10.0 == 0.0 && corner.at.y % 10.0 == 0.0, "at the corner itself");
+    }
+    assert!(uncut(&shape, &outside(&shape, 2.0), 2.0, 0.01).is_empty(), "outside nothing stays");
+    let small = [square(0.0, 0.0, 3.0)];
+    let found = uncut(&small, &inside(&small, 2.0), 2.0, 0.01);
+    assert_eq!(found.len(), 1);
+    assert!(found[0].gap_mm.is_infinite(), "nothing of it is cut");
 }
 
 proptest! {

@@ -2,3 +2,4 @@
 
 mod crossings;
 mod exact;
+mod outlines;

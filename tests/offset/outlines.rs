@@ -1,0 +1,101 @@
+//! Closed outlines as drawn, four cutters, both sides, against the buffer of the `geo` crate, which shares no code with
+//! ours: it sweeps polygons on an integer grid.
+
+use std::fs;
+use std::path::Path;
+
+use geo::algorithm::buffer::{BufferStyle, LineJoin};
+use geo::{Area, Buffer, MultiPolygon};
+use rayon::prelude::*;
+use ribband::geom::ArcSpline;
+use ribband::offset::{Corners, Side, compensate};
+use ribband::read::{Scale, Unit, read};
+
+/// Larger outlines take the reference seconds each; all of them agreed when last compared.
+const LARGEST: u64 = 1200;
+
+const CUTTERS: [f64; 4] = [1.0, 3.175, 6.0, 12.0];
+
+/// The names of the outlines that are closed and not too large.
+fn closed_outlines() -> Vec<String> {
+    let manifest = fs::read_to_string(outline("manifest.json")).expect("the manifest is there");
+    let manifest: serde_json::Value = serde_json::from_str(&manifest).expect("the manifest is JSON");
+    let entries = manifest["outlines"].as_array().expect("a list of outlines");
+    let closed = entries.iter().filter(|entry| entry["closed"] == true);
+    let small = closed.filter(|entry| entry["vertices"].as_u64().is_some_and(|count| count <= LARGEST));
+    small.map(|entry| entry["csv"].as_str().expect("a file name").to_string()).collect()
+}
+
+fn outline(name: &str) -> std::path::PathBuf {
+    Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures/outlines").join(name)
+}
+
+/// The closed contours of an outline.
+fn loops(name: &str) -> Vec<ArcSpline> {
+    let bytes = fs::read(outline(name)).expect("the outline is there");
+    let scale = Scale { drawing_unit: Some(Unit::Mm), ..Scale::default() };
+    let sketch = read(name, &bytes, &scale).expect("an outline reads");
+    sketch.contours.into_iter().map(|c| c.path).filter(|path| path.closed).collect()
+}
+
+/// The region that polygons bound by even and odd.
+fn region(loops: &[ArcSpline]) -> MultiPolygon {
+    use geo::BooleanOps;
+    let polygon = |chain: &ArcSpline| {
+        let ring = chain.vertices.iter().map(|v| (v.at.x, v.at.y)).collect();
+        MultiPolygon::new(vec![geo::Polygon::new(ring, Vec::new())])
+    };
+    loops.iter().map(polygon).fold(MultiPolygon::new(Vec::new()), |a, b| a.xor(&b))
+}
+
+/// The widest angle between two points of the reference's arcs: twice the least step it takes, 0.01 pi.
+const STEP: f64 = 0.02 * std::f64::consts::PI;
+
+/// The reference's buffer: its area and how many rings it has. Its arcs are chords.
+fn buffer(loops: &[ArcSpline], distance: f64) -> (f64, usize) {
+    let style = BufferStyle::new(distance).line_join(LineJoin::Round(0.0));
+    let reference = region(loops).buffer_with_style(style);
+    (reference.unsigned_area(), reference.iter().map(|p| 1 + p.interiors().len()).sum())
+}
+
+/// One comparison: what is wrong, if anything. Areas must agree within 1e-4 and what the reference's chords cut off
+/// its arcs; where the reference's own count of rings changes within that sagitta, any count between will do.
+fn compare(name: &str, loops: &[ArcSpline], cutter: f64, side: Side) -> Option<String> {
+    let radius = cutter / 2.0;
+    let at = format!("{name}, cutter {cutter}, {side:?}");
+    let ours = match compensate(loops, radius, side, Corners::Round) {
+        Ok(ours) => ours,
+        Err(error) => return Some(format!("{at}: {error}")),
+    };
+    let sign = if side == Side::Outside { 1.0 } else { -1.0 };
+    let area = -sign * ours.lines.iter().map(|line| line.path.area()).sum::<f64>();
+    let (expected, rings) = buffer(loops, sign * radius);
+    let sagitta = radius * STEP * STEP / 8.0;
+    let arcs = ours.lines.iter().flat_map(|l| l.path.spans()).filter(|s| !s.is_line());
+    let chords = arcs.map(|arc| arc.length()).sum::<f64>() * sagitta;
+    if (area - expected).abs() > 1e-4 * expected + chords {
+        return Some(format!("{at}: area {area:.4} for {expected:.4}"));
+    }
+    let count = ours.lines.len();
+    let nearly = || [-sagitta, sagitta].map(|d| buffer(loops, sign * (radius + d)).1);
+    let agrees = count == rings || {
+        let [fewer, more] = nearly();
+        count >= rings.min(fewer).min(more) && count <= rings.max(fewer).max(more)
+    };
+    (!agrees).then(|| format!("{at}: {count} lines for {rings}"))
+}
+
+#[test]
+fn every_outline_agrees_with_an_independent_buffer() {
+    let names = closed_outlines();
+    let sides = [Side::Inside, Side::Outside];
+    let cases = CUTTERS.iter().flat_map(|&cutter| sides.map(|side| (cutter, side)));
+    let failures: Vec<String> = names
+        .par_iter()
+        .flat_map_iter(|name| {
+            let loops = loops(name);
+            cases.clone().filter_map(|(cutter, side)| compare(name, &loops, cutter, side)).collect::<Vec<_>>()
+        })
+        .collect();
+    assert!(failures.is_empty(), "{} of {}:\n{}", failures.len(), names.len() * 8, failures.join("\n"));
+}
