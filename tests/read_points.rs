@@ -1,4 +1,5 @@
 //! Point lists through the public door.
+#![expect(clippy::float_cmp, reason = "numbers that are exact must come through exactly")]
 
 use ribband::error::{Error, Kind};
 use ribband::read::{Scale, Unit, read};

@@ -251,6 +251,21 @@ impl Chain {
         Self { curves: vec![curve], closed }
     }
 
+    /// How many lines, arcs and curves the chain has.
+    pub fn len(&self) -> usize {
+        let parts = |curve: &Curve| match curve {
+            Curve::Spans(vertices) => vertices.len().saturating_sub(1),
+            Curve::Nurbs(nurbs) => nurbs.points.len(),
+            _ => 1,
+        };
+        self.curves.iter().map(parts).sum()
+    }
+
+    /// True when the chain has no line, arc or curve.
+    pub fn is_empty(&self) -> bool {
+        self.len() == 0
+    }
+
     /// The image under any affine map.
     #[must_use]
     pub fn transformed(self, map: Affine) -> Self {

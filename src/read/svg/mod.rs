@@ -50,7 +50,9 @@ fn page(root: Node<'_, '_>, style: &Declared<'_, '_>) -> Result<Page, String> {
         Some(Length::Bare(v) | Length::Px(v)) if v <= 0.0 => Err(format!("its {name} is not above zero")),
         length => Ok(length),
     };
-    let stated = Stated { width: stated("width")?, height: stated("height")? };
+    let written = ["width", "height"].map(|name| style.get(name).unwrap_or("auto"));
+    let words = format!("page size {}", written.join(" x "));
+    let stated = Stated { width: stated("width")?, height: stated("height")?, words };
     let view_box = match root.attribute("viewBox") {
         None => None,
         Some(text) => Some(ViewBox::parse(text)?.ok_or("its viewBox has no size")?),

@@ -130,11 +130,13 @@ pub(super) struct Page {
     pub(super) assumed: Option<FileUnit>,
 }
 
-/// The width and height of the root as written; `None` where absent, `auto` or a percentage.
-#[derive(Clone, Copy, Debug)]
+/// The width and height of the root; `None` where absent, `auto` or a percentage.
+#[derive(Clone, Debug)]
 pub(super) struct Stated {
     pub(super) width: Option<Length>,
     pub(super) height: Option<Length>,
+    /// Both as written, for the summary ("page size 4in x 2in").
+    pub(super) words: String,
 }
 
 impl Page {
@@ -152,53 +154,44 @@ impl Page {
             (None, Some(h), Some(ratio)) => Some(Size::new(h * ratio, h)),
             _ => None,
         };
-        let mut page = Self::placed(size, view_box, aspect);
+        let (map, px) = placed(size, view_box, aspect);
+        let viewport = view_box.map(|b| b.size).or(size);
+        let page = Self { map, viewport, unit: None, assumed: None };
         let is = |wanted: fn(&Length) -> bool| [stated.width, stated.height].iter().flatten().any(wanted);
         if is(|l| matches!(l, Length::Px(_))) {
-            page.unit = page.assumed.take();
+            Self { unit: Some(FileUnit { mm: mm_of(px), said_by: stated.words }), ..page }
         } else if is(|l| matches!(l, Length::Bare(_))) {
             // A bare number is what --drawing-unit explains, so the page is measured in bare numbers.
-            page.measured_in_px();
+            let said_by = format!("{}, px at 96 to the inch", stated.words);
+            let assumed = Some(FileUnit { mm: Unit::Px.mm(), said_by });
+            Self { map: Affine::scale(px) * map, assumed, ..page }
         } else {
-            page.assumed = None;
-        }
-        page
-    }
-
-    fn placed(size: Option<Size>, view_box: Option<ViewBox>, aspect: AspectRatio) -> Self {
-        let page = size.or(view_box.map(|b| b.size));
-        let fit = match (view_box, page) {
-            (Some(b), Some(page)) => b.fit(aspect, page),
-            _ => Affine::IDENTITY,
-        };
-        let [sx, _, _, sy, tx, ty] = fit.as_coeffs();
-        let height = page.map_or(0.0, |p| p.height);
-        let even = (sx - sy).abs() <= 4.0 * f64::EPSILON * sx;
-        // A user unit is the file's unit where it is the same both ways; the map then only moves and flips.
-        let (map, px) = if even {
-            (Affine::new([1.0, 0.0, 0.0, -1.0, tx / sx, (height - ty) / sx]), sx)
-        } else {
-            (Affine::new([sx, 0.0, 0.0, -sy, tx, height - ty]), 1.0)
-        };
-        let viewport = view_box.map(|b| b.size).or(size);
-        Self { map, viewport, unit: None, assumed: Some(unit_of(px)) }
-    }
-
-    fn measured_in_px(&mut self) {
-        if let Some(unit) = &mut self.assumed {
-            self.map = Affine::scale(unit.mm / Unit::Px.mm()) * self.map;
-            *unit = FileUnit {
-                mm: Unit::Px.mm(),
-                said_by: "page size in bare numbers, px at 96 to the inch".into(),
-            };
+            page
         }
     }
 }
 
-fn unit_of(px: f64) -> FileUnit {
+/// The map from user space to file units of a page of `size` px, and how many px one file unit is. A user unit is the
+/// file's unit where it is as large both ways; the map then only moves and flips.
+fn placed(size: Option<Size>, view_box: Option<ViewBox>, aspect: AspectRatio) -> (Affine, f64) {
+    let page = size.or(view_box.map(|b| b.size));
+    let fit = match (view_box, page) {
+        (Some(b), Some(page)) => b.fit(aspect, page),
+        _ => Affine::IDENTITY,
+    };
+    let [sx, _, _, sy, tx, ty] = fit.as_coeffs();
+    let height = page.map_or(0.0, |p| p.height);
+    if (sx - sy).abs() <= 4.0 * f64::EPSILON * sx {
+        (Affine::new([1.0, 0.0, 0.0, -1.0, tx / sx, (height - ty) / sx]), sx)
+    } else {
+        (Affine::new([sx, 0.0, 0.0, -sy, tx, height - ty]), 1.0)
+    }
+}
+
+/// Millimetres in so many px. A page of 120 mm for 120 units means 1 mm a unit, not what is left of it after px and
+/// back.
+fn mm_of(px: f64) -> f64 {
     let mm = px * MM_PER_INCH / PX_PER_INCH;
-    // A page of 120 mm for 120 units means 1 mm a unit, not what is left of it after px and back.
     let nearest = (mm * 1e6).round() / 1e6;
-    let mm = if (nearest - mm).abs() <= 4.0 * f64::EPSILON * mm { nearest } else { mm };
-    FileUnit { mm, said_by: "page size".into() }
+    if (nearest - mm).abs() <= 4.0 * f64::EPSILON * mm { nearest } else { mm }
 }

@@ -5,7 +5,7 @@ use std::rc::Rc;
 use kurbo::{Affine, Size, Vec2};
 use roxmltree::{Node, NodeId};
 
-use super::super::curve::Element;
+use super::super::curve::{Chain, Element};
 use super::shape::{Flaw, Shape};
 use super::source::Source;
 use super::style::{Declared, Sheets};
@@ -18,7 +18,8 @@ use crate::sketch::Place;
 /// `use` inside `use` inside `use`: beyond this nobody drew it by hand.
 const DEEPEST_USE: usize = 64;
 
-/// So many elements may come out of `use` before the drawing is refused.
+/// So many elements and curves may come out of `use` before the drawing is refused: far more than any shop cuts, and
+/// still read in a second.
 const MOST_USED: usize = 1_000_000;
 
 /// What an element hands down to its children.
@@ -114,7 +115,7 @@ impl<'a: 'n, 'n> Walk<'a, 'n> {
 
     fn visit(&mut self, waiting: Waiting<'a, 'n>) -> Result<(), Stop> {
         let Waiting { node, mut inherited, used } = waiting;
-        self.count_used(&inherited)?;
+        self.count_used(&inherited, 1)?;
         let name = node.tag_name().name();
         if !self.source.is_svg(node) || NEVER_DRAWN.contains(&name) || !conditions_hold(node) {
             return Ok(());
@@ -144,12 +145,16 @@ impl<'a: 'n, 'n> Walk<'a, 'n> {
         Ok(())
     }
 
-    fn count_used(&mut self, inherited: &Inherited<'n>) -> Result<(), Stop> {
-        self.used += usize::from(inherited.uses.is_some());
+    /// Counts what comes out of `use`, so that a small file cannot become a drawing without end.
+    fn count_used(&mut self, inherited: &Inherited<'n>, parts: usize) -> Result<(), Stop> {
+        if inherited.uses.is_some() {
+            self.used += parts;
+        }
         if self.used <= MOST_USED {
             return Ok(());
         }
-        let what = format!("its use elements multiply the drawing into more than {MOST_USED} elements");
+        let what =
+            format!("its use elements multiply the drawing into more than {MOST_USED} elements and curves");
         Err(Error::new(Kind::Input, what).remedy("draw fewer copies").into())
     }
 
@@ -247,14 +252,12 @@ impl<'a: 'n, 'n> Walk<'a, 'n> {
             return Ok(());
         }
         let (chains, remark) = chains.map_err(Stop::Flaw)?;
+        self.count_used(inherited, chains.iter().map(Chain::len).sum())?;
         let line = self.source.line(node);
         if let Some(remark) = remark {
             self.tally.remark(format!("{name} on line {line}: {remark}"));
         }
-        if ["marker", "marker-start", "marker-mid", "marker-end"]
-            .iter()
-            .any(|m| style.get(m).is_some_and(|v| v != "none"))
-        {
+        if MARKERS.iter().any(|m| style.get(m).is_some_and(|v| v != "none")) {
             self.tally.markers();
         }
         inherited.tally_stroke(&mut self.tally);
@@ -270,6 +273,9 @@ impl<'a: 'n, 'n> Walk<'a, 'n> {
 
 /// The basic shapes, in which hidden ones are counted.
 const SHAPES: [&str; 7] = ["path", "polyline", "polygon", "line", "rect", "circle", "ellipse"];
+
+/// The properties that put markers on a shape.
+const MARKERS: [&str; 4] = ["marker", "marker-start", "marker-mid", "marker-end"];
 
 /// Elements that describe and are not drawn themselves.
 const NEVER_DRAWN: [&str; 25] = [
