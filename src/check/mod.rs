@@ -1,1 +1,129 @@
-//! check: not built yet.
+//! The check: what a program says, against the drawing and the machine.
+//!
+//! An outsider by design. It starts from the program's text as read back, and shares nothing with the stages that
+//! make programs. What it holds is held by proven bounds; what no program can check is listed beside it.
+
+mod claim;
+mod cuts;
+mod motion;
+mod place;
+mod shape;
+mod start_end;
+
+use kurbo::{Rect, Vec2};
+
+use crate::gcode::Program;
+use crate::machine::Machine;
+use crate::num::{Deviation, Tolerance};
+use crate::sketch::Sketch;
+
+pub use claim::{Claim, Spot, State};
+
+/// What a program is checked for. Lengths in mm; heights and places in the program's own coordinates.
+#[derive(Clone, Debug)]
+pub struct Asked {
+    /// How far the cut may be from the drawing.
+    pub tolerance: Tolerance,
+    /// Where the drawing's zero lies in the program's coordinates; `None` to find it among the usual places: the
+    /// drawing's own zero, the lower left of the drawing at the program's zero, or its centre there.
+    pub drawing_at: Option<Vec2>,
+    /// The height of the stock's top.
+    pub stock_top: f64,
+    /// The height below which nothing goes by rapid; `None` for the stock's top.
+    pub clearance: Option<f64>,
+    /// The height that every contour is cut down to; `None` where it was not said.
+    pub lowest: Option<f64>,
+    /// The deepest that one pass may take; `None` where it was not said.
+    pub pass: Option<f64>,
+    /// The largest feed in mm/min along a contour and straight down; `None` for what the machine can do.
+    pub feeds: Option<Feeds>,
+    /// Diameter of the cutter.
+    pub cutter: f64,
+    /// What the cutter must keep clear of.
+    pub keep_out: Vec<KeepOut>,
+}
+
+/// The largest feeds that were asked for, in mm/min.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Feeds {
+    /// Along a contour.
+    pub cutting: f64,
+    /// Straight down.
+    pub plunge: f64,
+}
+
+/// A clamp or another thing on the table.
+#[derive(Clone, Debug, PartialEq)]
+pub struct KeepOut {
+    /// What it is called.
+    pub name: String,
+    /// Its outline from above.
+    pub outline: Rect,
+    /// The height of its top.
+    pub top: f64,
+}
+
+impl Asked {
+    /// A cut on the line within `tolerance`, zero on the stock's top, nothing else said.
+    pub fn new(tolerance: Tolerance) -> Self {
+        Self {
+            tolerance,
+            drawing_at: None,
+            stock_top: 0.0,
+            clearance: None,
+            lowest: None,
+            pass: None,
+            feeds: None,
+            cutter: 0.0,
+            keep_out: Vec::new(),
+        }
+    }
+}
+
+/// What the check came to.
+#[derive(Clone, Debug)]
+pub struct Verdict {
+    /// True when no claim fails.
+    pub holds: bool,
+    /// The worst deviation between what the program cuts and the drawing, in the drawing's coordinates; `None` when
+    /// nothing that is cut could be matched to the drawing.
+    pub deviation: Option<Deviation>,
+    /// The claims, one by one.
+    pub claims: Vec<Claim>,
+    /// What no program can check, and what was taken for granted, one sentence each.
+    pub not_checked: Vec<String>,
+}
+
+/// Checks `program` against the drawing and the machine.
+///
+/// Contours are judged as they were read: each must be cut, in order from end to end, within the tolerance, and
+/// nothing may be cut elsewhere. Costs time in proportion to the program and the drawing.
+pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Asked) -> Verdict {
+    let cuts = cuts::Cuts::of(&program.toolpath.moves, asked.stock_top);
+    let at = asked.drawing_at.unwrap_or_else(|| place::find(&cuts, sketch));
+    let shape = shape::judge(&cuts, sketch, at, machine, asked);
+    let mut claims = shape.claims;
+    claims.extend(motion::judge(program, machine, asked));
+    claims.extend(start_end::judge(program, machine, asked));
+    let holds = claims.iter().all(|claim| claim.state != State::Fails);
+    let mut not_checked: Vec<String> = NEVER_CHECKED.iter().map(|&said| said.to_string()).collect();
+    not_checked.extend(program.assumed.iter().map(|said| format!("taken for granted: {said}")));
+    if sketch.sampling_mm > 0.0 {
+        not_checked.push(format!(
+            "the drawing's free curves: they were read to within {:.4} mm, and the check starts from there",
+            sketch.sampling_mm
+        ));
+    }
+    Verdict { holds, deviation: shape.deviation, claims, not_checked }
+}
+
+/// What no program can tell.
+const NEVER_CHECKED: [&str; 7] = [
+    "that zero is set where the program expects it",
+    "that the stock is held, lies flat and is as thick as said",
+    "that nothing is in the way that was not declared: clamps, screws, the vacuum hose",
+    "that the cutter in the spindle is the one stated, sharp and tight",
+    "that the machine keeps its steps and follows the path it is told",
+    "that the controller reads the program as the published language says",
+    "that the material bears the feed, the depth and the speed",
+];

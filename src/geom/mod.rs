@@ -1,15 +1,19 @@
 //! Lines and arcs, exactly. This room knows no stage.
 
+mod along;
 mod arc_spline;
 mod chords;
 mod coupling;
 mod crossings;
 mod distance;
 mod free_space;
+mod index;
 mod span;
 mod winding;
 
+pub use along::Along;
 pub use arc_spline::{ArcSpline, Vertex};
 pub use crossings::{Crossing, crossings};
 pub use distance::frechet;
+pub use index::SpanIndex;
 pub use span::{Nearest, Span};

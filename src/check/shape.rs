@@ -1,0 +1,241 @@
+//! Whether what is cut is what is drawn: every contour in order from end to end, and nothing elsewhere.
+
+use kurbo::{Affine, Point, Rect, Vec2};
+
+use super::Asked;
+use super::claim::{Claim, Spot, State, Worst};
+use super::cuts::{Cuts, Pass};
+use crate::geom::{ArcSpline, SpanIndex, frechet};
+use crate::machine::Machine;
+use crate::num::Deviation;
+use crate::sketch::Sketch;
+
+const DEVIATION: &str = "the cut is within the tolerance of the drawing";
+const ALL_CUT: &str = "every contour is cut";
+const STRAY: &str = "nothing is cut off the drawing";
+const DEPTH: &str = "every contour is cut to the depth asked";
+const PASSES: &str = "no pass is deeper than asked";
+
+/// What came of comparing shapes.
+pub(super) struct Shape {
+    pub(super) deviation: Option<Deviation>,
+    pub(super) claims: Vec<Claim>,
+}
+
+/// A contour of the drawing, in the program's coordinates, and how it is cut.
+struct Target {
+    path: ArcSpline,
+    bbox: Rect,
+    /// The heights of the passes that follow it within tolerance, in the order of the program.
+    floors: Vec<f64>,
+    /// The nearest that any pass comes to it in order, with a spot of that pass.
+    best: Option<(Deviation, Spot)>,
+}
+
+/// Compares the cuts with the drawing, whose zero is at `at` in the program's coordinates.
+pub(super) fn judge(cuts: &Cuts, sketch: &Sketch, at: Vec2, machine: &Machine, asked: &Asked) -> Shape {
+    let mut comparison = Comparison::new(sketch, at, asked);
+    for pass in &cuts.passes {
+        comparison.take(pass);
+    }
+    comparison.take_ramps(cuts);
+    comparison.conclude(at, machine, asked)
+}
+
+struct Comparison {
+    tolerance: f64,
+    targets: Vec<Target>,
+    /// The targets in the order of the left sides of their boxes.
+    by_left: Vec<usize>,
+    /// The spans of all targets; built when a cut does not follow a single contour.
+    index: Option<SpanIndex>,
+    stray: Worst,
+    worst: Option<(Deviation, Spot)>,
+}
+
+impl Comparison {
+    fn new(sketch: &Sketch, at: Vec2, asked: &Asked) -> Self {
+        let place = Affine::translate(at);
+        let target = |path: &ArcSpline| {
+            let path = path.transformed(place);
+            let bbox = path.bbox()?;
+            Some(Target { path, bbox, floors: Vec::new(), best: None })
+        };
+        let targets: Vec<Target> = sketch.contours.iter().filter_map(|c| target(&c.path)).collect();
+        let mut by_left: Vec<usize> = (0..targets.len()).collect();
+        by_left.sort_by(|&a, &b| targets[a].bbox.x0.total_cmp(&targets[b].bbox.x0));
+        let tolerance = asked.tolerance.mm();
+        Self { tolerance, targets, by_left, index: None, stray: Worst::none(), worst: None }
+    }
+
+    /// Compares one pass with the contours whose boxes it fits.
+    fn take(&mut self, pass: &Pass) {
+        let chain = pass.chain(self.tolerance / 100.0);
+        let Some(bbox) = chain.bbox() else { return };
+        let mut followed = false;
+        for target in self.fitting(bbox) {
+            let deviation = frechet(&chain, &self.targets[target].path);
+            let spot = Spot::on(pass.move_near(deviation.at), deviation.at);
+            followed |= deviation.mm <= self.tolerance;
+            self.note(target, deviation, spot, pass.z);
+        }
+        if !followed {
+            self.take_unfitting(pass, &chain, bbox);
+        }
+    }
+
+    /// The contours that a pass with this box may follow within tolerance.
+    fn fitting(&self, bbox: Rect) -> Vec<usize> {
+        let left = |&target: &usize| self.targets[target].bbox.x0;
+        let from = self.by_left.partition_point(|target| left(target) < bbox.x0 - self.tolerance);
+        let near = self.by_left[from..].iter().take_while(|target| left(target) <= bbox.x0 + self.tolerance);
+        let fits = |&&target: &&usize| misfit(self.targets[target].bbox, bbox) <= self.tolerance;
+        near.filter(fits).copied().collect()
+    }
+
+    fn note(&mut self, target: usize, deviation: Deviation, spot: Spot, z: f64) {
+        let target = &mut self.targets[target];
+        if deviation.mm <= self.tolerance {
+            target.floors.push(z);
+        }
+        if target.best.is_none_or(|(best, _)| deviation.mm < best.mm) {
+            target.best = Some((deviation, spot));
+        }
+        // A pass that follows is judged by its own deviation, every one of them.
+        if deviation.mm <= self.tolerance && self.worst.is_none_or(|(worst, _)| deviation.mm > worst.mm) {
+            self.worst = Some((deviation, spot));
+        }
+    }
+
+    /// A pass that follows no contour as a whole: its way must still be on the drawing everywhere, and contours may
+    /// be parts of it (one that was drawn in pieces), or it is a contour's failed cut.
+    fn take_unfitting(&mut self, pass: &Pass, chain: &ArcSpline, bbox: Rect) {
+        for m in &pass.moves {
+            self.note_stray(m);
+        }
+        for target in 0..self.targets.len() {
+            let inside = grown(bbox, self.tolerance).contains_rect(self.targets[target].bbox);
+            if inside && self.targets[target].floors.last() != Some(&pass.z) {
+                self.match_part(target, pass, chain);
+            }
+        }
+    }
+
+    /// Compares a contour with the part of the pass between the feet of its ends.
+    fn match_part(&mut self, target: usize, pass: &Pass, chain: &ArcSpline) {
+        let path = &self.targets[target].path;
+        let whole = path.closed || path.is_empty();
+        let deviation = if whole { frechet(chain, path) } else { part_deviation(chain, path) };
+        let spot = Spot::on(pass.move_near(deviation.at), deviation.at);
+        self.note(target, deviation, spot, pass.z);
+    }
+
+    /// Ramps go along a contour too.
+    fn take_ramps(&mut self, cuts: &Cuts) {
+        for ramp in &cuts.ramps {
+            self.note_stray(ramp);
+        }
+        for plunge in &cuts.plunges {
+            self.note_stray(plunge);
+        }
+    }
+
+    fn note_stray(&mut self, m: &crate::toolpath::Move) {
+        let targets = &self.targets;
+        let index = self
+            .index
+            .get_or_insert_with(|| SpanIndex::new(targets.iter().flat_map(|target| target.path.spans())));
+        let (distance, at) = index.farthest(&m.span(), self.tolerance);
+        self.stray.note(distance, || Spot::on(m, at));
+    }
+
+    fn conclude(self, at: Vec2, machine: &Machine, asked: &Asked) -> Shape {
+        let uncut: Vec<&Target> = self.targets.iter().filter(|target| target.floors.is_empty()).collect();
+        let missed = uncut.iter().filter_map(|target| target.best);
+        let worst = missed.chain(self.worst).reduce(|a, b| if b.0.mm > a.0.mm { b } else { a });
+        let deviation = worst.map(|(d, _)| Deviation { at: d.at - at, ..d });
+        let mut claims = vec![self.deviation_claim(worst), all_cut(&uncut)];
+        let strays = Claim::at_most(STRAY, "mm", self.stray, self.tolerance, 0.0);
+        claims.push(strays.because("the cutter goes down where nothing is drawn"));
+        claims.push(self.depth_claim(machine, asked));
+        claims.push(self.pass_claim(machine, asked));
+        Shape { deviation, claims }
+    }
+
+    fn deviation_claim(&self, worst: Option<(Deviation, Spot)>) -> Claim {
+        let mut found = Worst::none();
+        if let Some((deviation, spot)) = worst {
+            found.note(deviation.mm, || spot);
+        }
+        let claim = Claim::at_most(DEVIATION, "mm", found, self.tolerance, 0.0);
+        if worst.is_none() {
+            return Claim { state: State::Fails, note: "no cut follows a contour".into(), ..claim };
+        }
+        claim.because("the cut leaves the contour")
+    }
+
+    /// The highest floor among the deepest passes of the contours: each must reach the height asked, none go below.
+    fn depth_claim(&self, machine: &Machine, asked: &Asked) -> Claim {
+        let Some(lowest) = asked.lowest else { return Claim::open(DEPTH, "no depth was asked for") };
+        let mut short = Worst::none();
+        for target in &self.targets {
+            let floor = target.floors.iter().copied().fold(f64::INFINITY, f64::min);
+            if let Some((_, spot)) = target.best.filter(|_| floor.is_finite()) {
+                short.note((floor - lowest).abs(), || spot);
+            }
+        }
+        let mut claim = Claim::at_most(DEPTH, "mm", short, 0.0, machine.last_place());
+        claim.value = claim.value.map(|off| lowest + off);
+        claim.limit = Some(lowest);
+        claim.because("the deepest pass of a contour is not at the height asked")
+    }
+
+    /// The largest step from one pass of a contour to the next.
+    fn pass_claim(&self, machine: &Machine, asked: &Asked) -> Claim {
+        let Some(pass) = asked.pass else { return Claim::open(PASSES, "no depth of pass was asked for") };
+        let mut step = Worst::none();
+        for target in &self.targets {
+            let mut above = asked.stock_top;
+            for &floor in &target.floors {
+                if let Some((_, spot)) = target.best {
+                    step.note(above - floor, || spot);
+                }
+                above = above.min(floor);
+            }
+        }
+        let slack = 2.0 * machine.last_place();
+        Claim::at_most(PASSES, "mm", step, pass, slack).because("a pass takes more than one pass may")
+    }
+}
+
+fn all_cut(uncut: &[&Target]) -> Claim {
+    let first = uncut.first().map(|target| Spot {
+        line: 0,
+        at: Some(crate::toolpath::Position { xy: target.bbox.center(), z: 0.0 }),
+    });
+    Claim::none_of(ALL_CUT, uncut.len(), first).because("no pass follows the contour within the tolerance")
+}
+
+/// How far the sides of two boxes are apart at most: chains within a distance of each other differ by no more.
+fn misfit(a: Rect, b: Rect) -> f64 {
+    let sides = [a.x0 - b.x0, a.x1 - b.x1, a.y0 - b.y0, a.y1 - b.y1];
+    sides.into_iter().map(f64::abs).fold(0.0, f64::max)
+}
+
+fn grown(bbox: Rect, by: f64) -> Rect {
+    bbox.inflate(by, by)
+}
+
+/// The distance of an open contour from the part of the chain between the feet of its ends.
+fn part_deviation(chain: &ArcSpline, contour: &ArcSpline) -> Deviation {
+    let ends = [contour.vertices[0].at, contour.vertices[contour.vertices.len() - 1].at];
+    let feet = ends.map(|end| chain.nearest(end));
+    let [Some((a, _)), Some((b, _))] = feet else { return frechet(chain, contour) };
+    let (first, last) = if a <= b { (a, b) } else { (b, a) };
+    let direct = frechet(&chain.part(first, last), contour);
+    if !chain.closed {
+        return direct;
+    }
+    let around = frechet(&chain.part(last, first), contour);
+    if around.mm < direct.mm { around } else { direct }
+}
