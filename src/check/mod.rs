@@ -12,7 +12,7 @@ mod start_end;
 
 use kurbo::{Rect, Vec2};
 
-use crate::gcode::Program;
+use crate::gcode::read::Program;
 use crate::machine::Machine;
 use crate::num::{Deviation, Tolerance};
 use crate::sketch::Sketch;

@@ -4,7 +4,7 @@ use kurbo::{Rect, Vec2};
 
 use super::Asked;
 use super::claim::{Claim, Spot, Worst};
-use crate::gcode::Program;
+use crate::gcode::read::Program;
 use crate::machine::{Axes, Machine};
 use crate::toolpath::Move;
 

@@ -1,6 +1,6 @@
 //! Whether what is cut is what is drawn: every contour in order from end to end, and nothing elsewhere.
 
-use kurbo::{Affine, Point, Rect, Vec2};
+use kurbo::{Affine, Rect, Vec2};
 
 use super::Asked;
 use super::claim::{Claim, Spot, State, Worst};

@@ -4,7 +4,7 @@ use std::ops::Range;
 
 use super::Asked;
 use super::claim::{Claim, Spot, State, Worst};
-use crate::gcode::{Program, read::What};
+use crate::gcode::read::{Program, What};
 use crate::machine::{Machine, Unit};
 
 const ARCS: &str = "the radii of every arc agree at both ends";
@@ -81,7 +81,9 @@ fn end(program: &Program, machine: &Machine, asked: &Asked) -> Claim {
         What::SpindleOff => Some(false),
         _ => None,
     };
-    let turning = program.events.iter().rev().find_map(|event| spindle(&event.what)).unwrap_or(false);
+    // The end word stops it too, by the language; not every controller keeps to that.
+    let before = program.events.iter().rev().filter(|event| event.line != line);
+    let turning = before.filter_map(|event| spindle(&event.what)).next().unwrap_or(false);
     let found = usize::from(turning && !machine.spindle.hand_switched);
-    Claim::none_of(END, found, Some(Spot::line(line))).because("the spindle is left turning")
+    Claim::none_of(END, found, Some(Spot::line(line))).because("no word stops the spindle before the end")
 }
