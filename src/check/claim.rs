@@ -110,10 +110,9 @@ impl Claim {
         limit: f64,
         slack: f64,
     ) -> Self {
-        let state = match worst.found() {
-            Some(value) if !(value <= limit + slack) => State::Fails,
-            _ => State::Holds,
-        };
+        // NaN does not hold.
+        let holds = worst.found().is_none_or(|value| value <= limit + slack);
+        let state = if holds { State::Holds } else { State::Fails };
         Self {
             name,
             state,

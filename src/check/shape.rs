@@ -1,11 +1,11 @@
 //! Whether what is cut is what is drawn: every contour in order from end to end, and nothing elsewhere.
 
-use kurbo::{Affine, Rect, Vec2};
+use kurbo::{Affine, Point, Rect, Vec2};
 
 use super::Asked;
 use super::claim::{Claim, Spot, State, Worst};
 use super::cuts::{Cuts, Pass};
-use crate::geom::{ArcSpline, SpanIndex, frechet};
+use crate::geom::{Along, ArcSpline, SpanIndex, frechet};
 use crate::machine::Machine;
 use crate::num::Deviation;
 use crate::sketch::Sketch;
@@ -72,14 +72,12 @@ impl Comparison {
     fn take(&mut self, pass: &Pass) {
         let chain = pass.chain(self.tolerance / 100.0);
         let Some(bbox) = chain.bbox() else { return };
-        let mut followed = false;
+        let mut follows = false;
         for target in self.fitting(bbox) {
             let deviation = frechet(&chain, &self.targets[target].path);
-            let spot = Spot::on(pass.move_near(deviation.at), deviation.at);
-            followed |= deviation.mm <= self.tolerance;
-            self.note(target, deviation, spot, pass.z);
+            follows |= self.note(target, deviation, pass);
         }
-        if !followed {
+        if !follows {
             self.take_unfitting(pass, &chain, bbox);
         }
     }
@@ -93,41 +91,62 @@ impl Comparison {
         near.filter(fits).copied().collect()
     }
 
-    fn note(&mut self, target: usize, deviation: Deviation, spot: Spot, z: f64) {
+    /// Keeps how near a pass comes to a contour; true when that is within tolerance.
+    fn note(&mut self, target: usize, deviation: Deviation, pass: &Pass) -> bool {
+        let spot = Spot::on(pass.move_near(deviation.at), deviation.at);
+        let follows = deviation.mm <= self.tolerance;
         let target = &mut self.targets[target];
-        if deviation.mm <= self.tolerance {
-            target.floors.push(z);
+        if follows {
+            target.floors.push(pass.z);
         }
         if target.best.is_none_or(|(best, _)| deviation.mm < best.mm) {
             target.best = Some((deviation, spot));
         }
-        // A pass that follows is judged by its own deviation, every one of them.
-        if deviation.mm <= self.tolerance && self.worst.is_none_or(|(worst, _)| deviation.mm > worst.mm) {
+        if follows {
+            self.note_worst(deviation, spot);
+        }
+        follows
+    }
+
+    fn note_worst(&mut self, deviation: Deviation, spot: Spot) {
+        if self.worst.is_none_or(|(worst, _)| deviation.mm > worst.mm) {
             self.worst = Some((deviation, spot));
         }
     }
 
-    /// A pass that follows no contour as a whole: its way must still be on the drawing everywhere, and contours may
-    /// be parts of it (one that was drawn in pieces), or it is a contour's failed cut.
+    /// A pass that follows no contour as a whole. Its way must still be on the drawing everywhere. Open contours may
+    /// be parts of it: one contour that was drawn in pieces. Else it is the failed cut of the contour it fits best.
     fn take_unfitting(&mut self, pass: &Pass, chain: &ArcSpline, bbox: Rect) {
         for m in &pass.moves {
             self.note_stray(m);
         }
+        let places = SpanIndex::new(chain.spans());
+        let mut follows = false;
         for target in 0..self.targets.len() {
-            let inside = grown(bbox, self.tolerance).contains_rect(self.targets[target].bbox);
-            if inside && self.targets[target].floors.last() != Some(&pass.z) {
-                self.match_part(target, pass, chain);
+            let candidate = &self.targets[target];
+            let inside = bbox.inflate(self.tolerance, self.tolerance).contains_rect(candidate.bbox);
+            if inside && !candidate.path.closed && !candidate.path.is_empty() {
+                let deviation = part_deviation(chain, &places, &candidate.path);
+                follows |= self.note(target, deviation, pass);
             }
+        }
+        if !follows {
+            self.take_failed(pass, chain, bbox);
         }
     }
 
-    /// Compares a contour with the part of the pass between the feet of its ends.
-    fn match_part(&mut self, target: usize, pass: &Pass, chain: &ArcSpline) {
-        let path = &self.targets[target].path;
-        let whole = path.closed || path.is_empty();
-        let deviation = if whole { frechet(chain, path) } else { part_deviation(chain, path) };
-        let spot = Spot::on(pass.move_near(deviation.at), deviation.at);
-        self.note(target, deviation, spot, pass.z);
+    /// A pass of about the box of a contour is taken for its cut, however far it is off.
+    fn take_failed(&mut self, pass: &Pass, chain: &ArcSpline, bbox: Rect) {
+        let fit = |&target: &usize| misfit(self.targets[target].bbox, bbox);
+        let nearest = (0..self.targets.len()).min_by(|a, b| fit(a).total_cmp(&fit(b)));
+        let Some(target) =
+            nearest.filter(|&t| fit(&t) <= self.targets[t].bbox.size().to_vec2().hypot() / 2.0)
+        else {
+            return;
+        };
+        let deviation = frechet(chain, &self.targets[target].path);
+        self.note(target, deviation, pass);
+        self.note_worst(deviation, Spot::on(pass.move_near(deviation.at), deviation.at));
     }
 
     /// Ramps go along a contour too.
@@ -222,15 +241,15 @@ fn misfit(a: Rect, b: Rect) -> f64 {
     sides.into_iter().map(f64::abs).fold(0.0, f64::max)
 }
 
-fn grown(bbox: Rect, by: f64) -> Rect {
-    bbox.inflate(by, by)
-}
-
 /// The distance of an open contour from the part of the chain between the feet of its ends.
-fn part_deviation(chain: &ArcSpline, contour: &ArcSpline) -> Deviation {
-    let ends = [contour.vertices[0].at, contour.vertices[contour.vertices.len() - 1].at];
-    let feet = ends.map(|end| chain.nearest(end));
-    let [Some((a, _)), Some((b, _))] = feet else { return frechet(chain, contour) };
+fn part_deviation(chain: &ArcSpline, places: &SpanIndex, contour: &ArcSpline) -> Deviation {
+    let foot = |end: Point| {
+        let (span, near) = places.nearest(end)?;
+        Some(Along { span, t: near.nearest(end).t })
+    };
+    let ends = contour.vertices.first().zip(contour.vertices.last());
+    let feet = ends.and_then(|(first, last)| foot(first.at).zip(foot(last.at)));
+    let Some((a, b)) = feet else { return frechet(chain, contour) };
     let (first, last) = if a <= b { (a, b) } else { (b, a) };
     let direct = frechet(&chain.part(first, last), contour);
     if !chain.closed {

@@ -1,8 +1,6 @@
 //! Places along a chain, and the parts between them.
 
-use kurbo::Point;
-
-use super::{ArcSpline, Nearest, Span};
+use super::{ArcSpline, Span};
 
 /// A place on a chain: a span and a fraction of its length.
 #[derive(Clone, Copy, Debug, PartialEq, PartialOrd)]
@@ -14,14 +12,6 @@ pub struct Along {
 }
 
 impl ArcSpline {
-    /// The place on the chain nearest to `p`, exactly, and how near it is; `None` for a chain without spans. Of
-    /// several equally near, the first.
-    pub fn nearest(&self, p: Point) -> Option<(Along, Nearest)> {
-        let places = self.spans().enumerate().map(|(span, s)| (span, s.nearest(p)));
-        let best = places.reduce(|a, b| if b.1.distance < a.1.distance { b } else { a });
-        best.map(|(span, nearest)| (Along { span, t: nearest.t }, nearest))
-    }
-
     /// The open chain from one place to another, forward; a closed chain is walked over its start where `to` lies
     /// before `from`, an open one gives its end then. A chain between equal places is a point.
     ///
