@@ -63,7 +63,7 @@ pub(super) fn nearly_closed(contour: &Contour) -> Option<Flaw> {
 }
 
 /// What two pieces must share to be parts of one contour.
-fn settings(contour: &Contour) -> (&str, &str) {
+pub(super) fn settings(contour: &Contour) -> (&str, &str) {
     (&contour.layer, &contour.colour)
 }
 
@@ -104,13 +104,17 @@ impl<'a> Links<'a> {
 
     fn at(&self, end: End) -> Point {
         let vertices = &self.pieces[end / 2].path.vertices;
-        if end % 2 == 0 { vertices[0].at } else { vertices[vertices.len() - 1].at }
+        if end.is_multiple_of(2) { vertices[0].at } else { vertices[vertices.len() - 1].at }
     }
 
     /// The unit vector from an end into its piece.
     fn inward(&self, end: End) -> Vec2 {
         let path = &self.pieces[end / 2].path;
-        if end % 2 == 0 { path.span(0).tangent(0.0) } else { -path.span(path.len() - 1).tangent(1.0) }
+        if end.is_multiple_of(2) {
+            path.span(0).tangent(0.0)
+        } else {
+            -path.span(path.len() - 1).tangent(1.0)
+        }
     }
 
     fn is_free(&self, end: End) -> bool {
@@ -138,17 +142,18 @@ impl<'a> Links<'a> {
     fn join_exact(&mut self, flaws: &mut Vec<Flaw>) {
         let mut ends: Vec<End> = (0..self.mate.len()).collect();
         ends.sort_unstable_by(|&a, &b| self.order(a, b));
-        let nodes: Vec<&[End]> = ends.chunk_by(|&a, &b| self.order(a, b).is_eq()).collect();
+        let mut nodes: Vec<&[End]> = ends.chunk_by(|&a, &b| self.order(a, b).is_eq()).collect();
         for node in &nodes {
             if let &[a, b] = *node {
                 self.link(a, b);
             }
         }
-        for node in nodes.iter().filter(|node| node.len() > 2) {
-            self.close_loops(node);
-            self.join_straightest(node);
-            flaws.push(self.junction(node));
-        }
+        nodes.retain(|node| node.len() > 2);
+        nodes.iter().for_each(|node| self.close_loops(node));
+        nodes.iter().for_each(|node| self.join_straightest(node));
+        // Chains grown longer may be loops now.
+        nodes.iter().for_each(|node| self.close_loops(node));
+        flaws.extend(nodes.iter().map(|node| self.junction(node)));
     }
 
     /// Closes the chains that both start and finish at this node.
@@ -165,7 +170,7 @@ impl<'a> Links<'a> {
     fn join_straightest(&mut self, node: &[End]) {
         let mut free: Vec<(End, Vec2)> =
             node.iter().filter(|&&e| self.is_free(e)).map(|&e| (e, self.inward(e))).collect();
-        free.sort_by(|a, b| a.1.atan2().total_cmp(&b.1.atan2()));
+        free.sort_by(|a, b| by_place(a.1.to_point(), b.1.to_point()));
         let mut pairs: Vec<(f64, End, End)> = Vec::new();
         for (i, (a, u)) in free.iter().enumerate() {
             pairs.extend(free[i + 1..].iter().map(|(b, v)| (u.dot(*v), *a, *b)).filter(|p| p.0 < 0.0));
@@ -185,7 +190,7 @@ impl<'a> Links<'a> {
 
     fn flaw(&self, kind: FlawKind, end: End, size: f64, other: Option<End>) -> Flaw {
         let piece = &self.pieces[end / 2];
-        let vertex = if end % 2 == 0 { 1 } else { piece.path.vertices.len() };
+        let vertex = if end.is_multiple_of(2) { 1 } else { piece.path.vertices.len() };
         let other = other.map(|e| self.pieces[e / 2].id);
         Flaw { kind, contour: piece.id, vertex, at: self.at(end), size, other }
     }
@@ -214,7 +219,8 @@ impl<'a> Links<'a> {
             let near = tree
                 .nearest_neighbor_iter_with_distance_2(*end.geom())
                 .take_while(|(_, squared)| *squared <= join_mm * join_mm)
-                .filter(|(other, _)| other.data != end.data)
+                // What meets exactly was settled before.
+                .filter(|(_, squared)| *squared > 0.0)
                 .take(PARTNERS)
                 .filter(|(other, _)| self.group[other.data / 2] == self.group[end.data / 2]);
             pairs.extend(near.map(|(other, squared)| {
@@ -227,7 +233,9 @@ impl<'a> Links<'a> {
         };
         pairs.sort_by(|x, y| {
             let (p, q) = (places(x), places(y));
-            x.0.total_cmp(&y.0).then(by_place(p.0, q.0)).then(by_place(p.1, q.1))
+            let bend = |pair: &(f64, End, End)| self.inward(pair.1).dot(self.inward(pair.2));
+            let place = by_place(p.0, q.0).then(by_place(p.1, q.1));
+            x.0.total_cmp(&y.0).then(place).then_with(|| bend(x).total_cmp(&bend(y)))
         });
         pairs
     }
@@ -278,7 +286,7 @@ fn assemble(pieces: &[Contour], chain: &Chain) -> Contour {
     let mut path = ArcSpline { vertices: Vec::new(), closed: chain.closed };
     for &end in &chain.entries {
         let piece = &pieces[end / 2].path;
-        if end % 2 == 0 {
+        if end.is_multiple_of(2) {
             append(&mut path.vertices, piece)
         } else {
             append(&mut path.vertices, &piece.reversed())
@@ -299,18 +307,24 @@ fn append(vertices: &mut Vec<Vertex>, piece: &ArcSpline) {
     vertices.extend_from_slice(&piece.vertices);
 }
 
-/// The same path from its lowest place, a ring counter-clockwise.
+/// The same path from its lowest place, a ring counter-clockwise; a ring that encloses nothing goes to its lower
+/// neighbour first.
 fn canonical(path: ArcSpline) -> ArcSpline {
+    let last = path.vertices.len() - 1;
+    let at = |path: &ArcSpline, k: usize| path.vertices[k].at;
     if !path.closed {
-        let (first, last) = (path.vertices[0].at, path.vertices[path.vertices.len() - 1].at);
-        return if by_place(last, first).is_lt() { path.reversed() } else { path };
+        return if by_place(at(&path, last), at(&path, 0)).is_lt() { path.reversed() } else { path };
     }
-    let path = if path.area() < 0.0 { path.reversed() } else { path };
-    let lowest = (0..path.vertices.len()).min_by(|&i, &j| by_place(path.vertices[i].at, path.vertices[j].at));
-    path.started_at(lowest.unwrap_or(0))
+    let lowest = (0..=last).min_by(|&i, &j| by_place(at(&path, i), at(&path, j)));
+    let path = path.started_at(lowest.unwrap_or(0));
+    let area = path.area();
+    let encloses = area.abs() > f64::EPSILON * path.length().powi(2);
+    let forward =
+        if encloses { area > 0.0 } else { by_place(at(&path, 1 % (last + 1)), at(&path, last)).is_le() };
+    if forward { path } else { path.reversed() }
 }
 
 /// By X, then by Y; the two zeros are equal.
-fn by_place(a: Point, b: Point) -> Ordering {
+pub(super) fn by_place(a: Point, b: Point) -> Ordering {
     (a.x + 0.0).total_cmp(&(b.x + 0.0)).then((a.y + 0.0).total_cmp(&(b.y + 0.0)))
 }

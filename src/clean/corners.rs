@@ -37,6 +37,9 @@ const SURE: f64 = 3.0;
 /// turn of 20 degrees to be seen: some arm must show the corner surely, and no shorter one may deny it. A corner is
 /// therefore sure to be seen only where the path runs on for 50 sigma / turn, and two vertices, to both sides.
 pub fn corners(path: &ArcSpline, roughness: &Roughness) -> Vec<CornerPlace> {
+    if path.is_empty() {
+        return Vec::new();
+    }
     let drawn = roughness.texture == Texture::Drawn || path.vertices.iter().any(|v| v.bulge != 0.0);
     if drawn { breaks(path) } else { Arms::of(path, roughness.sigma_mm).corners(path) }
 }

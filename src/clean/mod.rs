@@ -3,14 +3,19 @@
 
 mod chain;
 mod corners;
+mod crossings;
+mod duplicates;
 mod flaw;
+mod nesting;
 mod roughness;
 mod tidy;
 
 use crate::sketch::{Contour, Sketch};
 
 pub use corners::{CornerPlace, corners};
+pub use crossings::crossings;
 pub use flaw::{Flaw, FlawKind};
+pub use nesting::{Nest, Role, nesting};
 pub use roughness::{Roughness, Support, Texture, roughness};
 
 /// A drawing put right, with what was wrong.
@@ -61,7 +66,10 @@ pub fn clean(sketch: &Sketch, join_mm: f64) -> Cleaned {
         }
         contours.push(Contour { path, ..contour_without_path(contour) });
     }
+    let near_mm = join_mm / 10.0;
+    let contours = duplicates::remove(contours, near_mm, &mut counts, &mut flaws);
     let contours = chain::chain(contours, join_mm, &mut counts, &mut flaws);
+    flaws.extend(contours.iter().flat_map(|c| tidy::spikes(c, near_mm)));
     flaws.extend(contours.iter().filter_map(chain::nearly_closed));
     flaw::worst_first(&mut flaws);
     Cleaned { contours, flaws, counts }

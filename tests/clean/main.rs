@@ -2,4 +2,6 @@
 
 mod chaining;
 mod common;
+mod duplicates;
 mod jaggedness;
+mod nesting;
