@@ -102,7 +102,7 @@ fn bad_lines_are_refused_with_their_place() {
         (b"1,2\n3,-Infinity\n", 2, "\"-Infinity\" is not a coordinate"),
         (b"1,2\n1e400,4\n", 2, "\"1e400\" is a number too large to be a coordinate"),
         (b"1,2\n4,-1e400\n", 2, "\"-1e400\" is a number too large to be a coordinate"),
-        (b"1,2\n3\n", 2, "\"3\" has 1 numbers where x and y are wanted"),
+        (b"1,2\n3\n", 2, "\"3\" has 1 number where x and y are wanted"),
         (b"1,2\n3,4,5\n", 2, "\"3,4,5\" has 3 numbers where x and y are wanted"),
         (
             b"1,5;2,5\n",
@@ -168,6 +168,7 @@ fn impossible_scales_are_settings_errors() {
         Scale { scale: -1.0, ..scale() },
         Scale { scale: f64::NAN, ..scale() },
         Scale { fit_width_mm: Some(0.0), ..scale() },
+        Scale { fit_width_mm: Some(100.0), scale: 2.0, ..scale() },
         Scale { fit_width_mm: Some(f64::INFINITY), ..scale() },
         Scale { layers: Some(vec!["cut".into()]), ..scale() },
     ];

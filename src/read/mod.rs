@@ -59,6 +59,14 @@ pub fn to_sketch(mut drawing: Drawing, scale: &Scale) -> Result<Sketch, Error> {
     }
     let bbox = drawing.elements.iter().filter_map(|e| e.chain.bbox()).reduce(|a, b| a.union(b));
     let bbox = bbox.ok_or_else(|| nothing_drawn(&drawing.notes))?;
+    if bbox.width() == 0.0 && bbox.height() == 0.0 {
+        let places: Vec<Place> = drawing.elements.into_iter().map(|e| e.place).collect();
+        drawing.notes.extend(left_out(&places));
+        return Err(nothing_drawn(&drawing.notes));
+    }
+    if drawing.unit.is_none() {
+        check_extent(bbox, Unit::Px.mm())?;
+    }
     let settled = scale.settle(&drawing, bbox)?;
     check_extent(bbox, settled.mm_per_unit)?;
 

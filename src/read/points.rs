@@ -17,7 +17,7 @@ use crate::geom::Vertex;
 use crate::sketch::Place;
 
 const REMEDY: &str = "a point list has an x and a y on each line, with a comma, semicolon, tab or blanks between \
-                      them and points as decimal marks";
+                      them and points as decimal marks; other drawings are read as SVG or ASCII DXF";
 
 /// About so many bytes are read as one piece of parallel work.
 const PIECE_BYTES: usize = 1 << 18;
@@ -308,7 +308,8 @@ fn complaint(line: &str, rest: &str, what: &str) -> String {
     } else if fields.iter().all(is_number) && fields.len() != 2 {
         let decimal_commas = fields.len() == 4 && line.contains(',');
         let hint = if decimal_commas { " (decimal commas? write points instead)" } else { "" };
-        format!("{shown} has {} numbers where x and y are wanted{hint}", fields.len())
+        let numbers = if fields.len() == 1 { "number" } else { "numbers" };
+        format!("{shown} has {} {numbers} where x and y are wanted{hint}", fields.len())
     } else {
         format!("cannot read {shown} as an x and a y")
     }

@@ -91,13 +91,17 @@ impl Scale {
             let what = format!("--fit-width {mm} is not a length above zero");
             return Err(Error::new(Kind::Settings, what).remedy("give the finished width, such as 300mm"));
         }
+        if self.fit_width_mm.is_some() && (self.scale - 1.0).abs() > 0.0 {
+            let error = Error::new(Kind::Settings, "--scale and --fit-width both set the size");
+            return Err(error.remedy("give one of them"));
+        }
         Ok(())
     }
 
     /// Settles the scale of a drawing whose box in its own units is `bbox`.
     pub(super) fn settle(&self, drawing: &Drawing, bbox: Rect) -> Result<Settled, Error> {
         if let Some(width) = self.fit_width_mm {
-            return fit_width(width * self.scale, bbox);
+            return fit_width(width, bbox);
         }
         let said = |unit: &FileUnit, note| Settled { mm_per_unit: unit.mm, from: unit.said_by.clone(), note };
         let settled = match (&drawing.unit, self.drawing_unit, &drawing.assumed) {
@@ -114,7 +118,7 @@ impl Scale {
     }
 
     fn multiplied(&self, settled: Settled) -> Settled {
-        if (self.scale - 1.0).abs() == 0.0 {
+        if (self.scale - 1.0).abs() <= 0.0 {
             return settled;
         }
         Settled {

@@ -1,6 +1,7 @@
 //! SVG through the public door.
 #![expect(clippy::float_cmp, reason = "numbers that are exact must come through exactly")]
 
+mod bad_files;
 mod drawings;
 mod hidden;
 mod page;

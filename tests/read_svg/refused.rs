@@ -70,7 +70,7 @@ fn the_line_is_the_one_inside_a_long_attribute() {
 #[test]
 fn documents_that_are_no_drawing() {
     let rows: [(&str, Kind, &str); 9] = [
-        ("<svg", Kind::Input, "the XML is broken"),
+        ("<svg", Kind::Input, "the XML is cut short"),
         ("<svg><g></svg>", Kind::Input, "the XML is broken"),
         ("<html><body/></html>", Kind::Input, "its root is <html>, not <svg>"),
         ("<svg xmlns='http://www.w3.org/2000/svg'/>", Kind::Input, "holds nothing that can be cut"),

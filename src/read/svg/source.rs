@@ -23,9 +23,14 @@ pub(super) struct Source<'a> {
 pub(super) fn parse(text: &str) -> Result<Document<'_>, Error> {
     let options = ParsingOptions { allow_dtd: true, ..ParsingOptions::default() };
     Document::parse_with_options(text, options).map_err(|error| {
-        let what = format!("the XML is broken: {error}");
+        let (what, line) = match error {
+            roxmltree::Error::UnexpectedEndOfStream => {
+                ("the XML is cut short: the file ends inside an element".to_owned(), text.lines().count())
+            }
+            error => (format!("the XML is broken: {error}"), error.pos().row as usize),
+        };
         let remedy = "save the drawing again, or open it in a browser to see what is left of it";
-        Error::new(Kind::Input, what).on_line(error.pos().row as usize).remedy(remedy)
+        Error::new(Kind::Input, what).on_line(line).remedy(remedy)
     })
 }
 
