@@ -43,14 +43,16 @@ pub fn frechet(path: &ArcSpline, contour: &ArcSpline) -> Deviation {
     let mut sagitta = FIRST_SAGITTA.max(least);
     loop {
         let (p, q) = (Chords::new(path, sagitta), Chords::new(contour, sagitta));
-        let flat = polyline_distance(&p, &q);
         let spent = p.sagitta + q.sagitta;
-        if spent <= 0.02 * flat.mm || sagitta <= least {
+        // Below this the chords take too large a part of the bound, and finer ones are tried.
+        let enough = if sagitta <= least { LEAST_SAGITTA } else { 50.0 * spent };
+        let flat = polyline_distance(&p, &q, enough);
+        if flat.mm >= enough || sagitta <= least {
             let rounding = 16.0 * f64::EPSILON * scale;
             let mm = if flat.mm + spent == 0.0 { 0.0 } else { flat.mm + spent + rounding };
             return Deviation { mm, at: flat.at, certified: true };
         }
-        sagitta = (0.008 * flat.mm).min(sagitta / 2.0).max(least);
+        sagitta = (0.009 * flat.mm).min(sagitta / 2.0).max(least);
     }
 }
 
@@ -88,14 +90,29 @@ impl Bound {
     }
 }
 
-fn polyline_distance(path: &Chords, contour: &Chords) -> Bound {
+/// The bound for two polylines; one below `enough` is not worked on.
+fn polyline_distance(path: &Chords, contour: &Chords, enough: f64) -> Bound {
     let directions = Directions::of(path, contour);
-    let bound = one_way(path, contour, directions.against);
-    if bound.mm <= directions.other {
-        bound
-    } else {
-        bound.least(one_way(path, contour, !directions.against))
-    }
+    let in_direction = |against: bool| {
+        let (p, mut q) = (path.lap(), contour.lap());
+        if against {
+            q.reverse();
+        }
+        match (path.closed, contour.closed) {
+            (false, false) => open_bound(&p, &q, enough),
+            (true, true) => closed_bound(&p, &q, enough),
+            (true, false) => nearest_opening(&p, q[0], |p| open_bound(p, &q, enough)),
+            (false, true) => nearest_opening(&q, p[0], |q| open_bound(&p, q, enough)),
+        }
+    };
+    let bound = in_direction(directions.against);
+    if bound.mm <= directions.other { bound } else { bound.least(in_direction(!directions.against)) }
+}
+
+/// The least of the bounds for a lap opened beside `start`.
+fn nearest_opening(lap: &[Point], start: Point, bound: impl Fn(&[Point]) -> Bound) -> Bound {
+    let bounds = openings(lap, start).map(|opening| bound(&opening.lap));
+    bounds.reduce(Bound::least).unwrap_or(Bound::none(start))
 }
 
 /// In which direction to walk the contour first.
@@ -141,35 +158,17 @@ impl Extent {
     }
 }
 
-/// The bound for chains walked the same way, the contour against its own direction if asked.
-fn one_way(path: &Chords, contour: &Chords, against: bool) -> Bound {
-    let (p, mut q) = (path.lap(), contour.lap());
-    if against {
-        q.reverse();
-    }
-    let open_path = |p: Vec<Point>| open_bound(&p, &q);
-    let open_contour = |q: Vec<Point>| open_bound(&p, &q);
-    match (path.closed, contour.closed) {
-        (false, false) => open_bound(&p, &q),
-        (true, true) => closed_bound(&p, &q),
-        (true, false) => openings(&p, q[0]).map(|o| open_path(o.lap)).fold(Bound::none(q[0]), Bound::least),
-        (false, true) => {
-            openings(&q, p[0]).map(|o| open_contour(o.lap)).fold(Bound::none(q[0]), Bound::least)
-        }
-    }
-}
-
 /// The bound for two laps, the first corner repeated. Both are opened at a matched place, which makes them open
 /// ones: beside the contour's first corner, then, where that is not good enough, where the walk shows that nothing
 /// pulls the match elsewhere.
-fn closed_bound(path: &[Point], contour: &[Point]) -> Bound {
+fn closed_bound(path: &[Point], contour: &[Point], enough: f64) -> Bound {
     let mut best: Option<(Coupling, Vec<Point>)> = None;
     for opening in openings(path, contour[0]) {
         if best.as_ref().is_some_and(|(least, _)| opening.distance >= least.mm) {
             break;
         }
         let coupling = Walk::new(&opening.lap, contour).couple();
-        if is_tight(&coupling, furthest(&opening.lap, contour, &coupling)) {
+        if coupling.mm <= enough || is_tight(&coupling, furthest(&opening.lap, contour, &coupling)) {
             return coupling.into();
         }
         if best.as_ref().is_none_or(|(least, _)| coupling.mm < least.mm) {
@@ -181,7 +180,7 @@ fn closed_bound(path: &[Point], contour: &[Point]) -> Bound {
     let bound = match walk.cut() {
         Some(cut) => {
             let contour = reopened(contour, cut.corner, contour[cut.corner]);
-            open_bound(&reopened(&open, cut.piece, cut.foot), &contour)
+            open_bound(&reopened(&open, cut.piece, cut.foot), &contour, enough)
         }
         None => tightened(&open, contour, coupling),
     };
@@ -216,15 +215,17 @@ fn openings(lap: &[Point], start: Point) -> impl Iterator<Item = Opening> + '_ {
 }
 
 /// The bound for two open polylines of at least two corners, walked from first to last.
-fn open_bound(path: &[Point], contour: &[Point]) -> Bound {
+fn open_bound(path: &[Point], contour: &[Point], enough: f64) -> Bound {
     let coupling = Walk::new(path, contour).couple();
-    let proven = proven(path, contour, &coupling);
-    if is_tight(&coupling, proven) { coupling.into() } else { tightened(path, contour, coupling) }
+    if coupling.mm <= enough || is_tight(&coupling, proven(path, contour, &coupling)) {
+        return coupling.into();
+    }
+    tightened(path, contour, coupling)
 }
 
-/// True when the bound cannot be much too large, or is too small to matter.
+/// True when the bound cannot be much too large.
 fn is_tight(coupling: &Coupling, proven: f64) -> bool {
-    coupling.mm <= (LOOSE * proven).max(LEAST_SAGITTA)
+    coupling.mm <= LOOSE * proven
 }
 
 /// The distance of the furthest corner from the whole of the other chain: a lower bound, whatever the match.
@@ -245,7 +246,7 @@ fn proven(path: &[Point], contour: &[Point], coupling: &Coupling) -> f64 {
 /// Halves the gap between the proven lower bound and the coupling's distance by deciding distances between, until
 /// it is narrow or the chains are too unlike for that in linear work.
 fn tightened(path: &[Point], contour: &[Point], coupling: Coupling) -> Bound {
-    let budget = 64 * (path.len() + contour.len()) + 300_000;
+    let budget = 64 * (path.len() + contour.len()) + 50_000;
     let mut bound = Bound::from(coupling);
     let mut low = proven(path, contour, &coupling).max(LEAST_SAGITTA);
     let mut high = bound.mm;
