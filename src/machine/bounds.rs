@@ -100,6 +100,7 @@ pub(super) fn numbers(m: &Machine) -> Vec<Bounded> {
         "five times gravity is more than a router bears",
     );
     all.extend(controller_numbers(m));
+    all.extend(text_numbers(m));
     all.extend(arc_numbers(m));
     all.extend(retract_numbers(m));
     all.extend(spindle_numbers(m));
@@ -112,40 +113,68 @@ fn number(field: &str, value: f64, count: Count, (low, high): (f64, f64), reason
     Bounded { field: field.to_string(), value, count, low, high, reason }
 }
 
-/// The controller's and the text's numbers.
+/// The controller's numbers.
 fn controller_numbers(m: &Machine) -> Vec<Bounded> {
     use Count::{Length, Plain};
-    let (c, p) = (&m.controller, &m.program);
-    // The end radii of an arc rounded to q differ by up to 1.41 q, and 0.002 mm or 0.0002 in are allowed.
-    let decimals = if m.unit == Unit::Mm { (3.0, 6.0) } else { (4.0, 7.0) };
+    let c = &m.controller;
+    let blocks = (1.0, 100_000.0);
     let mut all = vec![
         number(
             "controller.junction",
             c.junction,
             Length,
             (0.0001, 1.0),
-            "a corner is rounded by less than a cutter's radius, and not by nothing",
+            "a corner is rounded by something, and by less than a cutter",
         ),
         number(
             "controller.blocks_per_second",
             c.blocks_per_second,
             Plain("blocks/s"),
-            (1.0, 1_000_000.0),
+            blocks,
             "a controller reads at least one block a second",
         ),
         number(
             "controller.queue",
             f64::from(c.queue),
             Plain("blocks"),
-            (1.0, 100_000.0),
+            blocks,
             "a controller holds at least the block it runs",
         ),
+        number(
+            "path.blending",
+            m.path.blending,
+            Length,
+            (0.0, 1.0),
+            "a corner is rounded by less than a cutter",
+        ),
+    ];
+    let memory = c.memory_bytes.map(f64::from);
+    all.extend(memory.map(|bytes| {
+        number(
+            "controller.memory_bytes",
+            bytes,
+            Plain("bytes"),
+            (1024.0, 4e9),
+            "less than a kilobyte holds no program",
+        )
+    }));
+    all
+}
+
+/// The numbers of the text and its file.
+fn text_numbers(m: &Machine) -> Vec<Bounded> {
+    use Count::Plain;
+    let p = &m.program;
+    // The end radii of an arc rounded to q differ by up to 1.41 q, and 0.002 mm or 0.0002 in are allowed.
+    let decimals = if m.unit == Unit::Mm { (3.0, 6.0) } else { (4.0, 7.0) };
+    let length = f64::from(m.files.longest_name);
+    vec![
         number(
             "program.decimals",
             f64::from(p.decimals),
             Plain(""),
             decimals,
-            "fewer decimals break the rule for the end radii of arcs, more are noise",
+            "fewer break the rule for the end radii of arcs, more are noise",
         ),
         number(
             "program.longest_line",
@@ -163,30 +192,12 @@ fn controller_numbers(m: &Machine) -> Vec<Bounded> {
         ),
         number(
             "files.longest_name",
-            f64::from(m.files.longest_name),
+            length,
             Plain("characters"),
             (1.0, 255.0),
             "a file needs a name, and no file system takes more",
         ),
-        number(
-            "path.blending",
-            m.path.blending,
-            Length,
-            (0.0, 1.0),
-            "a corner is rounded by less than a cutter's radius",
-        ),
-    ];
-    let memory = c.memory_bytes.map(f64::from);
-    all.extend(memory.map(|bytes| {
-        number(
-            "controller.memory_bytes",
-            bytes,
-            Plain("bytes"),
-            (1024.0, 4e9),
-            "less than a kilobyte holds no program",
-        )
-    }));
-    all
+    ]
 }
 
 /// The numbers of the arcs.

@@ -333,8 +333,8 @@ impl Machine {
     /// The profile in `text`, in the unit it names, with every field inside its bounds.
     ///
     /// # Errors
-    /// [`Kind::Settings`] for text that is not TOML, a field that is missing, unknown or of the wrong kind (with
-    /// its line), or values outside their bounds (all of them, each with its range and the reason).
+    /// [`Kind::Settings`] for text that is not TOML, a field that is missing, unknown or of the wrong kind
+    /// (with its line), or values outside their bounds (all of them, each with its range and the reason).
     pub fn from_toml(text: &str) -> Result<Self, Error> {
         let mut machine: Self = toml::from_str(text).map_err(|error| bounds::unreadable(text, &error))?;
         let mm = machine.unit.mm();

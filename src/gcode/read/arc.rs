@@ -67,7 +67,8 @@ impl Arc {
         self.radius(0.5) * self.sweep.abs()
     }
 
-    /// The ends of its parts of at most half a turn, each with its fraction of the length, and the bulge they share.
+    /// The ends of its parts of at most half a turn, each with its fraction of the length, and the bulge
+    /// they share.
     pub(super) fn halves(&self) -> (f64, impl Iterator<Item = (f64, Point)>) {
         let parts = if self.sweep.abs() > PI { 2 } else { 1 };
         let arc = *self;
@@ -97,7 +98,7 @@ impl Arc {
 
     /// The point at the fraction `t`.
     fn at(&self, t: f64) -> Point {
-        if t == 1.0 {
+        if t >= 1.0 {
             return self.to;
         }
         let (sin, cos) = (self.sweep * t).sin_cos();

@@ -1,4 +1,5 @@
-//! The codes of one block, sorted by modal group and checked against the rules for a line (NISTIR 6556, 3.3 and 3.4).
+//! The codes of one block, sorted by modal group and checked against the rules for a line (NISTIR 6556, 3.3
+//! and 3.4).
 
 use super::words::Word;
 use crate::error::{Error, Kind};
@@ -152,14 +153,15 @@ pub(super) fn unknown(word: &Word) -> Error {
         }
         (b'G', 100 | 382) => "it changes or reads what the program does not hold",
         (b'G', 50 | 51) => "cubic moves are not read yet",
+        (b'E', _) => "numbers have no exponents in this language",
         (b'M', 980 | 990) => "calls of other programs are not read",
         _ => "what a program does after a word that is not known cannot be told",
     };
     Error::new(Kind::Refused, format!("{word} is not known")).remedy(why)
 }
 
-/// The group of the G word with the number `code`, times ten (NISTIR 6556, table 4; G90.1 and G91.1 from common
-/// practice).
+/// The group of the G word with the number `code`, times ten (NISTIR 6556, table 4; G90.1 and G91.1 from
+/// common practice).
 fn g_group(code: u16) -> Option<Group> {
     Some(match code {
         0 | 10 | 20 | 30 | 800 | 810 | 820 | 830 => Group::Motion,

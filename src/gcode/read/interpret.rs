@@ -1,6 +1,7 @@
 //! Blocks to moves: the modal interpreter.
 //!
-//! Rules and order of execution are those of NISTIR 6556, 3.4 to 3.8 and table 8. What it does not know is an error.
+//! Rules and order of execution are those of NISTIR 6556, 3.4 to 3.8 and table 8. What it does not know is
+//! an error.
 
 use super::block::{Codes, Group, wrong};
 use super::program::{Event, Program, What};
@@ -46,8 +47,9 @@ impl Dialect {
 /// What `text` says on a controller of the given dialect.
 ///
 /// # Errors
-/// [`Kind::Refused`](crate::error::Kind::Refused), with the line and the word, for a word that is not known, for one
-/// that belongs to nothing on its line, for words that exclude each other, and for moves that the text leaves open.
+/// [`Kind::Refused`](crate::error::Kind::Refused), with the line and the word, for a word that is not
+/// known, for one that belongs to nothing on its line, for words that exclude each other, and for moves
+/// that the text leaves open.
 pub fn interpret(text: &Text, dialect: &Dialect) -> Result<Program, Error> {
     let mut controller = Controller::new(dialect);
     let mut codes = Codes::new();
@@ -359,8 +361,8 @@ impl<'a> Controller<'a> {
     fn away(&mut self, moved: [bool; 3]) {
         self.program.motion_blocks += 1;
         self.happens(What::MachineMove { moved });
-        for axis in 0..3 {
-            self.at[axis] = self.at[axis].filter(|_| !moved[axis]);
+        for (at, moved) in self.at.iter_mut().zip(moved) {
+            *at = at.filter(|_| !moved);
         }
     }
 
@@ -512,5 +514,5 @@ impl<'a> Controller<'a> {
 
 /// The G word with the number `code`, held times ten.
 fn g_word(code: u16) -> String {
-    if code % 10 == 0 { format!("G{}", code / 10) } else { format!("G{}.{}", code / 10, code % 10) }
+    if code.is_multiple_of(10) { format!("G{}", code / 10) } else { format!("G{}.{}", code / 10, code % 10) }
 }

@@ -10,7 +10,8 @@ use crate::error::Error;
 use crate::machine::{HelixFeed, Unit};
 use crate::toolpath::{Move, Position};
 
-/// Arcs across the XY plane become chords this near, in mm: half of what the language lets an arc's radii differ.
+/// Arcs across the XY plane become chords this near, in mm: half of what the language lets an arc's radii
+/// differ.
 const CHORD_ERROR: f64 = 0.001;
 
 /// A place that may not be stated in every axis.

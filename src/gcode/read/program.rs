@@ -8,8 +8,8 @@ use crate::toolpath::Toolpath;
 /// A program that was read and understood, every word of it.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Program {
-    /// The moves from the first place that the program states, in mm. A move at a feed that was never set has a feed
-    /// of 0. An arc over more than half a turn is two moves with the same line.
+    /// The moves from the first place that the program states, in mm. A move at a feed that was never set
+    /// has a feed of 0. An arc over more than half a turn is two moves with the same line.
     pub toolpath: Toolpath,
     /// What happens between the moves, in order.
     pub events: Vec<Event>,
@@ -21,11 +21,11 @@ pub struct Program {
     pub unit: Option<Unit>,
     /// The largest difference, in mm, between an arc's radius at its start and at its end, with its line.
     pub worst_arc: Option<ArcFlaw>,
-    /// Arcs whose radii differ by more than the language allows: 0.002 mm, or 0.0002 in for a program in inches
-    /// (NISTIR 6556, 3.5.3.2).
+    /// Arcs whose radii differ by more than the language allows: 0.002 mm, or 0.0002 in for a program in
+    /// inches (NISTIR 6556, 3.5.3.2).
     pub arc_flaws: Vec<ArcFlaw>,
-    /// How far, in mm, moves may be from what the text says: 0 unless there are arcs across the XY plane, which
-    /// become straight moves.
+    /// How far, in mm, moves may be from what the text says: 0 unless there are arcs across the XY plane,
+    /// which become straight moves.
     pub approximated: f64,
     /// What was not in the text and taken from the profile or from the language, one sentence each.
     pub assumed: Vec<String>,

@@ -1,7 +1,7 @@
 //! Program text to words and blocks, faithfully: every word as it stands, nothing skipped, no meaning yet.
 //!
-//! Lines, words, numbers and comments are those of NISTIR 6556, 3.1 and 3.3, with the semicolon comment of common
-//! practice beside the bracketed one.
+//! Lines, words, numbers and comments are those of NISTIR 6556, 3.1 and 3.3, with the semicolon comment of
+//! common practice beside the bracketed one.
 
 use crate::error::{Error, Kind};
 
@@ -59,9 +59,10 @@ impl std::fmt::Display for Word {
 /// The words and blocks of `text`.
 ///
 /// # Errors
-/// [`Kind::Input`], with the line, for anything that is not a line of the language: a character that starts no word,
-/// a number without digits, a comment that does not close, a line of more than 256 characters, a line number of more
-/// than five digits, an opening percent sign without its closing one, text without any block.
+/// [`Kind::Input`], with the line, for anything that is not a line of the language: a character that starts
+/// no word, a number without digits, a comment that does not close, a line of more than 256 characters, a
+/// line number of more than five digits, an opening percent sign without its closing one, text without any
+/// block.
 pub fn read(text: &str) -> Result<Text<'_>, Error> {
     let mut reader = Reader { text, bytes: text.as_bytes(), at: 0, line: 1, read: Text::default() };
     reader.program()?;
@@ -200,6 +201,9 @@ impl<'a> Reader<'a> {
             }
             self.at += 1;
         }
+        if !any && matches!(self.peek(), Some(b'#' | b'[')) {
+            return Err(self.stray());
+        }
         if !any {
             return Err(self.wrong(format!("{} has no number", char::from(letter))));
         }
@@ -272,7 +276,7 @@ impl<'a> Reader<'a> {
     /// The error for the character here, which starts no word.
     fn stray(&self) -> Error {
         let c = self.text[self.at..].chars().next().unwrap_or(' ');
-        let shown = c.escape_default();
+        let shown = c.escape_debug();
         match c {
             '#' | '[' | '=' => self.wrong(format!("`{shown}`: parameters and expressions are not read")),
             '/' => self.wrong("`/` is not at the start of its line"),

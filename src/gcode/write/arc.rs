@@ -1,8 +1,9 @@
 //! Arcs on the grid of the program's numbers, so that what the controller is told is the arc that was meant.
 //!
-//! End points are rounded first; the centre goes to the perpendicular bisector of the rounded chord, as near to the
-//! true centre as that allows, and is rounded then. The radii at the two ends differ by at most 1.41 counts that way,
-//! where rounding every number by itself reaches 2.83 and breaks the rule of NISTIR 6556, 3.5.3.2.
+//! End points are rounded first; the centre goes to the perpendicular bisector of the rounded chord, as
+//! near to the true centre as that allows, and is rounded then. The radii at the two ends differ by at most
+//! 1.41 counts that way, where rounding every number by itself reaches 2.83 and breaks the rule of NISTIR
+//! 6556, 3.5.3.2.
 
 use std::f64::consts::TAU;
 
@@ -11,19 +12,21 @@ use kurbo::{Point, Vec2};
 use super::decimal::{Grid, Place};
 use crate::geom::Span;
 use crate::machine::{ArcStyle, Arcs, Machine};
-use crate::toolpath::Move;
+use crate::toolpath::{Move, Position};
 
-/// A chord shorter than this many counts could be rounded to nothing, and a block of it read as a whole circle.
+/// A chord shorter than this many counts could be rounded to nothing, and a block of it read as a whole
+/// circle.
 const SHORTEST_CHORD: f64 = 10.0;
 
-/// Near half a turn a radius says little about where the arc is: at a third of a turn one half count of radius moves
-/// the arc by half a count, at half a turn without bound.
+/// Near half a turn a radius says little about where the arc is: at a third of a turn one half count of
+/// radius moves the arc by half a count, at half a turn without bound.
 const WIDEST_BY_RADIUS: f64 = TAU / 3.0;
 
 /// A chord bends by less than half a count: the arc is a straight line on the grid.
 const STRAIGHT: f64 = 0.5;
 
-/// How far, in counts, the middle of a rounded arc may stray: ends and centre each cost 0.71, and that is 1.41.
+/// How far, in counts, the middle of a rounded arc may stray: ends and centre each cost 0.71, and that is
+/// 1.41.
 const STRAY: f64 = 1.5;
 
 /// One motion block, in counts.
@@ -44,6 +47,14 @@ pub(super) enum Bend {
     Radius { radius: i64, clockwise: bool },
 }
 
+/// A piece of a move, between two fractions of its length.
+#[derive(Clone, Copy)]
+struct Piece {
+    span: Span,
+    from: f64,
+    to: f64,
+}
+
 /// Rounds arcs for one machine.
 #[derive(Clone, Copy)]
 pub(super) struct Rounder<'a> {
@@ -54,7 +65,8 @@ pub(super) struct Rounder<'a> {
 }
 
 impl<'a> Rounder<'a> {
-    /// For `machine`; arcs that it cannot take become straight blocks within `chord_error` mm, or half a count.
+    /// For `machine`; arcs that it cannot take become straight blocks within `chord_error` mm, or half a
+    /// count.
     pub(super) fn new(machine: &'a Machine, chord_error: f64) -> Self {
         let grid = Grid::of(machine);
         Self { grid, arcs: &machine.arcs, chord_error: grid.exact(chord_error).max(STRAIGHT) }
@@ -64,27 +76,28 @@ impl<'a> Rounder<'a> {
     pub(super) fn blocks(&self, m: &Move, at: Place, blocks: &mut Vec<Block>) {
         let span = m.span();
         let widest = if self.arcs.style == ArcStyle::Radius { WIDEST_BY_RADIUS } else { TAU };
-        let parts = (span.sweep().abs() / widest).ceil().max(1.0) as usize;
+        let pieces = (span.sweep().abs() / widest).ceil().max(1.0) as usize;
         let mut at = at;
-        for k in 0..parts {
-            let (t0, t1) = (k as f64 / parts as f64, (k + 1) as f64 / parts as f64);
-            let part = if parts == 1 { span } else { span.part(t0, t1) };
-            at = self.part(m, part, (t0, t1), at, blocks);
+        for k in 0..pieces {
+            let (from, to) = (k as f64 / pieces as f64, (k + 1) as f64 / pieces as f64);
+            let span = if pieces == 1 { span } else { span.part(from, to) };
+            at = self.piece(m, Piece { span, from, to }, at, blocks);
         }
     }
 
-    /// The blocks of `part`, the piece of `m` between two fractions of its length. Returns where they end.
-    fn part(&self, m: &Move, part: Span, (t0, t1): (f64, f64), at: Place, blocks: &mut Vec<Block>) -> Place {
-        let to = self.place(m, part.end, t1);
-        if self.grid.exact(part.sagitta()) <= STRAIGHT {
+    /// The blocks of a piece of `m`. Returns where they end.
+    fn piece(&self, m: &Move, piece: Piece, at: Place, blocks: &mut Vec<Block>) -> Place {
+        let span = piece.span;
+        let to = self.place(m, span.end, piece.to);
+        if self.grid.exact(span.sagitta()) <= STRAIGHT {
             blocks.push(Block { to, bend: Bend::Straight });
-        } else if let Some(bend) = self.bend(part, at, to) {
+        } else if let Some(bend) = self.bend(span, at, to) {
             blocks.push(Block { to, bend });
         } else {
-            let chords = self.chords(part);
+            let chords = self.chords(span);
             for k in 1..=chords {
                 let t = k as f64 / chords as f64;
-                let to = self.place(m, part.at(t), t0 + (t1 - t0) * t);
+                let to = self.place(m, span.at(t), piece.from + (piece.to - piece.from) * t);
                 blocks.push(Block { to, bend: Bend::Straight });
             }
         }
@@ -93,8 +106,8 @@ impl<'a> Rounder<'a> {
 
     /// The place on the grid of the point `xy`, at the fraction `t` of the move's length.
     fn place(&self, m: &Move, xy: Point, t: f64) -> Place {
-        let z = if t == 1.0 { m.to.z } else { m.from.z + (m.to.z - m.from.z) * t };
-        Place { x: self.grid.count(xy.x), y: self.grid.count(xy.y), z: self.grid.count(z) }
+        let z = if t >= 1.0 { m.to.z } else { m.from.z + (m.to.z - m.from.z) * t };
+        self.grid.place(Position { xy, z })
     }
 
     /// How many chords keep within the chord error of `part`.
@@ -104,8 +117,8 @@ impl<'a> Rounder<'a> {
         (part.sweep().abs() / (2.0 * half_step)).ceil().max(2.0) as usize
     }
 
-    /// How the controller is told to run along `part` from `at` to `to`; `None` when it cannot be, or when the arc
-    /// that it would read is not the one that is meant.
+    /// How the controller is told to run along `part` from `at` to `to`; `None` when it cannot be, or when
+    /// the arc that it would read is not the one that is meant.
     fn bend(&self, part: Span, at: Place, to: Place) -> Option<Bend> {
         let limits = self.arcs.smallest..=self.arcs.largest;
         let chord = to.xy() - at.xy();
@@ -151,14 +164,14 @@ impl<'a> Rounder<'a> {
         (sagitta - self.grid.exact(part.sagitta())).abs() <= STRAY
     }
 
-    /// The bend of the whole circle that is made of the half circles `first` and `second`; `None` when they are not
-    /// such, or the machine takes none.
+    /// The bend of the whole circle that is made of the half circles `first` and `second`; `None` when they
+    /// are not such, or the machine takes none.
     pub(super) fn circle(&self, first: &Move, second: &Move, at: Place) -> Option<Block> {
         let half = |m: &Move| (1.0 - m.bulge.abs()).abs() <= 8.0 * f64::EPSILON;
         let joined = first.to == second.from && first.from.xy == second.to.xy;
-        let alike = first.bulge == second.bulge && first.feed == second.feed;
-        let steady = first.to.z - first.from.z == second.to.z - second.from.z;
-        let kept = first.spindle_rpm == second.spindle_rpm;
+        let alike = first.bulge - second.bulge == 0.0 && first.feed == second.feed;
+        let steady = first.to.z - first.from.z - (second.to.z - second.from.z) == 0.0;
+        let kept = first.spindle_rpm - second.spindle_rpm == 0.0;
         let to = self.grid.place(second.to);
         let level = at.z == to.z || self.arcs.helices;
         let limits = self.arcs.smallest..=self.arcs.largest;

@@ -69,7 +69,8 @@ impl Place {
     }
 }
 
-/// Appends `count` of the last of `decimals` places to `text`, without exponent, negative zero or trailing zeros.
+/// Appends `count` of the last of `decimals` places to `text`, without exponent, negative zero or trailing
+/// zeros.
 pub(super) fn push(text: &mut String, count: i64, decimals: u32) {
     const ZERO: u8 = b'0';
     if count == 0 {

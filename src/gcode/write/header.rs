@@ -19,8 +19,8 @@ pub struct Header {
     pub cutter: String,
     /// The clearance height in mm: the cutter goes up to it first, and no rapid goes across or down below it.
     pub clearance: f64,
-    /// What an arc that the machine cannot take may lose as straight blocks, in mm; half a unit of the last place is
-    /// always allowed.
+    /// What an arc that the machine cannot take may lose as straight blocks, in mm; half a unit of the last
+    /// place is always allowed.
     pub chord_error: f64,
     /// Further lines: side, tolerance, cautions, digest.
     pub notes: Vec<String>,

@@ -17,13 +17,14 @@ use pen::Pen;
 
 /// The program that moves the cutter along `toolpath` on `machine`.
 ///
-/// The cutter goes up to the clearance height before anything else moves, and no rapid goes across or down below it.
-/// Ends are rounded to the last decimal and arcs as that allows: the path moves by less than 1.5 units of the last
-/// place, or by `header.chord_error` where the machine cannot take an arc.
+/// The cutter goes up to the clearance height before anything else moves, and no rapid goes across or down
+/// below it. Ends are rounded to the last decimal and arcs as that allows: the path moves by less than 1.5
+/// units of the last place, or by `header.chord_error` where the machine cannot take an arc.
 ///
 /// # Errors
-/// [`Kind::Refused`] for a toolpath that is empty or broken, has numbers that are not finite or a feed that is not
-/// above zero, an arc or a descent below the clearance height by rapid, or a line too long for the controller.
+/// [`Kind::Refused`] for a toolpath that is empty or broken, has numbers that are not finite or a feed that
+/// is not above zero, an arc or a descent below the clearance height by rapid, or a line too long for the
+/// controller.
 pub fn write(toolpath: &Toolpath, header: &Header, machine: &Machine) -> Result<String, Error> {
     sound(toolpath, header)?;
     let mut pen = Pen::new(&machine.program);

@@ -25,7 +25,7 @@ pub(super) struct Motion<'a> {
     word: Option<i64>,
     /// The feed word in force, in its last place.
     feed: Option<i64>,
-    rpm: f64,
+    rpm: i64,
     /// Moves of the toolpath that the blocks already cover.
     covered: usize,
     blocks: Vec<Block>,
@@ -46,7 +46,7 @@ impl<'a> Motion<'a> {
             xy_known: false,
             word: None,
             feed: None,
-            rpm: 0.0,
+            rpm: 0,
             covered: 0,
             blocks: Vec::new(),
         }
@@ -62,7 +62,7 @@ impl<'a> Motion<'a> {
         if !by_machine {
             self.up(self.at.z);
         }
-        self.spindle(first.spindle_rpm);
+        self.spindle(first.spindle_rpm.round() as i64);
         let aim = if first.is_rapid() { self.grid.place(first.to) } else { from };
         self.across(aim);
         if by_machine {
@@ -85,7 +85,7 @@ impl<'a> Motion<'a> {
             let what = format!("move {} of the toolpath does not start where the one before it ends", i + 1);
             return Err(Error::new(Kind::Refused, what));
         }
-        self.spindle(m.spindle_rpm);
+        self.spindle(m.spindle_rpm.round() as i64);
         let Some(feed) = m.feed else { return self.rapid(m) };
         let mut blocks = std::mem::take(&mut self.blocks);
         let marked = self.marks.peek().is_some_and(|mark| mark.before == i + 1);
@@ -110,15 +110,14 @@ impl<'a> Motion<'a> {
             self.up(self.clearance);
         }
         machine_retract(&mut self.pen, self.machine, self.grid);
-        self.spindle(0.0);
+        self.spindle(0);
         park(&mut self.pen, self.machine, self.grid);
         self.pen
     }
 
     /// What the feed along the path is multiplied by to give the feed that the controller wants to be told.
     fn along_path(&self, m: &Move) -> f64 {
-        let helix = m.bulge != 0.0 && m.from.z != m.to.z;
-        let by_plane = helix && self.machine.arcs.helix_feed == HelixFeed::Plane;
+        let by_plane = m.bulge != 0.0 && self.machine.arcs.helix_feed == HelixFeed::Plane;
         if by_plane { m.span().length() / m.length() } else { 1.0 }
     }
 
@@ -244,25 +243,25 @@ impl<'a> Motion<'a> {
     }
 
     /// The spindle at `rpm`, by the program or by hand.
-    fn spindle(&mut self, rpm: f64) {
+    fn spindle(&mut self, rpm: i64) {
         if rpm == self.rpm {
             return;
         }
-        let started = self.rpm == 0.0;
+        let started = self.rpm == 0;
         self.rpm = rpm;
         self.word = None;
         if self.machine.spindle.hand_switched {
-            let order = if rpm > 0.0 {
-                format!("switch the spindle on at {rpm:.0}")
+            let order = if rpm > 0 {
+                format!("switch the spindle on at {rpm}")
             } else {
                 "switch the spindle off".into()
             };
             self.pen.comment(&format!("MSG,{order}, then go on"));
             self.pen.line("M0");
-        } else if rpm == 0.0 {
+        } else if rpm == 0 {
             self.pen.line("M5");
         } else {
-            self.pen.word('S', rpm.round() as i64, 0);
+            self.pen.word('S', rpm, 0);
             if started {
                 self.pen.words("M3");
             }
