@@ -23,32 +23,39 @@ pub(super) struct Bounded {
 }
 
 impl Count {
-    /// `value`, held in mm, as it is shown in a profile of `unit`.
-    fn show(self, value: f64, unit: Unit) -> String {
-        let own = super::twelve_digits(value / unit.mm());
+    /// What the count is called in a profile of `unit`.
+    fn name(self, unit: Unit) -> String {
         match self {
-            Self::Length => format!("{own} {}", unit.symbol()),
-            Self::Feed => format!("{own} {}/min", unit.symbol()),
-            Self::Acceleration => format!("{own} {}/s2", unit.symbol()),
-            Self::Plain("") => value.to_string(),
-            Self::Plain(name) => format!("{value} {name}"),
+            Self::Length => unit.symbol().into(),
+            Self::Feed => format!("{}/min", unit.symbol()),
+            Self::Acceleration => format!("{}/s2", unit.symbol()),
+            Self::Plain(name) => name.into(),
+        }
+    }
+
+    /// `value`, held in mm, as a profile of `unit` has it.
+    fn own(self, value: f64, unit: Unit) -> f64 {
+        match self {
+            Self::Plain(_) => value,
+            _ => super::rounded(value / unit.mm(), 12),
         }
     }
 }
 
 impl Bounded {
-    /// The value and the range, as a profile of `unit` has them.
+    /// The value and the range, as a profile of `unit` has them; a bound in four digits.
     pub(super) fn shown(&self, unit: Unit) -> (String, String) {
-        let show = |value| self.count.show(value, unit);
-        (show(self.value), format!("{} to {}", show(self.low), show(self.high)))
+        let bound = |value| super::rounded(self.count.own(value, unit), 4);
+        let (value, low, high) = (self.count.own(self.value, unit), bound(self.low), bound(self.high));
+        let name = self.count.name(unit);
+        (format!("{value} {name}").trim_end().into(), format!("{low} to {high} {name}").trim_end().into())
     }
 
     /// The complaint, when the value is outside its bounds; NaN is.
     fn flaw(&self, unit: Unit) -> Option<String> {
-        (!(self.low..=self.high).contains(&self.value)).then(|| {
-            let (value, range) = self.shown(unit);
-            format!("{} is {value}, allowed is {range}: {}", self.field, self.reason)
-        })
+        let (value, range) = self.shown(unit);
+        let flaw = || format!("{} is {value}, allowed is {range}: {}", self.field, self.reason);
+        (!(self.low..=self.high).contains(&self.value)).then(flaw)
     }
 }
 
@@ -57,12 +64,20 @@ pub(super) fn unreadable(text: &str, error: &toml::de::Error) -> Error {
     let at = error.span().map_or(0, |span| span.start.min(text.len()));
     let line = text.bytes().take(at).filter(|&b| b == b'\n').count() + 1;
     let said = text.lines().nth(line - 1).unwrap_or("").trim();
-    let what = error.message().replace("expected f64", "expected a number").replace('\n', " ");
-    let what = what.replace("expected u32", "expected a whole number from 0");
-    let quoted =
-        if error.span().is_some() && !said.is_empty() { format!("`{said}`: ") } else { String::new() };
+    let mut what = error.message().replace('\n', " ");
+    let words = [
+        ("expected f64", "expected a number"),
+        ("expected u32", "expected a whole number from 0"),
+        ("expected a boolean", "expected true or false"),
+        ("expected a sequence", "expected a list"),
+    ];
+    words.into_iter().for_each(|(theirs, ours)| what = what.replace(theirs, ours));
+    // A field that is missing from the whole file has no line of its own.
+    let has_line = error.span().is_some() && (!what.starts_with("missing") || said.starts_with('['));
+    let quoted = if has_line { format!("`{said}`: ") } else { String::new() };
     let error = Error::new(Kind::Settings, format!("the profile cannot be read: {quoted}{what}"));
-    error.on_line(line).remedy("`ribband machines NAME` shows a profile with all its fields")
+    let error = if has_line { error.on_line(line) } else { error };
+    error.remedy("`ribband machines NAME` shows a profile with all its fields")
 }
 
 /// Everything that is wrong with the profile, one sentence each.

@@ -1,6 +1,6 @@
 //! A profile shown to people and to programs.
 
-use comfy_table::{Table, presets::UTF8_HORIZONTAL_ONLY};
+use comfy_table::{Table, presets::NOTHING};
 use serde_json::{Value, json};
 
 use super::{ArcStyle, Build, Comments, Dwell, HelixFeed, Letters, Machine, Unit, bounds};
@@ -9,14 +9,14 @@ use super::{ArcStyle, Build, Comments, Dwell, HelixFeed, Letters, Machine, Unit,
 /// the range it may have, in the machine's own unit.
 pub fn explain(machine: &Machine) -> String {
     let mut table = Table::new();
-    table.load_style(UTF8_HORIZONTAL_ONLY);
+    table.load_style(NOTHING);
     table.set_header(["number", "value", "allowed"]);
     for number in bounds::numbers(machine) {
         let (value, range) = number.shown(machine.unit);
         table.add_row([number.field, value, range]);
     }
     let choices: String = choices(machine).iter().map(|choice| format!("  {choice}\n")).collect();
-    format!("{}: {}\n{choices}{table}\n", machine.name, machine.describes)
+    format!("{}: {}\n{choices}{}\n", machine.name, machine.describes, table.trim_fmt())
 }
 
 /// What the profile's choices mean, one sentence each.

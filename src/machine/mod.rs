@@ -354,7 +354,7 @@ impl Machine {
     pub fn to_toml(&self) -> Result<String, Error> {
         let mut own = self.clone();
         let mm = self.unit.mm();
-        own.lengths().into_iter().for_each(|length| *length = twelve_digits(*length / mm));
+        own.lengths().into_iter().for_each(|length| *length = rounded(*length / mm, 12));
         toml::to_string(&own).map_err(|error| Error::new(Kind::Output, error.to_string()))
     }
 
@@ -403,8 +403,9 @@ impl Files {
     }
 }
 
-/// `value` rounded to twelve significant digits, so that a number that was converted on reading is written as
-/// it stood.
-fn twelve_digits(value: f64) -> f64 {
-    format!("{value:.11e}").parse().unwrap_or(value)
+/// `value` rounded to so many significant digits: twelve bring a number that was converted on reading back as it
+/// stood.
+fn rounded(value: f64, digits: usize) -> f64 {
+    let less_one = digits - 1;
+    format!("{value:.less_one$e}").parse().unwrap_or(value)
 }
