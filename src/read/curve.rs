@@ -226,7 +226,10 @@ impl Curve {
             }
             Self::Quad(quad) => quad.is_finite(),
             Self::Cubic(cubic) => cubic.is_finite(),
-            Self::Nurbs(nurbs) => nurbs.points.iter().all(|p| p.is_finite()),
+            // Weights far apart overflow or vanish in the homogeneous points.
+            Self::Nurbs(nurbs) => {
+                nurbs.pieces().iter().flatten().all(|&h| super::sample::project(h).is_finite())
+            }
         }
     }
 

@@ -112,3 +112,16 @@ fn huge_radii_and_tiny_bulges_keep_their_ends() {
         }
     }
 }
+
+#[test]
+fn weights_too_far_apart_are_refused_and_others_read() {
+    let rows =
+        [("1e300", "1e-300", false), ("1e308", "1", true), ("1e-300", "1e-308", true), ("1", "1e-20", true)];
+    for (heavy, light, readable) in rows {
+        let text = drawing(&format!(
+            "0|SPLINE|71|2|40|0|40|0|40|0|40|1|40|1|40|1|41|{heavy}|41|{light}|41|{heavy}|\
+             10|0|20|0|10|5|20|5|10|9|20|0"
+        ));
+        assert!(try_sketch(&text).is_ok() == readable, "{heavy} {light}");
+    }
+}

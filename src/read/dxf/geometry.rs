@@ -50,7 +50,7 @@ pub(super) fn drawn(entity: &Entity, placement: &Placement) -> Result<Drawn, Err
         "ELLIPSE" => ellipse(record, placement),
         "LWPOLYLINE" => light_polyline(record, placement),
         "POLYLINE" => polyline(entity, placement),
-        "SPLINE" | "HELIX" => spline::drawn(record, placement),
+        "SPLINE" => spline::drawn(record, placement),
         other => Ok(Drawn::NotRead(other.to_owned())),
     }
 }
@@ -121,12 +121,16 @@ fn ellipse(record: &Record, placement: &Placement) -> Result<Drawn, Error> {
     Ok(Drawn::Chain(Chain::of(Curve::Ellipse(arc), sweep >= TAU), remark))
 }
 
-/// How far the parameter runs from `start` to `end`, counter-clockwise; a whole turn where they agree to within the
-/// rounding of a printed 2 pi.
+/// How far the parameter runs from `start` to `end`, counter-clockwise; a whole turn where they are the same, or as
+/// good as 2 pi apart when that is printed with six decimals or more.
 fn elliptic_sweep(start: f64, end: f64) -> f64 {
     const PRINTED: f64 = 1e-6;
-    let turns = (end - start) / TAU;
-    if (turns - turns.round()).abs() < PRINTED { TAU } else { (end - start).rem_euclid(TAU) }
+    let difference = end - start;
+    if difference == 0.0 || (difference.abs() - TAU).abs() < PRINTED {
+        TAU
+    } else {
+        difference.rem_euclid(TAU)
+    }
 }
 
 /// One vertex of a polyline.

@@ -75,7 +75,10 @@ fn b_spline(record: &Record, lists: Lists, placement: &Placement) -> Result<Nurb
         );
     }
     let controls = lists.controls.iter().map(|p| placement.seen(p)).collect();
-    Nurbs::new(degree as usize, lists.knots, controls, lists.weights)
+    // Only the ratios of weights matter; the heaviest is made 1, so that no product overflows.
+    let heaviest = lists.weights.iter().copied().fold(0.0, f64::max);
+    let weights = lists.weights.iter().map(|w| w / heaviest).collect();
+    Nurbs::new(degree as usize, lists.knots, controls, weights)
         .map_err(|why| record.error(format!("broken SPLINE: {why}")))
 }
 
