@@ -28,6 +28,7 @@ struct Outlines {
 #[derive(Deserialize)]
 struct Outline {
     dxf: Option<String>,
+    csv: String,
     contours: usize,
     closed: bool,
     vertices: usize,
@@ -80,6 +81,18 @@ fn outlines_have_their_vertices_lengths_and_boxes() {
         assert!(vertices == outline.vertices, "{name}: {vertices} vertices, not {}", outline.vertices);
         assert!((length(&read) / outline.length_mm - 1.0).abs() < 1e-6, "{name}: length {}", length(&read));
         assert!(box_error(&read, outline.bbox_mm) < 2e-6, "{name}: box {:?}", read.bbox());
+    }
+}
+
+#[test]
+fn an_outline_is_the_same_from_dxf_and_from_a_point_list() {
+    for (path, outline) in outlines() {
+        let from_dxf = read_fixture(&path);
+        let from_points = read_fixture(&fixtures().join("outlines").join(&outline.csv));
+        let paths = |sketch: &ribband::sketch::Sketch| -> Vec<_> {
+            sketch.contours.iter().map(|c| c.path.clone()).collect()
+        };
+        assert_eq!(paths(&from_dxf), paths(&from_points), "{}", path.display());
     }
 }
 
