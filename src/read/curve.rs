@@ -2,7 +2,7 @@
 
 use std::f64::consts::PI;
 
-use kurbo::{Affine, CubicBez, ParamCurve, Point, QuadBez, Rect, Shape, Vec2};
+use kurbo::{Affine, CubicBez, Point, QuadBez, Rect, Shape, Vec2};
 
 use super::scale::FileUnit;
 use crate::geom::{Span, Vertex};
@@ -84,6 +84,10 @@ pub struct Nurbs {
     weights: Vec<f64>,
 }
 
+/// The smallest weight of a B-spline as a share of its largest: with less, the products of points and weights leave too
+/// few digits of a double for a thousandth of a millimetre in a metre.
+const WEIGHT_RANGE: f64 = 1e-9;
+
 impl EllipseArc {
     /// The arc of a circle about `centre`, from the angle `start` through `sweep`, both in radians.
     pub fn circular(centre: Point, radius: f64, start: f64, sweep: f64) -> Self {
@@ -154,6 +158,11 @@ impl Nurbs {
         if weights.iter().any(|w| !(w.is_finite() && *w > 0.0)) {
             return Err("a weight that is not above zero".into());
         }
+        let heaviest = weights.iter().copied().fold(0.0, f64::max);
+        if weights.iter().any(|w| *w < heaviest * WEIGHT_RANGE) {
+            return Err("weights so far apart that the curve has no accuracy".into());
+        }
+        weights.iter_mut().for_each(|w| *w /= heaviest);
         if !knots.is_sorted() || knots.iter().any(|k| !k.is_finite()) || knots[degree] >= knots[points.len()]
         {
             return Err("knots that do not rise".into());
@@ -279,6 +288,11 @@ impl Chain {
         Self { curves, closed: self.closed }
     }
 
+    /// True when every number of the chain is finite.
+    pub fn is_finite(&self) -> bool {
+        self.curves.iter().all(Curve::is_finite)
+    }
+
     /// A box around the chain.
     pub fn bbox(&self) -> Option<Rect> {
         self.curves.iter().filter_map(Curve::bbox).reduce(|a, b| a.union(b))
@@ -330,17 +344,4 @@ fn spans_bbox(vertices: &[Vertex]) -> Option<Rect> {
 
 fn points_bbox(points: impl IntoIterator<Item = Point>) -> Option<Rect> {
     points.into_iter().map(|p| Rect::from_points(p, p)).reduce(|a, b| a.union(b))
-}
-
-impl Curve {
-    /// Where the curve starts; `None` for spans without a vertex.
-    pub fn start(&self) -> Option<Point> {
-        match self {
-            Self::Spans(vertices) => vertices.first().map(|v| v.at),
-            Self::Ellipse(arc) => Some(arc.at(arc.start)),
-            Self::Quad(quad) => Some(quad.start()),
-            Self::Cubic(cubic) => Some(cubic.start()),
-            Self::Nurbs(nurbs) => nurbs.pieces().first().map(|piece| super::sample::project(piece[0])),
-        }
-    }
 }

@@ -20,7 +20,7 @@ pub use scale::{FileUnit, MM_PER_INCH, Scale, Unit};
 
 use crate::error::{Error, Kind};
 use crate::sketch::{Contour, Place, Sketch};
-use sample::{SAMPLING_MM, sample};
+use sample::{Sampled, sample, sampling_tolerance};
 use text::Content;
 
 /// Reads a drawing. `name` is only what messages call the file; what it is, its content tells.
@@ -57,39 +57,56 @@ pub fn to_sketch(mut drawing: Drawing, scale: &Scale) -> Result<Sketch, Error> {
     if let Some(layers) = &scale.layers {
         keep_layers(&mut drawing, layers)?;
     }
-    let bbox = drawing.elements.iter().filter_map(|e| e.chain.bbox()).reduce(|a, b| a.union(b));
-    let bbox = bbox.ok_or_else(|| nothing_drawn(&drawing.notes))?;
-    if bbox.width() == 0.0 && bbox.height() == 0.0 {
-        let places: Vec<Place> = drawing.elements.into_iter().map(|e| e.place).collect();
-        drawing.notes.extend(left_out(&places));
-        return Err(nothing_drawn(&drawing.notes));
-    }
-    if drawing.unit.is_none() {
-        check_extent(bbox, Unit::Px.mm())?;
-    }
+    let bbox = checked_box(&drawing)?;
     let settled = scale.settle(&drawing, bbox)?;
     check_extent(bbox, settled.mm_per_unit)?;
-
+    let Drawing { elements, notes, .. } = drawing;
     let mut sketch =
         Sketch { mm_per_unit: settled.mm_per_unit, scale_from: settled.from, ..Sketch::default() };
-    let sampled: Vec<_> = drawing
-        .elements
+    sketch.notes.extend(settled.note.into_iter().chain(notes));
+    fill(&mut sketch, elements, sampling_tolerance(bbox, settled.mm_per_unit));
+    if sketch.contours.is_empty() { Err(nothing_drawn(&sketch.notes)) } else { Ok(sketch) }
+}
+
+/// Turns the elements into contours, those that are single points into a note.
+fn fill(sketch: &mut Sketch, elements: Vec<Element>, tolerance_mm: f64) {
+    let mm_per_unit = sketch.mm_per_unit;
+    let sampled: Vec<_> = elements
         .into_par_iter()
-        .map(|e| (sample(e.chain, settled.mm_per_unit, SAMPLING_MM), e.layer, e.colour, e.place))
+        .map(|e| (sample(e.chain, mm_per_unit, tolerance_mm), e.layer, e.colour, e.place))
         .collect();
     let mut without_length = Vec::new();
-    for (sampled, layer, colour, place) in sampled {
-        if sampled.path.vertices.iter().all(|v| v.at == sampled.path.vertices[0].at) {
+    for (Sampled { path, error_mm }, layer, colour, place) in sampled {
+        if path.vertices.iter().all(|v| v.at == path.vertices[0].at) {
             without_length.push(place);
             continue;
         }
-        sketch.sampling_mm = sketch.sampling_mm.max(sampled.error_mm);
-        let id = sketch.contours.len() + 1;
-        sketch.contours.push(Contour { id, layer, colour, place, path: sampled.path });
+        sketch.sampling_mm = sketch.sampling_mm.max(error_mm);
+        sketch.contours.push(Contour { id: sketch.contours.len() + 1, layer, colour, place, path });
     }
-    sketch.notes.extend(settled.note.into_iter().chain(drawing.notes));
     sketch.notes.extend(left_out(&without_length));
-    if sketch.contours.is_empty() { Err(nothing_drawn(&sketch.notes)) } else { Ok(sketch) }
+}
+
+/// The box of a drawing in its own units, in which every number is finite.
+fn checked_box(drawing: &Drawing) -> Result<Rect, Error> {
+    if let Some(e) = drawing.elements.iter().find(|e| !e.chain.is_finite()) {
+        let what = format!("{}: its coordinates grow beyond all numbers", e.place.element);
+        return Err(Error::new(Kind::Input, what)
+            .on_line(e.place.line)
+            .remedy("check its transforms and scales"));
+    }
+    let bbox = drawing.elements.iter().filter_map(|e| e.chain.bbox()).reduce(|a, b| a.union(b));
+    let bbox = bbox.ok_or_else(|| nothing_drawn(&drawing.notes))?;
+    if bbox.width() == 0.0 && bbox.height() == 0.0 {
+        let places: Vec<Place> = drawing.elements.iter().map(|e| e.place.clone()).collect();
+        let notes: Vec<String> = drawing.notes.iter().cloned().chain(left_out(&places)).collect();
+        return Err(nothing_drawn(&notes));
+    }
+    if drawing.unit.is_none() {
+        // In the smallest of the units that the user may name.
+        check_extent(bbox, Unit::Px.mm())?;
+    }
+    Ok(bbox)
 }
 
 /// A note on elements that are single points.
@@ -107,7 +124,7 @@ fn left_out(places: &[Place]) -> Option<String> {
 /// Coordinates beyond 10 km are a wrong scale or a damaged file, and would leave the grid that coordinates keep to.
 fn check_extent(bbox: Rect, mm_per_unit: f64) -> Result<(), Error> {
     const LARGEST_MM: f64 = 1e7;
-    let largest = [bbox.x0, bbox.y0, bbox.x1, bbox.y1].iter().fold(0.0_f64, |m, c| m.max(c.abs()));
+    let largest = [bbox.x0, bbox.y0, bbox.x1, bbox.y1].iter().fold(0.0_f64, |most, c| most.max(c.abs()));
     let largest_mm = largest * mm_per_unit;
     if largest_mm <= LARGEST_MM {
         return Ok(());

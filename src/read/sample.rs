@@ -1,14 +1,18 @@
 //! Curves to lines and arcs: arcs stay exact, ellipses and free curves are cut into chords.
 
-use kurbo::{Point, Vec2};
+use kurbo::{Point, Rect, Vec2};
 
 use super::curve::{Chain, Curve, EllipseArc};
 use crate::geom::{ArcSpline, Vertex};
 use crate::sketch::snap;
 
-/// Chords of sampled curves stay within this distance of the true curve, in mm: a two-hundredth of the default
-/// tolerance, and half a unit of the last place of a program in mm with three decimals.
-pub(super) const SAMPLING_MM: f64 = 0.0005;
+/// How far chords of sampled curves may be from the true curve, in mm: 0.0005, a two-hundredth of the default tolerance
+/// and half a unit of the last place of a program in mm with three decimals. A drawing over 50 m, which only a wrong
+/// scale makes, is sampled to a 10^-8th of its size, so that it can still be measured and refused.
+pub(super) fn sampling_tolerance(bbox: Rect, mm_per_unit: f64) -> f64 {
+    let size_mm = bbox.width().max(bbox.height()) * mm_per_unit;
+    (size_mm * 1e-8).max(0.0005)
+}
 
 /// A homogeneous point, (x w, y w, w).
 pub(super) type Homogeneous = [f64; 3];

@@ -69,8 +69,9 @@ fn the_line_is_the_one_inside_a_long_attribute() {
 
 #[test]
 fn documents_that_are_no_drawing() {
-    let rows: [(&str, Kind, &str); 9] = [
-        ("<svg", Kind::Input, "the XML is cut short"),
+    let rows: [(&str, Kind, &str); 10] = [
+        ("<svg", Kind::Input, "the XML is broken"),
+        ("<svg><g>", Kind::Input, "the XML is cut short"),
         ("<svg><g></svg>", Kind::Input, "the XML is broken"),
         ("<html><body/></html>", Kind::Input, "its root is <html>, not <svg>"),
         ("<svg xmlns='http://www.w3.org/2000/svg'/>", Kind::Input, "holds nothing that can be cut"),
@@ -131,6 +132,26 @@ fn deep_nesting_does_not_overflow() {
     let deep = 100_000;
     let text = svg(&format!("{}<path d='M0 0H1'/>{}", "<g>".repeat(deep), "</g>".repeat(deep)));
     assert_eq!(sketch(&text).contours.len(), 1);
+}
+
+/// Products of transforms that leave the range of doubles, in every way a shape can be drawn.
+#[test]
+fn numbers_beyond_doubles_are_refused() {
+    let shapes = [
+        "<path d='M0 0L1 1'/>",
+        "<path d='M0 0C1 1 2 2 3 0'/>",
+        "<path d='M0 0Q1 1 2 0'/>",
+        "<path d='M0 0A1 2 3 0 1 5 5'/>",
+        "<circle r='1'/>",
+        "<polygon points='0 0 1 1 2 0'/>",
+    ];
+    for shape in shapes {
+        for transform in ["scale(1e200)", "matrix(1e200 -1e200 1e200 1e200 0 0)", "translate(1e308 -1e308)"] {
+            let nested = format!("<g transform='{transform}'>").repeat(3) + shape + &"</g>".repeat(3);
+            let error = try_sketch(&svg(&nested)).expect_err(&nested);
+            assert_eq!(error.kind, Kind::Input, "{nested}: {error}");
+        }
+    }
 }
 
 #[test]
