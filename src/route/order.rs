@@ -1,10 +1,10 @@
-//! A short tour between the contours.
+//! A short tour between the contours: inner ones before those that enclose them, part by part.
 
-use kurbo::Point;
+use kurbo::{Point, Rect};
 use rstar::RTree;
 use rstar::primitives::GeomWithData;
 
-use super::{Routed, Setup};
+use super::{Routed, Setup, Work};
 
 /// One stop of the tour: a contour, and the vertex at which it is entered.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -15,31 +15,75 @@ pub(super) struct Stop {
 
 type Entrance = GeomWithData<[f64; 2], Stop>;
 
-/// A tour from the park position, always on to the nearest entrance that is left.
+/// A tour from the park position, always on to the nearest entrance that is free: all that lies within a contour is
+/// done before it, and a part is finished before the next is begun.
 pub(super) fn tour(contours: &[Routed], setup: &Setup) -> Vec<Stop> {
+    let parents = parents(contours);
+    let part = |i: usize| outermost(&parents, i);
+    let mut waiting = vec![0_usize; contours.len()];
+    parents.iter().flatten().for_each(|&parent| waiting[parent] += 1);
     let entrances: Vec<Vec<Entrance>> =
         contours.iter().enumerate().map(|(i, contour)| entrances(i, contour, setup.step_mm)).collect();
     let mut left = RTree::bulk_load(entrances.concat());
-    let mut at = setup.park;
+    let (mut at, mut begun) = (setup.park, None);
     let mut stops = Vec::with_capacity(contours.len());
-    while let Some(stop) = nearest(&left, at) {
+    while stops.len() < contours.len() {
+        let free = |stop: Stop| waiting[stop.contour] == 0 && begun.is_none_or(|p| p == part(stop.contour));
+        let Some(stop) = nearest(&left, at, free) else { break };
         for entrance in &entrances[stop.contour] {
             left.remove(entrance);
         }
+        if let Some(parent) = parents[stop.contour] {
+            waiting[parent] -= 1;
+        }
+        begun = parents[stop.contour].map(|_| part(stop.contour));
         at = leaves_at(&contours[stop.contour], stop.entry);
         stops.push(stop);
     }
     stops
 }
 
-/// The nearest entrance; of several equally near the one that stands first in the drawing.
-fn nearest(left: &RTree<Entrance>, at: Point) -> Option<Stop> {
-    left.nearest_neighbors(&[at.x, at.y]).into_iter().map(|e| e.data).min()
+/// For every contour the smallest closed one around it.
+fn parents(contours: &[Routed]) -> Vec<Option<usize>> {
+    let boxes: Vec<Rect> = contours.iter().map(|c| c.path.bbox().unwrap_or_default()).collect();
+    let areas: Vec<f64> = contours.iter().map(|c| c.path.area().abs()).collect();
+    let parent = |i: usize| {
+        let at = contours[i].path.span(0).at(0.5);
+        let around = |&j: &usize| {
+            let larger =
+                j != i && contours[j].path.closed && (!contours[i].path.closed || areas[j] > areas[i]);
+            larger && boxes[j].contains(at) && contours[j].path.winding(at) != 0
+        };
+        (0..contours.len()).filter(around).min_by(|&a, &b| areas[a].total_cmp(&areas[b]))
+    };
+    (0..contours.len()).map(parent).collect()
+}
+
+/// The contour around a contour that nothing is around.
+fn outermost(parents: &[Option<usize>], mut i: usize) -> usize {
+    while let Some(parent) = parents[i] {
+        i = parent;
+    }
+    i
+}
+
+/// The nearest free entrance; of several equally near the one that stands first in the drawing.
+fn nearest(left: &RTree<Entrance>, at: Point, free: impl Fn(Stop) -> bool) -> Option<Stop> {
+    let mut best: Option<(f64, Stop)> = None;
+    for (entrance, distance) in left.nearest_neighbor_iter_with_distance_2([at.x, at.y]) {
+        match best {
+            Some((nearest, _)) if distance > nearest => break,
+            Some((_, stop)) if stop < entrance.data => {}
+            _ if free(entrance.data) => best = Some((distance, entrance.data)),
+            _ => {}
+        }
+    }
+    best.map(|(_, stop)| stop)
 }
 
 fn entrances(index: usize, contour: &Routed, step_mm: f64) -> Vec<Entrance> {
     let entrance = |entry| {
-        let place = contour.place(entry);
+        let place = contour.entrance(entry);
         GeomWithData::new([place.x, place.y], Stop { contour: index, entry })
     };
     contour.entries(step_mm).into_iter().map(entrance).collect()
@@ -49,5 +93,9 @@ fn entrances(index: usize, contour: &Routed, step_mm: f64) -> Vec<Entrance> {
 fn leaves_at(contour: &Routed, entry: usize) -> Point {
     let last = contour.path.vertices.len() - 1;
     let to_and_fro = contour.cut.passes().len().is_multiple_of(2);
-    if contour.path.closed || to_and_fro { contour.place(entry) } else { contour.place(last - entry) }
+    if contour.path.closed || to_and_fro || contour.work == Work::Drill {
+        contour.entrance(entry)
+    } else {
+        contour.entrance(last - entry)
+    }
 }

@@ -54,7 +54,8 @@ fn a_closed_contour_is_entered_at_its_corner() {
     let bulge = ((std::f64::consts::PI + 2.0 * (1.0_f64 / 3.0).asin()) / 4.0).tan();
     let vertices = vec![vertex(-x, y, bulge), vertex(x, y, 0.0), vertex(0.0, 30.0, 0.0)];
     let path = ArcSpline { vertices, closed: true };
-    let routing = route(&[Routed { id: 1, path, cut: cut() }], &Setup::default()).expect("a drop routes");
+    let routing = route(&[Routed { id: 1, path, cut: cut(), ..Routed::default() }], &Setup::default())
+        .expect("a drop routes");
     assert_eq!(routing.toolpath.moves[0].to.xy, Point::new(0.0, 30.0));
     assert_safe(&routing.toolpath, &Setup::default());
 }

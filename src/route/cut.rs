@@ -1,0 +1,185 @@
+//! How one contour is cut.
+
+use crate::error::Error;
+
+use super::setup::{Setup, positive, refused, settings};
+
+/// How the cutter goes down.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
+pub enum Entry {
+    /// Along the contour, at the ramp's angle.
+    #[default]
+    Ramp,
+    /// Straight down.
+    Plunge,
+    /// Round and round on the waste side, at the ramp's angle; a ramp where there is no room for that.
+    Helix,
+}
+
+/// Which way the cutter runs along the part, for a spindle that turns clockwise.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
+pub enum Direction {
+    /// The edge meets the part from thin to thick chip: clockwise in a hole, counter-clockwise about a part.
+    #[default]
+    Conventional,
+    /// The other way round.
+    Climb,
+}
+
+/// How a part that is cut free is held.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Held {
+    /// By vacuum.
+    Vacuum,
+    /// By screws.
+    Screws,
+    /// By tape.
+    Tape,
+}
+
+/// Bridges that hold a part in its stock until it is cut out by hand.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Tabs {
+    /// How many there are.
+    pub number: TabNumber,
+    /// Length of a tab at its top, in mm.
+    pub length_mm: f64,
+    /// Height of a tab above the stock's underside, in mm.
+    pub height_mm: f64,
+}
+
+/// How many tabs a contour gets.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum TabNumber {
+    /// That many.
+    Count(usize),
+    /// One for every so many mm of the contour, and two at least.
+    Spacing(f64),
+}
+
+/// How one contour is cut.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Cut {
+    /// How far below the stock's top the cut reaches, in mm, above zero.
+    pub depth_mm: f64,
+    /// The deepest pass, in mm; holes are drilled in pecks as deep.
+    pub pass_mm: f64,
+    /// Feed along the contour, in mm/min.
+    pub feed: f64,
+    /// Feed straight down, in mm/min.
+    pub plunge: f64,
+    /// Spindle speed in rev/min.
+    pub spindle_rpm: f64,
+    /// The cutter's diameter, in mm.
+    pub cutter_mm: f64,
+    /// How the cutter goes down.
+    pub entry: Entry,
+    /// The angle of ramps and helices, in degrees.
+    pub ramp_deg: f64,
+    /// Which way the cutter runs where a side is cut.
+    pub direction: Direction,
+    /// Bridges to leave.
+    pub tabs: Option<Tabs>,
+    /// How a part that is cut free is held otherwise.
+    pub held: Option<Held>,
+}
+
+impl Default for Cut {
+    /// Nothing is known of depth, feeds and cutter, and a cut without them is refused; ramps of 3 degrees (1 to 5 in
+    /// wood are common practice), conventional, no tabs.
+    fn default() -> Self {
+        Self {
+            depth_mm: 0.0,
+            pass_mm: 0.0,
+            feed: 0.0,
+            plunge: 0.0,
+            spindle_rpm: 0.0,
+            cutter_mm: 0.0,
+            entry: Entry::Ramp,
+            ramp_deg: 3.0,
+            direction: Direction::Conventional,
+            tabs: None,
+            held: None,
+        }
+    }
+}
+
+impl Cut {
+    /// The depths of the passes below the stock's top, in mm, the deepest last: equal, none deeper than the pass.
+    pub fn passes(&self) -> Vec<f64> {
+        let count = (self.depth_mm / self.pass_mm * (1.0 - f64::EPSILON)).ceil().max(1.0);
+        (1..=count as usize).map(|k| self.depth_mm * k as f64 / count).collect()
+    }
+
+    /// How far a ramp runs to go down by `height`, in mm.
+    pub(super) fn ramp_length(&self, height: f64) -> f64 {
+        height / self.ramp_deg.to_radians().tan()
+    }
+
+    /// The feed of a move of `run` mm in the plane that rises by `rise` mm: going down, no more than the plunge's share.
+    pub(super) fn sloping_feed(&self, run: f64, rise: f64) -> f64 {
+        if rise >= 0.0 {
+            return self.feed;
+        }
+        self.feed.min(self.plunge * run.hypot(rise) / -rise)
+    }
+
+    /// Every setting inside its bounds.
+    pub(super) fn validate(&self) -> Result<(), Error> {
+        positive("depth", self.depth_mm)?;
+        positive("pass", self.pass_mm)?;
+        positive("feed", self.feed)?;
+        positive("plunge", self.plunge)?;
+        positive("spindle", self.spindle_rpm)?;
+        positive("cutter", self.cutter_mm)?;
+        if !(self.ramp_deg > 0.0 && self.ramp_deg <= 45.0) {
+            let what = format!("a ramp of {} degrees is not between 0 and 45", self.ramp_deg);
+            return Err(settings(what, "common practice in wood is 1 to 5"));
+        }
+        self.tabs.map_or(Ok(()), |tabs| tabs.validate())
+    }
+
+    /// The job is refused where a closed cut frees a part that nothing holds, or goes too far into the bed.
+    pub(super) fn hold(&self, id: usize, closed: bool, setup: &Setup) -> Result<(), Error> {
+        let into_bed = setup.bed_cut(self.depth_mm).unwrap_or(0.0);
+        if into_bed > setup.bed_cut_mm + setup.step_mm / 2.0 {
+            return Err(refused(
+                format!(
+                    "contour {id} cuts {into_bed:.2} mm into the bed, and {:.2} mm is allowed",
+                    setup.bed_cut_mm
+                ),
+                "lower --depth or --through, or allow more with --bed-cut",
+            ));
+        }
+        let frees = closed && setup.is_through(self.depth_mm) == Some(true);
+        if frees && self.tabs.is_none() && self.held.is_none() {
+            return Err(refused(
+                format!("contour {id} is cut free, and nothing is said to hold what it frees"),
+                "leave --tabs or a --skin, or say how it is held with --held vacuum, screws or tape",
+            ));
+        }
+        Ok(())
+    }
+}
+
+impl Tabs {
+    fn validate(&self) -> Result<(), Error> {
+        positive("tab length", self.length_mm)?;
+        positive("tab height", self.height_mm)?;
+        match self.number {
+            TabNumber::Count(0) => {
+                Err(settings("0 tabs hold nothing", "ask for 1 or more, or leave --tabs out"))
+            }
+            TabNumber::Count(_) => Ok(()),
+            TabNumber::Spacing(mm) => positive("tab spacing", mm),
+        }
+    }
+
+    /// How many tabs a contour of `length` mm gets.
+    pub(super) fn count(&self, length: f64) -> usize {
+        match self.number {
+            TabNumber::Count(count) => count,
+            TabNumber::Spacing(spacing) => ((length / spacing).round() as usize).max(2),
+        }
+    }
+}
