@@ -51,7 +51,8 @@ fn layer_0_in_a_block_is_the_layer_of_the_insert() {
     assert_eq!(read.contours[0].place.element, "LINE in block Inner");
 }
 
-/// An INSERT on a layer that is off hides what takes its layer; a frozen one hides all (DXF practice, from memory).
+/// An INSERT on a layer that is off hides what takes its layer; a frozen one hides all (DXF practice, from
+/// memory).
 #[test]
 fn off_hides_layer_0_and_frozen_hides_everything() {
     let blocks = "0|BLOCK|2|B|0|LINE|8|0|11|1|0|LINE|8|Own|11|2|0|ENDBLK";

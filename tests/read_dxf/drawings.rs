@@ -1,4 +1,5 @@
-//! Whole drawings: those from elsewhere against reference lengths and boxes, and the broken ones in `fixtures/bad`.
+//! Whole drawings: those from elsewhere against reference lengths and boxes, and the broken ones in
+//! `fixtures/bad`.
 
 use std::fs;
 use std::path::{Path, PathBuf};

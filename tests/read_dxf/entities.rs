@@ -56,8 +56,8 @@ fn every_row_has_its_length_and_its_box() {
     }
 }
 
-/// Radius and sagitta of a chord of 10: r = c (1 + b^2) / (4 b), s = b c / 2 (DXF reference, bulge; the values computed
-/// independently).
+/// Radius and sagitta of a chord of 10: r = c (1 + b^2) / (4 b), s = b c / 2 (DXF reference, bulge; the
+/// values computed independently).
 #[test]
 fn bulge_values_of_the_table() {
     let rows = [

@@ -40,7 +40,7 @@ pub(super) struct Block<'a> {
     pub(super) entities: Vec<Entity<'a>>,
 }
 
-/// One entity with the records that belong to it: the VERTEX records of a POLYLINE, the ATTRIB records of an INSERT.
+/// One entity with the records that belong to it: VERTEX to a POLYLINE, ATTRIB to an INSERT.
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Entity<'a> {
     /// The entity's own record.

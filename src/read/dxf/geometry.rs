@@ -1,4 +1,4 @@
-//! Entities to chains of exact curves: lines, arcs, circles, ellipses and polylines. SPLINE has a room of its own.
+//! Entities to chains of exact curves: lines, arcs, circles, ellipses and polylines.
 
 use std::f64::consts::TAU;
 
@@ -101,7 +101,8 @@ fn circular(record: &Record, [start, sweep]: [f64; 2], placement: &Placement) ->
     planar(record, Chain::of(Curve::Ellipse(arc), sweep >= TAU), centre.z, placement)
 }
 
-/// An ELLIPSE lies in world coordinates; its angles are parameters, and the minor axis is the normal times the major.
+/// An ELLIPSE lies in world coordinates; its angles are parameters, and the minor axis is the normal times
+/// the major.
 fn ellipse(record: &Record, placement: &Placement) -> Result<Drawn, Error> {
     let normal = normal(record)?;
     let major = point(record, 11)?;
@@ -121,8 +122,8 @@ fn ellipse(record: &Record, placement: &Placement) -> Result<Drawn, Error> {
     Ok(Drawn::Chain(Chain::of(Curve::Ellipse(arc), sweep >= TAU), remark))
 }
 
-/// How far the parameter runs from `start` to `end`, counter-clockwise; a whole turn where they are the same, or as
-/// good as 2 pi apart when that is printed with six decimals or more.
+/// How far the parameter runs from `start` to `end`, counter-clockwise; a whole turn where they are the same,
+/// or as good as 2 pi apart when that is printed with six decimals or more.
 fn elliptic_sweep(start: f64, end: f64) -> f64 {
     const PRINTED: f64 = 1e-6;
     let difference = end - start;
@@ -140,8 +141,8 @@ struct Corner {
     bulge: f64,
 }
 
-/// An LWPOLYLINE: every group 10 begins a vertex, and the groups 20 and 42 after it belong to it. Group 90, the
-/// number of vertices, is not relied on.
+/// An LWPOLYLINE: every group 10 begins a vertex, and the groups 20 and 42 after it belong to it. Group 90,
+/// the number of vertices, is not relied on.
 fn light_polyline(record: &Record, placement: &Placement) -> Result<Drawn, Error> {
     let mut corners: Vec<Corner> = Vec::new();
     for group in record.own() {

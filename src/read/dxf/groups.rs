@@ -1,4 +1,4 @@
-//! DXF text as it stands: pairs of a group code and a value, each with its line, cut into records. No meaning yet.
+//! DXF text as it stands: pairs of a group code and a value, each with its line, cut into records.
 
 use nom::branch::alt;
 use nom::bytes::complete::{tag, take_till};
@@ -141,8 +141,8 @@ impl<'a> Record<'a> {
         Error::new(Kind::Input, what).on_line(self.line).remedy(EXPORT_AGAIN)
     }
 
-    /// The record's own groups: not those of other programs (between codes 102) nor of an object embedded in it
-    /// (after code 101).
+    /// The record's own groups: not those of other programs (between codes 102) nor of an object embedded in
+    /// it (after code 101).
     pub(super) fn own(&self) -> impl Iterator<Item = &'a Group<'a>> + use<'a> {
         let mut foreign = false;
         self.groups.iter().take_while(|g| g.code != 101).filter(move |g| {

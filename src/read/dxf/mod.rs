@@ -1,4 +1,4 @@
-//! ASCII DXF, from R12 on: groups first, then records and sections, then geometry, faithful before meaningful.
+//! ASCII DXF, from R12 on: first the groups as they stand, then records and sections, then geometry.
 //!
 //! Entities, group codes and the arbitrary axis rule are those of the published DXF reference.
 

@@ -1,4 +1,4 @@
-//! Where things lie in space: object coordinate systems, and blocks put in place. The drawing is seen from above.
+//! Where things lie in space, seen from above: object coordinate systems, and blocks put in place.
 
 use kurbo::{Affine, Point};
 use nalgebra::{Matrix3, Vector3};
@@ -30,7 +30,7 @@ impl Placement {
         self.linear * v
     }
 
-    /// The map from the plane at `elevation` in the object coordinates of `axes` to the drawing seen from above.
+    /// The map from the plane at `elevation` in the object coordinates of `axes` to the drawing from above.
     pub(super) fn plane(&self, axes: &Matrix3<f64>, elevation: f64) -> Affine {
         let linear = self.linear * axes;
         let shift = linear * Vector3::new(0.0, 0.0, elevation) + self.shift;
@@ -49,7 +49,8 @@ pub(super) fn point(record: &Record, code: i32) -> Result<Vector3<f64>, Error> {
     Ok(Vector3::new(coordinate(0)?, coordinate(1)?, coordinate(2)?))
 }
 
-/// The extrusion direction of a record (group 210), of length 1; straight up when it is left out or has no length.
+/// The extrusion direction of a record (group 210), of length 1; straight up when it is left out or has no
+/// length.
 pub(super) fn normal(record: &Record) -> Result<Vector3<f64>, Error> {
     if record.first(210).is_none() && record.first(230).is_none() {
         return Ok(Vector3::z());
@@ -57,8 +58,8 @@ pub(super) fn normal(record: &Record) -> Result<Vector3<f64>, Error> {
     Ok(point(record, 210)?.try_normalize(0.0).unwrap_or_else(Vector3::z))
 }
 
-/// The axes of the object coordinate system with the unit normal `n`, as columns (DXF reference, arbitrary axis
-/// algorithm).
+/// The axes of the object coordinate system with the unit normal `n`, as columns (DXF reference, arbitrary
+/// axis algorithm).
 pub(super) fn object_axes(n: &Vector3<f64>) -> Matrix3<f64> {
     const NEARLY_UPRIGHT: f64 = 1.0 / 64.0;
     let upright = n.x.abs() < NEARLY_UPRIGHT && n.y.abs() < NEARLY_UPRIGHT;
@@ -77,7 +78,7 @@ pub(super) struct Grid {
 }
 
 impl Grid {
-    /// The grid of an INSERT record whose block has its base point at `base`, in coordinates placed by `outer`.
+    /// The grid of an INSERT record whose block has its base point at `base`, placed by `outer`.
     pub(super) fn new(insert: &Record, base: &Vector3<f64>, outer: &Placement) -> Result<Self, Error> {
         let axes = object_axes(&normal(insert)?);
         let (sin, cos) = sin_cos_degrees(insert.real_or(50, 0.0)?);

@@ -63,7 +63,8 @@ pub(super) fn drawn(record: &Record, placement: &Placement) -> Result<Drawn, Err
     Ok(Drawn::Chain(Chain::of(Curve::Nurbs(nurbs), closed), remark))
 }
 
-/// The default of group 43 in the DXF reference, in drawing units: control points closer than this are the same.
+/// The default of group 43 in the DXF reference, in drawing units: control points closer than this are the
+/// same.
 const CONTROL_POINT_TOLERANCE: f64 = 1e-7;
 
 fn b_spline(record: &Record, lists: Lists, placement: &Placement) -> Result<Nurbs, Error> {
@@ -90,9 +91,9 @@ fn gap(nurbs: &Nurbs) -> f64 {
     start.zip(end).map_or(0.0, |(&start, &end)| project(start).distance(project(end)))
 }
 
-/// A SPLINE that gives only points on the curve. The DXF reference does not say which curve runs through them; ours is the
-/// cubic spline on chord-length parameters, with the end tangents of groups 12 and 13 where given, natural elsewhere,
-/// periodic when closed.
+/// A SPLINE that gives only points on the curve. The DXF reference does not say which curve runs through
+/// them; ours is the cubic spline on chord-length parameters, with the end tangents of groups 12 and 13 where
+/// given, natural elsewhere, periodic when closed.
 fn through_fit_points(
     record: &Record,
     mut fits: Vec<Vector3<f64>>,
@@ -124,11 +125,12 @@ fn pieces(fits: &[Vector3<f64>], slopes: &[Vector3<f64>]) -> impl Iterator<Item 
     })
 }
 
-/// The slopes by chord length at `fits`, where the spline's second derivative is continuous, natural ends and given
-/// end slopes included; `closed` means that the last point is the first. `None` when lengths are lost in rounding.
+/// The slopes by chord length at `fits`, where the spline's second derivative is continuous, natural ends and
+/// given end slopes included; `closed` means that the last point is the first. `None` when lengths are lost
+/// in rounding.
 ///
-/// With h the chord lengths, each row is `m[i-1]/h + 2 m[i] (1/h + 1/h') + m[i+1]/h' = 3 (chord/h^2 + chord'/h'^2)`,
-/// gathered here chord by chord.
+/// With h the chord lengths, each row is `m[i-1]/h + 2 m[i] (1/h + 1/h') + m[i+1]/h' = 3 (chord/h^2 +
+/// chord'/h'^2)`, gathered here chord by chord.
 fn slopes(fits: &[Vector3<f64>], ends: [Option<Vector3<f64>>; 2], closed: bool) -> Option<Vec<Vector3<f64>>> {
     let last = fits.len() - 1;
     let ring = closed && last > 1;

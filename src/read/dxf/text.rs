@@ -5,7 +5,8 @@ use std::borrow::Cow;
 use encoding_rs::{Encoding, UTF_8, WINDOWS_1252};
 
 /// The text of the file: UTF-8 from AC1021 on or where no code page is declared, else the declared code page
-/// (DXF reference, `$DWGCODEPAGE`). Bytes that fit neither are read as code page 1252: only names depend on it.
+/// (DXF reference, `$DWGCODEPAGE`). Bytes that fit neither are read as code page 1252: only names depend on
+/// it.
 pub(super) fn decode(bytes: &[u8]) -> Cow<'_, str> {
     let declared = variable(bytes, "$DWGCODEPAGE").and_then(|name| code_page(&name));
     let version = variable(bytes, "$ACADVER").unwrap_or_default();

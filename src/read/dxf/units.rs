@@ -10,8 +10,9 @@ pub(super) struct LengthUnit {
 
 /// The unit of `$INSUNITS` `code`; `None` for 0 (no unit) and for codes that the DXF reference does not list.
 ///
-/// Inch, foot, yard and mile are the international ones of 1959 (25.4 mm an inch), the US survey ones 1200/3937 m a
-/// foot; astronomical unit by IAU 2012 resolution B2, parsec by IAU 2015 resolution B2, light year of 365.25 days.
+/// Inch, foot, yard and mile are the international ones of 1959 (25.4 mm an inch), the US survey ones
+/// 1200/3937 m a foot; astronomical unit by IAU 2012 resolution B2, parsec by IAU 2015 resolution B2, light
+/// year of 365.25 days.
 pub(super) fn length_unit(code: i64) -> Option<LengthUnit> {
     const SURVEY_FOOT: f64 = 1_200_000.0 / 3937.0;
     let (mm, name) = match code {

@@ -83,8 +83,8 @@ impl<'d, 'a> Walk<'d, 'a> {
         Ok(())
     }
 
-    /// Whether a record is shown; what is not is counted. The contents of an INSERT on a layer that is off have layers
-    /// of their own, but a frozen one hides them all.
+    /// Whether a record is shown; what is not is counted. The contents of an INSERT on a layer that is off
+    /// have layers of their own, but a frozen one hides them all.
     fn is_seen(&mut self, record: &Record, layer: &str) -> Result<bool, Error> {
         let hidden =
             self.document.layer(layer).is_some_and(|l| l.frozen || (l.off && record.kind != "INSERT"));
@@ -100,8 +100,8 @@ impl<'d, 'a> Walk<'d, 'a> {
         Ok(false)
     }
 
-    /// The colour as the file has it: an index of the DXF palette or `#rrggbb`, the layer's or the block's where the
-    /// entity leaves it to them.
+    /// The colour as the file has it: an index of the DXF palette or `#rrggbb`, the layer's or the block's
+    /// where the entity leaves it to them.
     fn colour(&self, record: &Record, layer: &str, around: &Surroundings) -> Result<String, Error> {
         const BY_BLOCK: i64 = 0;
         const BY_LAYER: i64 = 256;
