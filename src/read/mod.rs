@@ -25,6 +25,17 @@ use text::Content;
 
 /// Reads a drawing. `name` is only what messages call the file; what it is, its content tells.
 ///
+/// ```
+/// use ribband::read::{Scale, Unit, read};
+///
+/// let inches = Scale { drawing_unit: Some(Unit::Inch), ..Scale::default() };
+/// let sketch = read("blade.csv", b"x,y\n0,0\n4,0\n4,1\n0,0\n", &inches)?;
+/// assert!(sketch.contours[0].path.closed);
+/// assert_eq!(sketch.contours[0].path.vertices.len(), 3);
+/// assert_eq!(sketch.mm_per_unit, 25.4);
+/// # Ok::<(), ribband::error::Error>(())
+/// ```
+///
 /// # Errors
 /// `Kind::Input` when the content is no drawing or a broken one, `Kind::Refused` when its scale is unknown,
 /// `Kind::Settings` when `scale` itself is wrong or names a layer that the drawing does not have.

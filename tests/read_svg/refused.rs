@@ -189,6 +189,21 @@ fn other_kinds_are_told_from_content_alone() {
 }
 
 proptest::proptest! {
+    /// A drawing with any of its bytes lost, doubled or changed is read or refused.
+    #[test]
+    fn any_damage_is_read_or_refused(file in 0..3_usize, at in 0.0..1.0_f64, cut in 0..40_usize, with in "\\PC{0,6}") {
+        let file = ["s001.svg", "s045.svg", "s081.svg"][file];
+        let path = format!("{}/fixtures/drawings/svg/{file}", env!("CARGO_MANIFEST_DIR"));
+        let mut bytes = std::fs::read(path).expect("the fixture is there");
+        let at = (at * bytes.len() as f64) as usize;
+        let end = (at + cut).min(bytes.len());
+        bytes.splice(at..end, with.bytes());
+        if let Err(error) = read(file, &bytes, &mm()) {
+            let lines = bytes.iter().filter(|b| **b == b'\n').count() + 1;
+            proptest::prop_assert!(error.line <= lines && !error.remedy.is_empty(), "{error}");
+        }
+    }
+
     /// No path data, styles or transforms whatever make the reader panic or overflow.
     #[test]
     fn any_attribute_is_read_or_refused(

@@ -24,7 +24,7 @@ pub(super) fn parse(text: &str) -> Result<Document<'_>, Error> {
     let options = ParsingOptions { allow_dtd: true, ..ParsingOptions::default() };
     Document::parse_with_options(text, options).map_err(|error| {
         let (what, line) = match error {
-            roxmltree::Error::UnexpectedEndOfStream => {
+            roxmltree::Error::UnexpectedEndOfStream | roxmltree::Error::UnclosedRootNode => {
                 ("the XML is cut short: the file ends inside an element".to_owned(), text.lines().count())
             }
             error => (format!("the XML is broken: {error}"), error.pos().row as usize),
