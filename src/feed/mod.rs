@@ -5,14 +5,18 @@
 //! inside those it sees; it reads so many blocks a second into its queue, and where the queue runs dry the motion waits.
 //! That it would rather slow down than wait does not matter to the time: the reading sets it then.
 
+mod chip;
 mod course;
 mod limits;
 mod motion;
 mod queue;
+mod schedule;
 mod stretch;
 mod time;
 
+pub use chip::{ChipLoad, hold_chip_load};
 pub use limits::Limits;
 pub use motion::{Phase, motion};
 pub use queue::Queue;
+pub use schedule::{MOST_OVERRIDE, Schedule, schedule};
 pub use time::{Crawl, Times, time};

@@ -242,6 +242,11 @@ impl Shape {
     }
 }
 
+/// The highest speed along the whole of a move, in mm/s: feed, axis speeds, centripetal limit. The move has length.
+pub(super) fn speed_cap(m: &Move, limits: &Limits) -> f64 {
+    Shape::of(m).cap(m, limits).sqrt()
+}
+
 /// The largest size of a vector of which no component passes its axis' limit; `along` holds its direction.
 pub(super) fn least(along: [f64; 3], limits: [f64; 3]) -> f64 {
     let on_axis = |i: usize| if along[i] == 0.0 { f64::INFINITY } else { limits[i] / along[i].abs() };

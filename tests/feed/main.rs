@@ -6,6 +6,7 @@ use ribband::geom::{ArcSpline, Span};
 use ribband::toolpath::{Move, Position, Toolpath};
 
 mod motion;
+mod schedules;
 mod times;
 
 /// The same limits on every axis, a queue that never matters, corners that stop.
