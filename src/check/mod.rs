@@ -7,12 +7,15 @@ mod claim;
 mod cuts;
 mod motion;
 mod place;
+mod region;
 mod shape;
+mod side;
 mod start_end;
 
-use kurbo::{Rect, Vec2};
+use kurbo::{Affine, Point, Rect, Vec2};
 
 use crate::gcode::read::Program;
+use crate::geom::ArcSpline;
 use crate::machine::Machine;
 use crate::num::{Deviation, Tolerance};
 use crate::sketch::Sketch;
@@ -24,6 +27,8 @@ pub use claim::{Claim, Spot, State};
 pub struct Asked {
     /// How far the cut may be from the drawing.
     pub tolerance: Tolerance,
+    /// The side of closed contours that the cutter runs on; open ones are cut on the line.
+    pub side: Side,
     /// Where the drawing's zero lies in the program's coordinates; `None` to find it among the usual places: the
     /// drawing's own zero, the lower left of the drawing at the program's zero, or its centre there.
     pub drawing_at: Option<Vec2>,
@@ -37,10 +42,36 @@ pub struct Asked {
     pub pass: Option<f64>,
     /// The largest feed in mm/min along a contour and straight down; `None` for what the machine can do.
     pub feeds: Option<Feeds>,
-    /// Diameter of the cutter.
+    /// Diameter of the cutter; a side needs it.
     pub cutter: f64,
     /// What the cutter must keep clear of.
     pub keep_out: Vec<KeepOut>,
+}
+
+/// Which side of the closed contours the cutter runs on. The region they enclose goes by even and odd, so that a
+/// contour within another is a hole.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
+pub enum Side {
+    /// Its centre runs on the line.
+    #[default]
+    On,
+    /// Within the region: the region is a hole or a pocket.
+    Inside,
+    /// Outside the region: the region is the part.
+    Outside,
+}
+
+/// A stretch of the drawing that no cutter of the diameter reaches, or that needs one a little smaller.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Uncut {
+    /// The contour's id in the drawing.
+    pub contour: usize,
+    /// How long all its stretches are, in mm.
+    pub length: f64,
+    /// The place that the cutter is furthest from, in the drawing's coordinates.
+    pub at: Point,
+    /// How far the edge of the cut is from there, in mm.
+    pub gap: f64,
 }
 
 /// The largest feeds that were asked for, in mm/min.
@@ -68,6 +99,7 @@ impl Asked {
     pub fn new(tolerance: Tolerance) -> Self {
         Self {
             tolerance,
+            side: Side::On,
             drawing_at: None,
             stock_top: 0.0,
             clearance: None,
@@ -85,11 +117,14 @@ impl Asked {
 pub struct Verdict {
     /// True when no claim fails.
     pub holds: bool,
-    /// The worst deviation between what the program cuts and the drawing, in the drawing's coordinates; `None` when
-    /// nothing that is cut could be matched to the drawing.
+    /// The worst deviation between what the program cuts and the drawing, in the drawing's coordinates: on the line
+    /// between the cutter's centre and the contour, else between the cutter's edge and what it can reach of the
+    /// contour. `None` when nothing that is cut could be matched to the drawing.
     pub deviation: Option<Deviation>,
     /// The claims, one by one.
     pub claims: Vec<Claim>,
+    /// What the cutter cannot reach, by contour.
+    pub uncut: Vec<Uncut>,
     /// What no program can check, and what was taken for granted, one sentence each.
     pub not_checked: Vec<String>,
 }
@@ -101,7 +136,11 @@ pub struct Verdict {
 pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Asked) -> Verdict {
     let cuts = cuts::Cuts::of(&program.toolpath.moves, asked.stock_top);
     let at = asked.drawing_at.unwrap_or_else(|| place::find(&cuts, sketch));
-    let shape = shape::judge(&cuts, sketch, at, machine, asked);
+    let placed = Placed::new(sketch, at);
+    let (shape, uncut) = match asked.side {
+        Side::On => (shape::judge(&cuts, placed.all(), true, machine, asked).0, Vec::new()),
+        side => side::judge(&cuts, &placed, side, machine, asked),
+    };
     let mut claims = shape.claims;
     claims.extend(motion::judge(program, machine, asked));
     claims.extend(start_end::judge(program, machine, asked));
@@ -114,7 +153,26 @@ pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Aske
             sketch.sampling_mm
         ));
     }
-    Verdict { holds, deviation: shape.deviation, claims, not_checked }
+    let deviation = shape.deviation.map(|d| Deviation { at: d.at - at, ..d });
+    let uncut = uncut.into_iter().map(|u| Uncut { at: u.at - at, ..u }).collect();
+    Verdict { holds, deviation, claims, uncut, not_checked }
+}
+
+/// The drawing in the program's coordinates.
+struct Placed {
+    /// The contours with their ids.
+    contours: Vec<(usize, ArcSpline)>,
+}
+
+impl Placed {
+    fn new(sketch: &Sketch, at: Vec2) -> Self {
+        let place = Affine::translate(at);
+        Self { contours: sketch.contours.iter().map(|c| (c.id, c.path.transformed(place))).collect() }
+    }
+
+    fn all(self) -> Vec<ArcSpline> {
+        self.contours.into_iter().map(|(_, path)| path).collect()
+    }
 }
 
 /// What no program can tell.

@@ -1,6 +1,6 @@
 //! Whether what is cut is what is drawn: every contour in order from end to end, and nothing elsewhere.
 
-use kurbo::{Affine, Point, Rect, Vec2};
+use kurbo::{Point, Rect};
 
 use super::Asked;
 use super::claim::{Claim, Spot, State, Worst};
@@ -8,7 +8,6 @@ use super::cuts::{Cuts, Pass};
 use crate::geom::{Along, ArcSpline, SpanIndex, frechet};
 use crate::machine::Machine;
 use crate::num::Deviation;
-use crate::sketch::Sketch;
 
 const DEVIATION: &str = "the cut is within the tolerance of the drawing";
 const ALL_CUT: &str = "every contour is cut";
@@ -18,6 +17,7 @@ const PASSES: &str = "no pass is deeper than asked";
 
 /// What came of comparing shapes.
 pub(super) struct Shape {
+    /// The worst, in the program's coordinates.
     pub(super) deviation: Option<Deviation>,
     pub(super) claims: Vec<Claim>,
 }
@@ -32,14 +32,30 @@ struct Target {
     best: Option<(Deviation, Spot)>,
 }
 
-/// Compares the cuts with the drawing, whose zero is at `at` in the program's coordinates.
-pub(super) fn judge(cuts: &Cuts, sketch: &Sketch, at: Vec2, machine: &Machine, asked: &Asked) -> Shape {
-    let mut comparison = Comparison::new(sketch, at, asked);
+/// Compares the cuts with `contours`, which are in the program's coordinates. With `alone`, all cuts must be theirs;
+/// else those that follow none are handed back.
+pub(super) fn judge<'a, 'b>(
+    cuts: &'b Cuts<'a>,
+    contours: Vec<ArcSpline>,
+    alone: bool,
+    machine: &Machine,
+    asked: &Asked,
+) -> (Shape, Vec<&'b Pass<'a>>) {
+    let mut comparison = Comparison::new(contours, asked);
+    let mut others = Vec::new();
     for pass in &cuts.passes {
-        comparison.take(pass);
+        let chain = pass.chain(comparison.tolerance / 100.0);
+        if !comparison.take(pass, &chain) {
+            others.push(pass);
+            if alone {
+                comparison.take_unfitting(pass, &chain);
+            }
+        }
     }
-    comparison.take_ramps(cuts);
-    comparison.conclude(at, machine, asked)
+    if alone {
+        comparison.take_ramps(cuts);
+    }
+    (comparison.conclude(machine, asked), others)
 }
 
 struct Comparison {
@@ -54,32 +70,26 @@ struct Comparison {
 }
 
 impl Comparison {
-    fn new(sketch: &Sketch, at: Vec2, asked: &Asked) -> Self {
-        let place = Affine::translate(at);
-        let target = |path: &ArcSpline| {
-            let path = path.transformed(place);
+    fn new(contours: Vec<ArcSpline>, asked: &Asked) -> Self {
+        let target = |path: ArcSpline| {
             let bbox = path.bbox()?;
             Some(Target { path, bbox, floors: Vec::new(), best: None })
         };
-        let targets: Vec<Target> = sketch.contours.iter().filter_map(|c| target(&c.path)).collect();
+        let targets: Vec<Target> = contours.into_iter().filter_map(target).collect();
         let mut by_left: Vec<usize> = (0..targets.len()).collect();
         by_left.sort_by(|&a, &b| targets[a].bbox.x0.total_cmp(&targets[b].bbox.x0));
         let tolerance = asked.tolerance.mm();
         Self { tolerance, targets, by_left, index: None, stray: Worst::none(), worst: None }
     }
 
-    /// Compares one pass with the contours whose boxes it fits.
-    fn take(&mut self, pass: &Pass) {
-        let chain = pass.chain(self.tolerance / 100.0);
-        let Some(bbox) = chain.bbox() else { return };
+    /// Compares one pass with the contours whose boxes it fits; true when it follows one.
+    fn take(&mut self, pass: &Pass, chain: &ArcSpline) -> bool {
         let mut follows = false;
-        for target in self.fitting(bbox) {
-            let deviation = frechet(&chain, &self.targets[target].path);
+        for target in chain.bbox().map_or_else(Vec::new, |bbox| self.fitting(bbox)) {
+            let deviation = frechet(chain, &self.targets[target].path);
             follows |= self.note(target, deviation, pass);
         }
-        if !follows {
-            self.take_unfitting(pass, &chain, bbox);
-        }
+        follows
     }
 
     /// The contours that a pass with this box may follow within tolerance.
@@ -116,7 +126,8 @@ impl Comparison {
 
     /// A pass that follows no contour as a whole. Its way must still be on the drawing everywhere. Open contours may
     /// be parts of it: one contour that was drawn in pieces. Else it is the failed cut of the contour it fits best.
-    fn take_unfitting(&mut self, pass: &Pass, chain: &ArcSpline, bbox: Rect) {
+    fn take_unfitting(&mut self, pass: &Pass, chain: &ArcSpline) {
+        let Some(bbox) = chain.bbox() else { return };
         for m in &pass.moves {
             self.note_stray(m);
         }
@@ -168,11 +179,11 @@ impl Comparison {
         self.stray.note(distance, || Spot::on(m, at));
     }
 
-    fn conclude(self, at: Vec2, machine: &Machine, asked: &Asked) -> Shape {
+    fn conclude(self, machine: &Machine, asked: &Asked) -> Shape {
         let uncut: Vec<&Target> = self.targets.iter().filter(|target| target.floors.is_empty()).collect();
         let missed = uncut.iter().filter_map(|target| target.best);
         let worst = missed.chain(self.worst).reduce(|a, b| if b.0.mm > a.0.mm { b } else { a });
-        let deviation = worst.map(|(d, _)| Deviation { at: d.at - at, ..d });
+        let deviation = worst.map(|(deviation, _)| deviation);
         let mut claims = vec![self.deviation_claim(worst), all_cut(&uncut)];
         let strays = Claim::at_most(STRAY, "mm", self.stray, self.tolerance, 0.0);
         claims.push(strays.because("the cutter goes down where nothing is drawn"));
@@ -236,7 +247,7 @@ fn all_cut(uncut: &[&Target]) -> Claim {
 }
 
 /// How far the sides of two boxes are apart at most: chains within a distance of each other differ by no more.
-fn misfit(a: Rect, b: Rect) -> f64 {
+pub(super) fn misfit(a: Rect, b: Rect) -> f64 {
     let sides = [a.x0 - b.x0, a.x1 - b.x1, a.y0 - b.y0, a.y1 - b.y1];
     sides.into_iter().map(f64::abs).fold(0.0, f64::max)
 }

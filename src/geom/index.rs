@@ -44,6 +44,12 @@ impl SpanIndex {
         self.tree.nearest_neighbor([p.x, p.y]).map(|entry| (entry.id, entry.span))
     }
 
+    /// The spans whose upright boxes meet the box from `low` to `high`, in no particular order.
+    pub fn meeting(&self, low: Point, high: Point) -> impl Iterator<Item = Span> + '_ {
+        let area = AABB::from_corners([low.x, low.y], [high.x, high.y]);
+        self.tree.locate_in_envelope_intersecting(area).map(|entry| entry.span)
+    }
+
     /// An upper bound of the largest distance from a point of `span` to the set, with the place: as near to the true
     /// one as it takes to tell whether that is above `limit`, which is then met within a five-hundredth. Infinite
     /// when the set is empty.

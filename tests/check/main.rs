@@ -3,6 +3,7 @@
 mod claims;
 mod emit;
 mod foreign;
+mod sides;
 mod tampering;
 
 use kurbo::Point;

@@ -1,0 +1,313 @@
+//! A cut beside the line: the cutter keeps its radius from the region to keep, and reaches all of it that it can.
+//!
+//! Closeness of two curves does not bound closeness of their offsets, so the path is judged by what the cutter
+//! touches. Clearance: every point of the path is at least radius less tolerance from the region. Coverage: a place
+//! of the border is reachable if a disc of radius plus tolerance, on the cutter's side, touches it and crosses no
+//! border; every reachable place is within radius plus tolerance of the path.
+
+use std::collections::HashSet;
+
+use kurbo::{Point, Rect, Vec2};
+
+use super::claim::{Claim, Spot, State, Worst};
+use super::cuts::{Cuts, Pass};
+use super::region::Region;
+use super::shape::{self, Shape};
+use super::{Asked, Placed, Side, Uncut};
+use crate::geom::{ArcSpline, Span, SpanIndex};
+use crate::machine::Machine;
+use crate::num::Deviation;
+use crate::toolpath::Move;
+
+const CLEARANCE: &str = "the cutter stays off what is kept";
+const COVERAGE: &str = "the cutter reaches all of the drawing that it can";
+const DEPTH: &str = "some pass goes to the depth asked";
+const PASSES: &str = "no pass is deeper than asked";
+
+/// How many directions the touching disc is tried in at a corner.
+const DIRECTIONS: usize = 9;
+
+/// Judges the cuts beside the closed contours; open ones are cut on the line.
+pub(super) fn judge(
+    cuts: &Cuts,
+    placed: &Placed,
+    side: Side,
+    machine: &Machine,
+    asked: &Asked,
+) -> (Shape, Vec<Uncut>) {
+    let radius = asked.cutter / 2.0;
+    if asked.tolerance.mm() >= radius {
+        let claims = vec![Claim::open(CLEARANCE, "a side needs a cutter larger than the tolerance")];
+        let claims = claims.into_iter().map(|claim| Claim { state: State::Fails, ..claim }).collect();
+        return (Shape { deviation: None, claims }, Vec::new());
+    }
+    let (closed, open): (Vec<_>, Vec<_>) = placed.contours.iter().cloned().partition(|(_, c)| c.closed);
+    let open: Vec<ArcSpline> = open.into_iter().map(|(_, path)| path).collect();
+    let (shape, beside) = match open.is_empty() {
+        true => (None, cuts.passes.iter().collect()),
+        false => {
+            let (shape, beside) = shape::judge(cuts, open, false, machine, asked);
+            (Some(shape), beside)
+        }
+    };
+    let judge = Judge::new(closed, radius, side, asked);
+    let clearance = judge.clearance(&beside, cuts);
+    let (coverage, uncut) = judge.coverage(&beside, machine, asked);
+    let mut claims = vec![judge.clearance_claim(clearance), judge.coverage_claim(coverage)];
+    claims.push(depth_claim(&beside, machine, asked));
+    claims.push(pass_claim(&beside, machine, asked));
+    let deviation = judge.deviation(clearance, coverage);
+    let on_line = shape.as_ref().and_then(|shape| shape.deviation);
+    let worst = [deviation, on_line].into_iter().flatten().reduce(|a, b| if b.mm > a.mm { b } else { a });
+    claims.extend(shape.map_or_else(Vec::new, |shape| shape.claims));
+    (Shape { deviation: worst, claims }, uncut)
+}
+
+struct Judge {
+    /// The contours' ids, one for each span of the region's border.
+    ids: Vec<usize>,
+    region: Region,
+    radius: f64,
+    tolerance: f64,
+    side: Side,
+}
+
+/// A piece of the border, with the span before and after it for the directions at its ends.
+struct Piece {
+    span: Span,
+    id: usize,
+}
+
+impl Judge {
+    fn new(closed: Vec<(usize, ArcSpline)>, radius: f64, side: Side, asked: &Asked) -> Self {
+        let mut ids = Vec::new();
+        let mut spans = Vec::new();
+        for (id, path) in &closed {
+            spans.extend(path.spans());
+            ids.resize(spans.len(), *id);
+        }
+        Self { ids, region: Region::new(spans), radius, tolerance: asked.tolerance.mm(), side }
+    }
+
+    /// Half the length of pieces that are short enough to report their distance.
+    fn fine(&self) -> f64 {
+        self.tolerance / 8.0
+    }
+
+    /// Half the length of pieces that are not cut further even where the verdict hangs on it.
+    fn finest(&self) -> f64 {
+        self.tolerance / 500.0
+    }
+
+    /// True for places where the cutter's centre may be, as far as the side goes.
+    fn is_free(&self, p: Point) -> bool {
+        self.region.contains(p) == (self.side == Side::Inside)
+    }
+
+    /// The least distance of the cutter's centre from the border, turned in sign; negative of zero on the wrong side.
+    fn clearance(&self, beside: &[&Pass], cuts: &Cuts) -> Worst {
+        let mut worst = Worst::none();
+        let mut seen = HashSet::new();
+        for pass in beside {
+            // A pass that keeps its distance does not change sides: one place tells.
+            let start = pass.moves[0];
+            if !self.is_free(start.from.xy) {
+                worst.note(0.0, || Spot::on(start, start.from.xy));
+            }
+            for m in &pass.moves {
+                self.note_clearance(m, &mut seen, &mut worst);
+            }
+        }
+        for m in cuts.ramps.iter().chain(&cuts.plunges) {
+            if !self.is_free(m.to.xy) {
+                worst.note(0.0, || Spot::end_of(m));
+            }
+            self.note_clearance(m, &mut seen, &mut worst);
+        }
+        worst
+    }
+
+    fn note_clearance(&self, m: &Move, seen: &mut HashSet<[u64; 5]>, worst: &mut Worst) {
+        let span = m.span();
+        let numbers = [span.start.x, span.start.y, span.end.x, span.end.y, span.bulge];
+        // The same way in every pass is judged once.
+        if seen.insert(numbers.map(f64::to_bits)) {
+            let (least, at) = self.least_distance(span);
+            worst.note(-least, || Spot::on(m, at));
+        }
+    }
+
+    /// A lower bound of the distance of a span from the border, with its place: exact enough to tell whether it is
+    /// below what is allowed.
+    fn least_distance(&self, span: Span) -> (f64, Point) {
+        let limit = self.radius - self.tolerance;
+        let mut least = (f64::INFINITY, span.start);
+        let mut pieces = vec![span];
+        while let Some(piece) = pieces.pop() {
+            let middle = piece.at(0.5);
+            let here = self.region.distance(middle);
+            let half = piece.length() / 2.0;
+            if here < limit {
+                least = if here < least.0 { (here, middle) } else { least };
+            } else if here - half >= self.radius.min(least.0) {
+                // No worse than what is known, or than no deviation at all.
+                least = if here - half < least.0 { (here - half, middle) } else { least };
+            } else if half <= self.finest() || (half <= self.fine() && here - half >= limit) {
+                least = (here - half, middle);
+            } else {
+                pieces.extend([piece.part(0.0, 0.5), piece.part(0.5, 1.0)]);
+            }
+        }
+        least
+    }
+
+    /// The largest distance of a reachable place of the border from the path, and what is not reached.
+    fn coverage(&self, beside: &[&Pass], machine: &Machine, asked: &Asked) -> (Worst, Vec<Uncut>) {
+        let slack = machine.last_place();
+        let deep = beside.iter().filter(|pass| asked.lowest.is_none_or(|lowest| pass.z <= lowest + slack));
+        let path = SpanIndex::new(deep.flat_map(|pass| pass.moves.iter().map(|m| m.span())));
+        let mut worst = Worst::none();
+        let mut uncut: Vec<Uncut> = Vec::new();
+        for (k, (&span, &id)) in self.region.spans().iter().zip(&self.ids).enumerate() {
+            self.cover_corner(k, &path, &mut worst);
+            self.cover(&Piece { span, id }, &path, &mut worst, &mut uncut);
+        }
+        (worst, uncut)
+    }
+
+    /// Judges the places of one span: near enough to the path, or else reachable or not.
+    fn cover(&self, piece: &Piece, path: &SpanIndex, worst: &mut Worst, uncut: &mut Vec<Uncut>) {
+        let limit = self.radius + self.tolerance;
+        let mut pieces = vec![piece.span];
+        while let Some(part) = pieces.pop() {
+            let middle = part.at(0.5);
+            let here = path.nearest(middle).map_or(f64::INFINITY, |(_, span)| span.nearest(middle).distance);
+            let half = part.length() / 2.0;
+            let bound = here + half;
+            if bound <= self.radius.max(worst.value) {
+                // No worse than what is known, or than no deviation at all.
+                worst.note(bound, || spot(middle));
+            } else if half > self.fine() || (here <= limit && bound > limit && half > self.finest()) {
+                pieces.extend([part.part(0.0, 0.5), part.part(0.5, 1.0)]);
+            } else if self.touches(middle, normals(&part).into_iter()) {
+                worst.note(bound, || spot(middle));
+            } else if bound > limit {
+                note_uncut(uncut, piece.id, part.length(), middle, here - self.radius);
+            }
+        }
+    }
+
+    /// Judges the corner at the start of span `k`: a disc may touch it in any direction between the normals of the
+    /// spans that meet there.
+    fn cover_corner(&self, k: usize, path: &SpanIndex, worst: &mut Worst) {
+        let spans = self.region.spans();
+        let corner = spans[k].start;
+        let here = path.nearest(corner).map_or(f64::INFINITY, |(_, span)| span.nearest(corner).distance);
+        if here <= self.radius + self.tolerance {
+            return;
+        }
+        let before = spans[..k].iter().rev().chain(spans[k..].iter().rev()).find(|span| span.end == corner);
+        let Some(before) = before else { return };
+        let (from, to) = (before.tangent(1.0), spans[k].tangent(0.0));
+        let turn = from.cross(to).atan2(from.dot(to));
+        let outward = |i: usize| {
+            let angle = from.atan2() + turn * i as f64 / (DIRECTIONS - 1) as f64;
+            Vec2::from_angle(angle - std::f64::consts::FRAC_PI_2 * turn.signum())
+        };
+        if self.touches(corner, (0..DIRECTIONS).map(outward)) {
+            worst.note(here, || spot(corner));
+        }
+    }
+
+    /// True when a disc of radius plus tolerance touches the border at `p` in one of the directions, on the cutter's
+    /// side, without crossing it.
+    fn touches(&self, p: Point, mut directions: impl Iterator<Item = Vec2>) -> bool {
+        let reach = self.radius + self.tolerance;
+        directions.any(|direction| {
+            let centre = p + direction * reach;
+            // A hair for the rounding of the touch itself.
+            let rounding = 64.0 * f64::EPSILON * (reach + p.to_vec2().hypot());
+            self.region.distance(centre) >= reach - rounding && self.is_free(centre)
+        })
+    }
+
+    fn clearance_claim(&self, clearance: Worst) -> Claim {
+        let claim = Claim::at_least(CLEARANCE, "mm", clearance, self.radius - self.tolerance, 0.0);
+        claim.because("the cutter cuts into the part, or runs on its wrong side")
+    }
+
+    fn coverage_claim(&self, coverage: Worst) -> Claim {
+        let claim = Claim::at_most(COVERAGE, "mm", coverage, self.radius + self.tolerance, 0.0);
+        claim.because("a part of the drawing that the cutter fits to is not cut to its edge")
+    }
+
+    /// How far the cutter's edge is off at worst.
+    fn deviation(&self, clearance: Worst, coverage: Worst) -> Option<Deviation> {
+        let place = |worst: Worst| worst.at.and_then(|spot| spot.at).map_or(Point::ZERO, |at| at.xy);
+        let into = Deviation { mm: self.radius + clearance.value, at: place(clearance), certified: true };
+        let short = Deviation { mm: coverage.value - self.radius, at: place(coverage), certified: true };
+        let worse = if short.mm > into.mm { short } else { into };
+        worse.mm.is_finite().then_some(Deviation { mm: worse.mm.max(0.0), ..worse })
+    }
+}
+
+/// The directions square to a span at its middle.
+fn normals(span: &Span) -> [Vec2; 2] {
+    let along = span.tangent(0.5);
+    [Vec2::new(-along.y, along.x), Vec2::new(along.y, -along.x)]
+}
+
+fn spot(xy: Point) -> Spot {
+    Spot { line: 0, at: Some(crate::toolpath::Position { xy, z: 0.0 }) }
+}
+
+fn note_uncut(uncut: &mut Vec<Uncut>, contour: usize, length: f64, at: Point, gap: f64) {
+    match uncut.last_mut().filter(|last| last.contour == contour) {
+        Some(last) => {
+            last.length += length;
+            if gap > last.gap {
+                (last.at, last.gap) = (at, gap);
+            }
+        }
+        None => uncut.push(Uncut { contour, length, at, gap }),
+    }
+}
+
+/// The lowest pass is at the height asked.
+fn depth_claim(beside: &[&Pass], machine: &Machine, asked: &Asked) -> Claim {
+    let Some(lowest) = asked.lowest else { return Claim::open(DEPTH, "no depth was asked for") };
+    let mut floor = Worst::none();
+    for pass in beside {
+        floor.note(-pass.z, || Spot::end_of(pass.moves[0]));
+    }
+    // The other way round than usual: the lowest floor must be as low as asked.
+    let reached = floor.at.is_some() && -floor.value <= lowest + machine.last_place();
+    let state = if reached { State::Holds } else { State::Fails };
+    let value = floor.at.map(|_| -floor.value);
+    let claim =
+        Claim { state, value, limit: Some(lowest), unit: "mm", at: floor.at, ..Claim::open(DEPTH, "") };
+    claim.because("no pass reaches the height asked")
+}
+
+/// The largest step down from one pass to the next of about the same box.
+fn pass_claim(beside: &[&Pass], machine: &Machine, asked: &Asked) -> Claim {
+    let Some(limit) = asked.pass else { return Claim::open(PASSES, "no depth of pass was asked for") };
+    let mut floors: Vec<(Rect, f64)> = Vec::new();
+    let mut step = Worst::none();
+    for pass in beside {
+        let Some(bbox) = pass.chain(0.0).bbox() else { continue };
+        let same = |known: &&mut (Rect, f64)| shape::misfit(known.0, bbox) <= asked.tolerance.mm();
+        match floors.iter_mut().find(same) {
+            Some(known) => {
+                step.note(known.1 - pass.z, || Spot::end_of(pass.moves[0]));
+                known.1 = known.1.min(pass.z);
+            }
+            None => {
+                step.note(asked.stock_top - pass.z, || Spot::end_of(pass.moves[0]));
+                floors.push((bbox, pass.z));
+            }
+        }
+    }
+    Claim::at_most(PASSES, "mm", step, limit, 2.0 * machine.last_place())
+        .because("a pass takes more than one pass may")
+}

@@ -1,0 +1,143 @@
+//! Cuts beside the line: what the cutter must leave, and what it must reach.
+
+use kurbo::Point;
+use ribband::check::{Asked, Side, State, Verdict};
+use ribband::geom::{ArcSpline, Span};
+
+use crate::emit::{Form, program};
+use crate::{asked, claim, failing, polyline, sketch, verdict};
+
+const RADIUS: f64 = 3.0;
+
+fn beside(side: Side, tolerance: f64) -> Asked {
+    Asked { side, cutter: 2.0 * RADIUS, ..asked(tolerance) }
+}
+
+fn rectangle(x: f64, y: f64, w: f64, h: f64) -> ArcSpline {
+    polyline(&[(x, y), (x + w, y), (x + w, y + h), (x, y + h)], true)
+}
+
+/// The way of a cutter's centre round a rectangle at `distance`, its corners rounded about the rectangle's own.
+fn around(x: f64, y: f64, w: f64, h: f64, distance: f64) -> ArcSpline {
+    let d = distance;
+    let p = |x: f64, y: f64| Point::new(x, y);
+    let quarter = std::f64::consts::FRAC_PI_8.tan();
+    let spans = [
+        Span::line(p(x, y - d), p(x + w, y - d)),
+        Span::arc(p(x + w, y - d), p(x + w + d, y), quarter),
+        Span::line(p(x + w + d, y), p(x + w + d, y + h)),
+        Span::arc(p(x + w + d, y + h), p(x + w, y + h + d), quarter),
+        Span::line(p(x + w, y + h + d), p(x, y + h + d)),
+        Span::arc(p(x, y + h + d), p(x - d, y + h), quarter),
+        Span::line(p(x - d, y + h), p(x - d, y)),
+        Span::arc(p(x - d, y), p(x, y - d), quarter),
+    ];
+    ArcSpline::from_spans(&spans, true)
+}
+
+fn judged(paths: &[ArcSpline], drawing: &[ArcSpline], asked: &Asked) -> Verdict {
+    verdict(&program(paths, Form::PLAIN), &sketch(drawing), asked).expect("it reads")
+}
+
+#[test]
+fn a_part_with_a_hole_cut_beside_the_line_holds() {
+    let drawing = [rectangle(10.0, 10.0, 60.0, 40.0), rectangle(25.0, 20.0, 20.0, 15.0)];
+    let paths = [around(10.0, 10.0, 60.0, 40.0, RADIUS), rectangle(28.0, 23.0, 14.0, 9.0)];
+    let verdict = judged(&paths, &drawing, &beside(Side::Outside, 0.1));
+    assert!(verdict.holds, "fails {:?} {:#?}", failing(&verdict), verdict.claims);
+    assert!(verdict.deviation.expect("a figure").mm <= 0.05, "{:?}", verdict.deviation);
+    // A round cutter leaves the hole's four corners: at 3 mm it is (sqrt 2 - 1) 3 mm short of them.
+    let [corners] = verdict.uncut[..] else { panic!("one contour with corners left: {:?}", verdict.uncut) };
+    assert_eq!(corners.contour, 2);
+    let gap = RADIUS * (2_f64.sqrt() - 1.0);
+    assert!((corners.gap - gap).abs() < 0.02, "gap {} for {gap}", corners.gap);
+}
+
+#[test]
+fn a_pocket_is_cut_inside() {
+    let drawing = [rectangle(10.0, 10.0, 60.0, 40.0)];
+    let path = [rectangle(13.0, 13.0, 54.0, 34.0)];
+    assert!(judged(&path, &drawing, &beside(Side::Inside, 0.1)).holds, "the path lies inside");
+    let outside = judged(&path, &drawing, &beside(Side::Outside, 0.1));
+    assert!(failing(&outside).contains(&"the cutter stays off what is kept"), "{:?}", failing(&outside));
+}
+
+#[test]
+fn a_cutter_too_near_or_too_far_is_refuted() {
+    let drawing = [rectangle(10.0, 10.0, 60.0, 40.0)];
+    let at = |distance: f64| {
+        judged(&[around(10.0, 10.0, 60.0, 40.0, distance)], &drawing, &beside(Side::Outside, 0.1))
+    };
+    for (off, states) in [
+        (0.0, [State::Holds, State::Holds]),
+        (-0.09, [State::Holds, State::Holds]),
+        (0.09, [State::Holds, State::Holds]),
+        (-0.11, [State::Fails, State::Holds]),
+        (0.11, [State::Holds, State::Fails]),
+    ] {
+        let verdict = at(RADIUS + off);
+        let found = ["stays off", "reaches all"].map(|name| claim(&verdict, name).state);
+        assert_eq!(found, states, "{off} mm from the right distance");
+        let mm = verdict.deviation.expect("a figure").mm;
+        assert!(mm >= off.abs() - 1e-9 && mm <= off.abs() + 0.03, "deviation {mm} for {off}");
+    }
+}
+
+#[test]
+fn a_contour_that_was_lost_on_the_way_is_found() {
+    let hole = rectangle(25.0, 20.0, 20.0, 15.0);
+    let drawing = [rectangle(10.0, 10.0, 60.0, 40.0), hole];
+    let outer = around(10.0, 10.0, 60.0, 40.0, RADIUS);
+    let verdict = judged(&[outer.clone()], &drawing, &beside(Side::Outside, 0.1));
+    assert_eq!(failing(&verdict), ["the cutter reaches all of the drawing that it can"]);
+    // A hole that the cutter does not fit into is told, not judged.
+    let small = [rectangle(10.0, 10.0, 60.0, 40.0), rectangle(30.0, 20.0, 5.0, 15.0)];
+    let verdict = judged(&[outer], &small, &beside(Side::Outside, 0.1));
+    assert!(verdict.holds, "{:?}", failing(&verdict));
+    let length: f64 = verdict.uncut.iter().filter(|u| u.contour == 2).map(|u| u.length).sum();
+    assert!((length - 40.0).abs() < 1e-6, "the whole hole stays: {length}");
+}
+
+#[test]
+fn jagged_traces_are_judged_by_what_touches_the_cutter() {
+    // A saw edge of teeth 0.05 high each 0.3: only the tips can be touched, and the path runs at their height.
+    let mut points = Vec::new();
+    for k in 0..=200 {
+        points.push((10.0 + 0.3 * f64::from(k), if k % 2 == 0 { 10.0 } else { 9.95 }));
+    }
+    points.extend([(70.0, 50.0), (10.0, 50.0)]);
+    let drawing = [polyline(&points, true)];
+    let path = around(10.0, 9.95, 60.0, 40.05, RADIUS);
+    let verdict = judged(&[path.clone()], &drawing, &beside(Side::Outside, 0.1));
+    assert!(verdict.holds, "fails {:?} {:#?}", failing(&verdict), verdict.claims);
+    let low = path.transformed(kurbo::Affine::translate((0.0, -0.15)));
+    let verdict = judged(&[low], &drawing, &beside(Side::Outside, 0.1));
+    assert!(
+        failing(&verdict).contains(&"the cutter reaches all of the drawing that it can"),
+        "0.15 short of the tips"
+    );
+}
+
+#[test]
+fn open_contours_are_cut_on_the_line() {
+    let stroke = polyline(&[(20.0, 70.0), (60.0, 75.0)], false);
+    let drawing = [rectangle(10.0, 10.0, 60.0, 40.0), stroke.clone()];
+    let outer = around(10.0, 10.0, 60.0, 40.0, RADIUS);
+    let verdict = judged(&[outer.clone(), stroke], &drawing, &beside(Side::Outside, 0.1));
+    assert!(verdict.holds, "fails {:?} {:#?}", failing(&verdict), verdict.claims);
+    let verdict = judged(&[outer], &drawing, &beside(Side::Outside, 0.1));
+    assert!(failing(&verdict).contains(&"every contour is cut"), "{:?}", failing(&verdict));
+}
+
+#[test]
+fn passes_and_depth_are_judged_beside_the_line_too() {
+    let drawing = [rectangle(10.0, 10.0, 60.0, 40.0)];
+    let text = program(&[around(10.0, 10.0, 60.0, 40.0, RADIUS)], Form::PLAIN);
+    let with = |from: &str, to: &str| {
+        let verdict = verdict(&text.replacen(from, to, 1), &sketch(&drawing), &beside(Side::Outside, 0.1));
+        failing(&verdict.expect("it reads"))
+    };
+    assert_eq!(with("Z-6.000", "Z-6.000"), Vec::<&str>::new());
+    assert!(with("Z-4.000", "Z-5.000").contains(&"no pass is deeper than asked"));
+    assert!(with("Z-6.000", "Z-5.500").contains(&"some pass goes to the depth asked"));
+}
