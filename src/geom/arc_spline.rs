@@ -87,6 +87,29 @@ impl ArcSpline {
         Some(self.spans().fold(start, |bbox, span| bbox.union(span.bbox())))
     }
 
+    /// The turn at the start of span `i`, in radians, positive counter-clockwise; `None` at the start of an open chain.
+    pub fn turn(&self, i: usize) -> Option<f64> {
+        let before = match i {
+            0 if self.closed => self.len() - 1,
+            0 => return None,
+            _ => i - 1,
+        };
+        let (a, b) = (self.span(before).tangent(1.0), self.span(i).tangent(0.0));
+        Some(a.cross(b).atan2(a.dot(b)))
+    }
+
+    /// The vertices at which the tangent breaks by more than rounding coordinates to `place` mm explains, as indices.
+    ///
+    /// Moving both ends of a chord by half a place each way turns a line by `place / chord` and the tangent of an
+    /// arc, whose centre is rounded too, by twice that.
+    pub fn corners(&self, place: f64) -> impl Iterator<Item = usize> + '_ {
+        (0..self.len()).filter(move |&i| {
+            let before = self.span(if i == 0 { self.len() - 1 } else { i - 1 }).chord().hypot();
+            let explained = 2.0 * place * (before.recip() + self.span(i).chord().hypot().recip());
+            self.turn(i).is_some_and(|turn| turn.abs() > explained)
+        })
+    }
+
     /// The same chain walked the other way.
     pub fn reversed(&self) -> Self {
         let spans: Vec<Span> = self.spans().rev().map(|s| s.reversed()).collect();

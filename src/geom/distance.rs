@@ -34,22 +34,37 @@ const LEAST_SAGITTA: f64 = 1e-5;
 /// assert_eq!(frechet(&line(0.0), &line(0.5)).mm, 0.5);
 /// ```
 pub fn frechet(path: &ArcSpline, contour: &ArcSpline) -> Deviation {
+    bounded(path, contour, 0.0)
+}
+
+/// As [`frechet`], but settled against a limit: the bound is at most `limit` wherever the true distance is below it by
+/// more than a five-hundredth, and is not tightened further there.
+///
+/// Certifies a path that uses the whole of its tolerance.
+pub fn frechet_within(path: &ArcSpline, contour: &ArcSpline, limit: f64) -> Deviation {
+    bounded(path, contour, limit)
+}
+
+/// The bound, tightened until it is at most `limit` or near the distance.
+fn bounded(path: &ArcSpline, contour: &ArcSpline, limit: f64) -> Deviation {
     let Some(scale) = scale(path).zip(scale(contour)).map(|(a, b)| a.max(b)) else {
         let at = contour.vertices.first().map_or(Point::ZERO, |v| v.at);
         return Deviation { mm: f64::INFINITY, at, certified: true };
     };
     // A chain of a billion times the least sagitta or more is cut relative to its size.
     let least = LEAST_SAGITTA.max(scale * 1e-9);
-    let mut sagitta = FIRST_SAGITTA.max(least);
+    let first = if limit > 0.0 { FIRST_SAGITTA.min(limit / 1000.0) } else { FIRST_SAGITTA };
+    let mut sagitta = first.max(least);
+    let rounding = 16.0 * f64::EPSILON * scale;
     loop {
         let (p, q) = (Chords::new(path, sagitta), Chords::new(contour, sagitta));
         let spent = p.sagitta + q.sagitta;
         // Below this the chords take too large a part of the bound, and finer ones are tried.
         let enough = if sagitta <= least { LEAST_SAGITTA } else { 50.0 * spent };
+        let enough = enough.max(limit - spent - rounding);
         let flat = polyline_distance(&p, &q, enough);
-        if flat.mm >= enough || sagitta <= least {
-            let rounding = 16.0 * f64::EPSILON * scale;
-            let mm = if flat.mm + spent == 0.0 { 0.0 } else { flat.mm + spent + rounding };
+        let mm = if flat.mm + spent == 0.0 { 0.0 } else { flat.mm + spent + rounding };
+        if flat.mm >= enough || sagitta <= least || mm <= limit {
             return Deviation { mm, at: flat.at, certified: true };
         }
         sagitta = (0.009 * flat.mm).min(sagitta / 2.0).max(least);
@@ -168,7 +183,7 @@ fn closed_bound(path: &[Point], contour: &[Point], enough: f64) -> Bound {
             break;
         }
         let coupling = Walk::new(&opening.lap, contour).couple();
-        if coupling.mm <= enough || is_tight(&coupling, furthest(&opening.lap, contour, &coupling)) {
+        if coupling.mm <= enough || is_tight(&coupling, furthest(&opening.lap, contour, &coupling), enough) {
             return coupling.into();
         }
         if best.as_ref().is_none_or(|(least, _)| coupling.mm < least.mm) {
@@ -182,7 +197,7 @@ fn closed_bound(path: &[Point], contour: &[Point], enough: f64) -> Bound {
             let contour = reopened(contour, cut.corner, contour[cut.corner]);
             open_bound(&reopened(&open, cut.piece, cut.foot), &contour, enough)
         }
-        None => tightened(&open, contour, coupling),
+        None => tightened(&open, contour, coupling, enough),
     };
     bound.least(coupling.into())
 }
@@ -217,15 +232,15 @@ fn openings(lap: &[Point], start: Point) -> impl Iterator<Item = Opening> + '_ {
 /// The bound for two open polylines of at least two corners, walked from first to last.
 fn open_bound(path: &[Point], contour: &[Point], enough: f64) -> Bound {
     let coupling = Walk::new(path, contour).couple();
-    if coupling.mm <= enough || is_tight(&coupling, proven(path, contour, &coupling)) {
+    if coupling.mm <= enough || is_tight(&coupling, proven(path, contour, &coupling), enough) {
         return coupling.into();
     }
-    tightened(path, contour, coupling)
+    tightened(path, contour, coupling, enough)
 }
 
-/// True when the bound cannot be much too large.
-fn is_tight(coupling: &Coupling, proven: f64) -> bool {
-    coupling.mm <= LOOSE * proven
+/// True when the bound cannot be much too large, nor come down to what is enough.
+fn is_tight(coupling: &Coupling, proven: f64, enough: f64) -> bool {
+    proven > enough && coupling.mm <= LOOSE * proven
 }
 
 /// The distance of the furthest corner from the whole of the other chain: a lower bound, whatever the match.
@@ -244,15 +259,15 @@ fn proven(path: &[Point], contour: &[Point], coupling: &Coupling) -> f64 {
 }
 
 /// Halves the gap between the proven lower bound and the coupling's distance by deciding distances between, until
-/// it is narrow or the chains are too unlike for that in linear work.
-fn tightened(path: &[Point], contour: &[Point], coupling: Coupling) -> Bound {
+/// it is narrow or the chains are too unlike for that in linear work. A distance that is enough is tried first.
+fn tightened(path: &[Point], contour: &[Point], coupling: Coupling, enough: f64) -> Bound {
     let budget = 64 * (path.len() + contour.len()) + 50_000;
     let mut bound = Bound::from(coupling);
     let mut low = proven(path, contour, &coupling).max(LEAST_SAGITTA);
     let mut high = bound.mm;
     // The walk is seldom far off: try near its distance before halving.
-    let mut trial = high / LOOSE;
-    while high > LOOSE * low {
+    let mut trial = if low < enough { enough } else { high / LOOSE };
+    while high > enough && (high > LOOSE * low || low < enough) {
         match within(path, contour, trial, budget) {
             Reach::Within => {
                 bound.mm = trial;
@@ -262,7 +277,7 @@ fn tightened(path: &[Point], contour: &[Point], coupling: Coupling) -> Bound {
                 bound.at = at;
                 low = trial;
             }
-            Reach::Unknown => high = trial,
+            Reach::Unknown => break,
         }
         trial = (low * high).sqrt();
     }

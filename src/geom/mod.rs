@@ -14,6 +14,6 @@ mod winding;
 pub use along::Along;
 pub use arc_spline::{ArcSpline, Vertex};
 pub use crossings::{Crossing, crossings};
-pub use distance::frechet;
+pub use distance::{frechet, frechet_within};
 pub use index::SpanIndex;
 pub use span::{Nearest, Span};

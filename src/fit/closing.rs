@@ -1,0 +1,151 @@
+//! Closed contours: a run that comes back to the place, and where it can the heading, that it started from.
+
+use kurbo::{Point, Vec2};
+
+use crate::geom::Span;
+
+use super::beam::{Beam, Run, starts};
+use super::keeping::keeps;
+use super::reach::reach;
+use super::seeds;
+use super::state::{SHORTEST, State};
+use super::trace::{Bead, Trace};
+
+/// How many levels a run warms up before the place to start from is chosen on it.
+const WARM_UP: usize = 24;
+/// What the last spans of a lap cost: two arcs, or an arc and a corner.
+const CLOSING: usize = 2;
+/// Shares of the longest possible first tangent that are tried for the last two arcs.
+const SHARES: [f64; 9] = [0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9];
+
+/// The path of least cost around a closed trace.
+pub(super) fn closed(trace: &Trace) -> Run {
+    let start = well_placed_start(trace);
+    let last = start.state.bead + trace.lap();
+    let beads = &trace.beads()[..=last];
+    let first = State { bulge: 0.0, parent: 0, corner: false, ..start.state };
+    let starts = if start.corner {
+        seeds::turned(&first, beads, &mut Vec::new()).into_iter().map(|(_, s)| s).collect()
+    } else {
+        vec![first]
+    };
+    let goal = Goal { at: first.at, heading: (!start.corner).then_some(first.heading), beads };
+    around(&goal, starts).unwrap_or_else(|| Run::straight(trace.beads(), 0, trace.lap()))
+}
+
+/// A place on a good path, and whether the path turns a corner there.
+struct Start {
+    state: State,
+    corner: bool,
+}
+
+/// A joint in the middle of a run that has warmed up: a corner where the run has one, else the middle joint.
+fn well_placed_start(trace: &Trace) -> Start {
+    let mut beam = Beam::new(trace.beads(), starts(trace, 0));
+    for _ in 0..WARM_UP {
+        if !beam.step() || furthest(&beam).is_some_and(|id| beam.states[id].bead + 1 >= trace.beads().len()) {
+            break;
+        }
+    }
+    let end = (0..beam.states.len()).max_by_key(|&id| beam.states[id].bead).unwrap_or(0);
+    let chain = beam.chain(end);
+    let middle = chain.len() / 2;
+    let is_corner = |k: usize| chain.get(k + 1).is_some_and(|&next| beam.states[next].corner);
+    let corner = (1..chain.len()).filter(|&k| is_corner(k)).min_by_key(|k| k.abs_diff(middle));
+    let mut state = beam.states[chain[corner.unwrap_or(middle)]];
+    if state.bead >= trace.lap() {
+        state.bead -= trace.lap();
+    }
+    Start { state, corner: corner.is_some() }
+}
+
+/// The state of the last level that has come furthest.
+fn furthest(beam: &Beam) -> Option<usize> {
+    let level = beam.tangent.len() - 1;
+    beam.level(level).max_by_key(|&id| beam.states[id].bead)
+}
+
+/// Where a closed run ends: the place it started from.
+struct Goal<'a> {
+    at: Point,
+    /// The heading to arrive with; `None` at a corner.
+    heading: Option<Vec2>,
+    /// All beads of the lap; the last is the one the run started from.
+    beads: &'a [Bead],
+}
+
+/// The cheapest lap from the starts back to the goal.
+fn around(goal: &Goal, starts: Vec<State>) -> Option<Run> {
+    let mut beam = Beam::new(goal.beads, starts);
+    let mut best: Option<(usize, usize, Run)> = None;
+    for level in 0.. {
+        for id in beam.level(level).collect::<Vec<_>>() {
+            let state = beam.states[id];
+            if let Some(last) = goal.closed_from(&state)
+                && best.as_ref().is_none_or(|b| level + CLOSING < b.0)
+            {
+                best = Some((level + CLOSING, id, last));
+            }
+        }
+        if best.as_ref().is_some_and(|b| level + 1 + CLOSING >= b.0) || !beam.step() {
+            break;
+        }
+    }
+    best.map(|(_, id, last)| {
+        let mut run = beam.run(id);
+        run.spans.extend(last.spans);
+        run.passed.extend(last.passed);
+        run
+    })
+}
+
+impl Goal<'_> {
+    /// The last spans from `state` to the goal: two arcs that arrive with its heading, else one and a corner, which
+    /// costs the same.
+    fn closed_from(&self, state: &State) -> Option<Run> {
+        let last = self.beads.len() - 1;
+        let from = self.beads[state.bead].along;
+        let reached = reach(state, self.beads, &mut Vec::new()) - from;
+        if self.beads[last].along - from > 4.0 * reached {
+            return None;
+        }
+        self.heading.and_then(|heading| self.two_arcs(state, heading)).or_else(|| {
+            let span = Span::leaving(state.at, state.heading, self.at);
+            passes(&span, self.beads, state.bead, last).then(|| Run { spans: vec![span], passed: vec![last] })
+        })
+    }
+
+    /// Two tangent arcs from `state` to the goal and its heading.
+    fn two_arcs(&self, state: &State, heading: Vec2) -> Option<Run> {
+        let (ahead, last) = (&self.beads[state.bead + 1..], self.beads.len() - 1);
+        let chord = self.at - state.at;
+        let longest = chord.hypot2() / (2.0 * chord.dot(state.heading));
+        SHARES.iter().find_map(|share| {
+            let first = share * longest;
+            let turn = 1.0 - state.heading.dot(heading);
+            let second = (chord.hypot2() / 2.0 - first * chord.dot(state.heading))
+                / (chord.dot(heading) + first * turn);
+            if !(first > 0.0 && second > 0.0 && second.is_finite()) {
+                return None;
+            }
+            let (a, b) = (state.at + state.heading * first, self.at - heading * second);
+            let joint = a.lerp(b, first / (first + second));
+            let spans = vec![
+                Span::leaving(state.at, state.heading, joint),
+                Span::leaving(self.at, -heading, joint).reversed(),
+            ];
+            let tangent = spans[0].tangent(1.0);
+            let split = ahead.iter().position(|b| (b.at - joint).dot(tangent) >= 0.0).unwrap_or(ahead.len());
+            let middle = state.bead + split;
+            let holds = passes(&spans[0], self.beads, state.bead, middle)
+                && passes(&spans[1], self.beads, middle, last);
+            let passed = vec![middle, last];
+            holds.then_some(Run { spans, passed })
+        })
+    }
+}
+
+/// True when `span` may be cut and keeps to the trace past the beads after `first` up to `last`.
+fn passes(span: &Span, beads: &[Bead], first: usize, last: usize) -> bool {
+    span.chord().hypot() >= SHORTEST && span.bulge.abs() <= 1.0 && keeps(span, beads, first, last)
+}
