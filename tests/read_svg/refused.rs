@@ -69,7 +69,7 @@ fn the_line_is_the_one_inside_a_long_attribute() {
 
 #[test]
 fn documents_that_are_no_drawing() {
-    let rows: [(&str, Kind, &str); 10] = [
+    let rows: [(&str, Kind, &str); 11] = [
         ("<svg", Kind::Input, "the XML is broken"),
         ("<svg><g>", Kind::Input, "the XML is cut short"),
         ("<svg><g></svg>", Kind::Input, "the XML is broken"),
@@ -79,6 +79,7 @@ fn documents_that_are_no_drawing() {
         ("<svg width='0' height='5'><path d='M0 0H1'/></svg>", Kind::Input, "its width is not above zero"),
         ("<svg width='wide'><path d='M0 0H1'/></svg>", Kind::Input, "\"wide\" is not a length"),
         ("<svg viewBox='0 0 0 5'><path d='M0 0H1'/></svg>", Kind::Input, "its viewBox has no size"),
+        ("<svg transform='scale(2)'><path d='M0 0H1'/></svg>", Kind::Input, "a transform of the whole page"),
         ("<svg><path d='M0 0H1e300'/></svg>", Kind::Input, "cannot be meant"),
     ];
     for (text, kind, what) in rows {

@@ -1,6 +1,7 @@
 //! Static SVG 1.1 and 2 to a [`Drawing`]: what would be drawn as outlines, in the page's units, y up.
 
 mod arc;
+mod inherit;
 mod path;
 mod shape;
 mod source;

@@ -1,11 +1,10 @@
 //! The walk through the elements that are drawn, with what each inherits: place, visibility, layer, colour.
 
-use std::rc::Rc;
-
 use kurbo::{Affine, Size, Vec2};
-use roxmltree::{Node, NodeId};
+use roxmltree::Node;
 
 use super::super::curve::{Chain, Element};
+use super::inherit::{Inherited, deeper};
 use super::shape::{Flaw, Shape};
 use super::source::Source;
 use super::style::{Declared, Sheets};
@@ -15,35 +14,9 @@ use super::{transform, viewport};
 use crate::error::{Error, Kind};
 use crate::sketch::Place;
 
-/// `use` inside `use` inside `use`: beyond this nobody drew it by hand.
-const DEEPEST_USE: usize = 64;
-
 /// So many elements and curves may come out of `use` before the drawing is refused: far more than any shop cuts, and
 /// still read in a second.
 const MOST_USED: usize = 1_000_000;
-
-/// What an element hands down to its children.
-#[derive(Clone)]
-struct Inherited<'n> {
-    /// From user space to file units.
-    map: Affine,
-    viewport: Option<Size>,
-    visible: bool,
-    stroke: Option<&'n str>,
-    fill: Option<&'n str>,
-    stroke_width: Option<&'n str>,
-    /// The name of the outermost named group.
-    layer: Option<&'n str>,
-    /// The `use` elements that led here.
-    uses: Option<Rc<Use>>,
-}
-
-/// One step through a `use`.
-struct Use {
-    target: NodeId,
-    depth: usize,
-    before: Option<Rc<Use>>,
-}
 
 /// An element waiting to be drawn.
 struct Waiting<'a, 'n> {
@@ -80,18 +53,13 @@ impl<'a: 'n, 'n> Walk<'a, 'n> {
     pub(super) fn run(&mut self, page: &Page) -> Result<(), Error> {
         let root = self.source.document.root_element();
         let style = self.sheets.declared(root);
-        let mut inherited = Inherited {
-            map: page.map,
-            viewport: page.viewport,
-            visible: true,
-            stroke: None,
-            fill: None,
-            stroke_width: None,
-            layer: None,
-            uses: None,
-        };
+        let mut inherited = Inherited::of(page);
         if style.get("display").is_some_and(|d| d.eq_ignore_ascii_case("none")) {
             return Ok(());
+        }
+        if style.get("transform").is_some_and(|t| transform::parse(t) != Ok(Affine::IDENTITY)) {
+            let what = "a transform of the whole page, which programs draw differently".to_owned();
+            return Err(self.source.error(root, &what.into()));
         }
         inherited.take(&style);
         self.enter(root, &inherited);
@@ -322,52 +290,6 @@ impl From<Error> for Stop {
     fn from(error: Error) -> Self {
         Self::Error(error)
     }
-}
-
-impl<'n> Inherited<'n> {
-    /// Takes over what an element says of the inherited properties.
-    fn take<'a: 'n>(&mut self, style: &Declared<'a, 'n>) {
-        if let Some(visibility) = style.get("visibility") {
-            match visibility.to_ascii_lowercase().as_str() {
-                "visible" => self.visible = true,
-                "hidden" | "collapse" => self.visible = false,
-                _ => {}
-            }
-        }
-        let said = |name| style.get(name).filter(|v| *v != "inherit");
-        self.stroke = said("stroke").or(self.stroke);
-        self.fill = said("fill").or(self.fill);
-        self.stroke_width = said("stroke-width").or(self.stroke_width);
-    }
-
-    /// The stroke's colour as written, else the fill's, else nothing.
-    fn colour(&self) -> &'n str {
-        [self.stroke, self.fill].into_iter().flatten().find(|c| *c != "none").unwrap_or_default()
-    }
-
-    fn tally_stroke(&self, tally: &mut Tally) {
-        if self.stroke.is_none_or(|s| s == "none") {
-            return;
-        }
-        let width = self.stroke_width.and_then(|w| Length::parse(w).ok()?.resolve(None).ok()).unwrap_or(1.0);
-        tally.stroke(width * self.map.determinant().abs().sqrt());
-    }
-}
-
-/// One step deeper into `use`; refused when the target is already being drawn.
-fn deeper(before: Option<Rc<Use>>, target: NodeId) -> Result<Rc<Use>, Stop> {
-    let mut step = before.as_deref();
-    while let Some(at) = step {
-        if at.target == target {
-            return Err("it draws itself within itself, without end".to_owned().into());
-        }
-        step = at.before.as_deref();
-    }
-    let depth = before.as_ref().map_or(0, |u| u.depth) + 1;
-    if depth > DEEPEST_USE {
-        return Err(format!("use within use, more than {DEEPEST_USE} deep").into());
-    }
-    Ok(Rc::new(Use { target, depth, before }))
 }
 
 fn own_transform(style: &Declared<'_, '_>) -> Result<Affine, String> {
