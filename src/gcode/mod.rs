@@ -7,4 +7,4 @@ pub mod read;
 pub mod write;
 
 pub use read::{Dialect, Program, interpret, read};
-pub use write::{Header, Mark, write};
+pub use write::{Header, Mark, Part, write, write_parts};

@@ -3,7 +3,7 @@
 use comfy_table::{Table, presets::NOTHING};
 use serde_json::{Value, json};
 
-use super::{ArcStyle, Build, Comments, Dwell, HelixFeed, Letters, Machine, Unit, bounds};
+use super::{ArcStyle, Build, Comments, Dwell, HelixFeed, Letters, Machine, Unit, numbers};
 
 /// The profile for the terminal: what its choices mean for the programs, in sentences, then every number with
 /// the range it may have, in the machine's own unit.
@@ -11,7 +11,7 @@ pub fn explain(machine: &Machine) -> String {
     let mut table = Table::new();
     table.load_style(NOTHING);
     table.set_header(["number", "value", "allowed"]);
-    for number in bounds::numbers(machine) {
+    for number in numbers::numbers(machine) {
         let (value, range) = number.shown(machine.unit);
         table.add_row([number.field, value, range]);
     }

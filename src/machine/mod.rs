@@ -3,9 +3,10 @@
 //! A profile is a TOML file in the machine's own unit. [`Machine`] holds every length in mm, so feeds are in
 //! mm/min and accelerations in mm/s2. Profiles describe kinds of machines, not makes.
 
-mod bounds;
 mod builtin;
 mod explain;
+mod numbers;
+mod rules;
 
 use serde::{Deserialize, Serialize};
 
@@ -336,10 +337,10 @@ impl Machine {
     /// [`Kind::Settings`] for text that is not TOML, a field that is missing, unknown or of the wrong kind
     /// (with its line), or values outside their bounds (all of them, each with its range and the reason).
     pub fn from_toml(text: &str) -> Result<Self, Error> {
-        let mut machine: Self = toml::from_str(text).map_err(|error| bounds::unreadable(text, &error))?;
+        let mut machine: Self = toml::from_str(text).map_err(|error| rules::unreadable(text, &error))?;
         let mm = machine.unit.mm();
         machine.lengths().into_iter().for_each(|length| *length *= mm);
-        let flaws = bounds::flaws(&machine);
+        let flaws = rules::flaws(&machine);
         if flaws.is_empty() {
             return Ok(machine);
         }

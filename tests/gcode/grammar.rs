@@ -16,6 +16,7 @@ fn ways_to_write_the_same_numbers() {
         "G21 G90 G94\nG0 X0 0 1 Y - 2 Z 0 . 5\n\tG1\tX0\tF300\nM2",
         "N5 G21 G90 G94 (set up) (twice)\nN10 Y-2 G0 Z0.5 X1 ; over\n/N15 G1 X0 F300\nN99999 M2",
         "%\nG21 G90 G94\n\n   \nG0 X1 Y-2 Z0.5\nG1 F300 X0\nM2\n%\n",
+        "\u{feff}G21 G90 G94\nG0 X1 Y-2 Z0.5\nG1 X0 F300\nM2",
         "O1000\nG21 G90 G94\nG0 X1 Y-2 Z0.500000000000000000000\nG1 X0 F300\nM2",
     ];
     let shop = machine("shop-router");

@@ -3,6 +3,7 @@
 mod common;
 mod grammar;
 mod nist;
+mod parts;
 mod rounded;
 mod second;
 mod written;

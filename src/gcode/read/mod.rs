@@ -5,11 +5,14 @@
 mod arc;
 mod block;
 mod cycle;
+mod dialect;
+mod functions;
 mod interpret;
 mod moves;
 mod program;
 mod words;
 
-pub use interpret::{Dialect, interpret};
+pub use dialect::Dialect;
+pub use interpret::interpret;
 pub use program::{ArcFlaw, Event, Program, What};
 pub use words::{Block, Text, Word, read};

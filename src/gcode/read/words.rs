@@ -64,6 +64,7 @@ impl std::fmt::Display for Word {
 /// line number of more than five digits, an opening percent sign without its closing one, text without any
 /// block.
 pub fn read(text: &str) -> Result<Text<'_>, Error> {
+    let text = text.strip_prefix('\u{feff}').unwrap_or(text);
     let mut reader = Reader { text, bytes: text.as_bytes(), at: 0, line: 1, read: Text::default() };
     reader.program()?;
     if reader.read.blocks.is_empty() {

@@ -4,6 +4,7 @@ mod arc;
 mod decimal;
 mod header;
 mod motion;
+mod parts;
 mod pen;
 
 use crate::error::{Error, Kind};
@@ -11,6 +12,7 @@ use crate::machine::{Dwell, Machine, RetractBy};
 use crate::toolpath::Toolpath;
 
 pub use header::{Header, Mark};
+pub use parts::{Part, write_parts};
 
 use motion::Motion;
 use pen::Pen;

@@ -1,0 +1,110 @@
+//! Programs for a controller that holds little: cut between contours into parts that are complete by themselves.
+
+use std::ops::Range;
+
+use super::header::{Header, Mark};
+use super::write;
+use crate::error::{Error, Kind};
+use crate::machine::Machine;
+use crate::toolpath::Toolpath;
+
+/// One program of several.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Part {
+    /// Its text.
+    pub text: String,
+    /// The moves of the toolpath that it makes.
+    pub moves: Range<usize>,
+}
+
+/// The programs that move the cutter along `toolpath`, each within the controller's memory: one where that is enough,
+/// else as few as can be cut between contours, or, inside a contour that is too long by itself, at a retract.
+///
+/// # Errors
+/// Those of [`write()`]; and [`Kind::Refused`] when what lies between two retracts is longer than the memory.
+pub fn write_parts(toolpath: &Toolpath, header: &Header, machine: &Machine) -> Result<Vec<Part>, Error> {
+    let whole = write(toolpath, header, machine)?;
+    let memory = machine.controller.memory_bytes.map_or(usize::MAX, |bytes| bytes as usize);
+    if whole.len() <= memory {
+        return Ok(vec![Part { text: whole, moves: 0..toolpath.moves.len() }]);
+    }
+    let cutter = Cutter { toolpath, header, machine, memory };
+    let ranges = cutter.ranges()?;
+    let of = ranges.len();
+    let write_part = |(k, moves): (usize, Range<usize>)| {
+        let text = cutter.part(moves.clone(), &format!("part {} of {of}", k + 1))?;
+        if text.len() > memory { Err(cutter.too_long(moves.start)) } else { Ok(Part { text, moves }) }
+    };
+    ranges.into_iter().enumerate().map(write_part).collect()
+}
+
+/// Cuts one toolpath for one machine.
+struct Cutter<'a> {
+    toolpath: &'a Toolpath,
+    header: &'a Header,
+    machine: &'a Machine,
+    memory: usize,
+}
+
+impl Cutter<'_> {
+    /// The moves of each part: every time as many as fit.
+    fn ranges(&self) -> Result<Vec<Range<usize>>, Error> {
+        let contours = self.places(true);
+        let retracts = self.places(false);
+        let mut ranges = Vec::new();
+        let mut start = 0;
+        while start < self.toolpath.moves.len() {
+            let end = self.furthest(start, &contours).or_else(|| self.furthest(start, &retracts));
+            let end = end.ok_or_else(|| self.too_long(start))?;
+            ranges.push(start..end);
+            start = end;
+        }
+        Ok(ranges)
+    }
+
+    /// Where a part may end: before a rapid at the clearance height or above it, one that goes across where it is
+    /// to be `between_contours`; and at the end.
+    fn places(&self, between_contours: bool) -> Vec<usize> {
+        let moves = &self.toolpath.moves;
+        let up = |i: &usize| moves[*i].is_rapid() && moves[*i].from.z >= self.header.clearance;
+        let across = |i: &usize| !between_contours || moves[*i].from.xy != moves[*i].to.xy;
+        (1..moves.len()).filter(up).filter(across).chain([moves.len()]).collect()
+    }
+
+    /// The last of `places` that a part from `start` can end at.
+    fn furthest(&self, start: usize, places: &[usize]) -> Option<usize> {
+        let places = &places[places.partition_point(|end| *end <= start)..];
+        let fits = |end: &usize| {
+            let text = self.part(start..*end, "part 000 of 000");
+            text.is_ok_and(|text| text.len() <= self.memory)
+        };
+        let mut bound = 1;
+        while bound < places.len() && fits(&places[bound - 1]) {
+            bound *= 2;
+        }
+        let places = &places[..bound.min(places.len())];
+        places.partition_point(fits).checked_sub(1).map(|last| places[last])
+    }
+
+    /// The program of some of the moves.
+    fn part(&self, moves: Range<usize>, name: &str) -> Result<String, Error> {
+        let marks = self.header.marks.iter().filter(|mark| moves.contains(&mark.before));
+        let marks = marks.map(|mark| Mark { before: mark.before - moves.start, text: mark.text.clone() });
+        let mut header = self.header.clone();
+        header.marks = marks.collect();
+        header.title = format!("{}, {name}", header.title);
+        write(&Toolpath { moves: self.toolpath.moves[moves].to_vec() }, &header, self.machine)
+    }
+
+    /// The refusal of the moves from `start` on, up to the next retract.
+    fn too_long(&self, start: usize) -> Error {
+        let at = self.toolpath.moves[start].to.xy;
+        let memory = self.memory;
+        let what = format!(
+            "what is cut in one go from X {:.1} Y {:.1} mm is longer than the controller's {memory} bytes",
+            at.x, at.y
+        );
+        Error::new(Kind::Refused, what)
+            .remedy("a wider tolerance gives fewer blocks; fewer passes are shorter too")
+    }
+}
