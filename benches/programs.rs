@@ -2,6 +2,8 @@
 //!
 //! A million blocks of short lines and arcs, as a long job has them, on one core; the best of five runs.
 
+#![expect(clippy::print_stdout, reason = "a benchmark prints its figures")]
+
 use std::time::{Duration, Instant};
 
 use kurbo::Point;

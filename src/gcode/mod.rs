@@ -2,6 +2,19 @@
 //!
 //! Behaviour is that of the RS274/NGC language (Kramer, Proctor and Messina, NISTIR 6556, 2000); where
 //! controllers differ from it, the machine profile says how.
+//!
+//! ```
+//! use ribband::gcode::{Dialect, interpret, read};
+//! use ribband::machine::Machine;
+//!
+//! let text = "G21 G90 G94 G17\nG0 Z5\nX7 Y7\nG2 X10 Y16 I3 J4 F600\nM2\n";
+//! let dialect = Dialect::of(&Machine::named("shop-router")?);
+//! let program = interpret(&read(text)?, &dialect)?;
+//! let arc = program.toolpath.moves[0].span();
+//! assert!((arc.radius() - 5.0).abs() < 1e-12);
+//! assert_eq!(program.ended, Some(5));
+//! # Ok::<(), ribband::error::Error>(())
+//! ```
 
 pub mod read;
 pub mod write;

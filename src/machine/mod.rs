@@ -2,6 +2,17 @@
 //!
 //! A profile is a TOML file in the machine's own unit. [`Machine`] holds every length in mm, so feeds are in
 //! mm/min and accelerations in mm/s2. Profiles describe kinds of machines, not makes.
+//!
+//! ```
+//! use ribband::machine::Machine;
+//!
+//! let gantry = Machine::named("inch-gantry")?;
+//! assert!((gantry.cutters[0].diameter - 6.35).abs() < 1e-12);
+//! let wrong = gantry.to_toml()?.replace("queue = 200", "queue = 0");
+//! let error = Machine::from_toml(&wrong).unwrap_err();
+//! assert!(error.what.contains("controller.queue is 0 blocks, allowed is 1 to 100000 blocks"));
+//! # Ok::<(), ribband::error::Error>(())
+//! ```
 
 mod builtin;
 mod explain;
@@ -404,8 +415,8 @@ impl Files {
     }
 }
 
-/// `value` rounded to so many significant digits: twelve bring a number that was converted on reading back as it
-/// stood.
+/// `value` rounded to so many significant digits: twelve bring a number that was converted on reading back
+/// as it stood.
 fn rounded(value: f64, digits: usize) -> f64 {
     let less_one = digits - 1;
     format!("{value:.less_one$e}").parse().unwrap_or(value)

@@ -49,8 +49,8 @@ fn the_worked_helix_by_radius() {
     assert_eq!((helix.from.z, helix.to.z), (0.0, 0.5));
 }
 
-/// NISTIR 6556, tables 12 and 13: an edge, and the path of a one-inch cutter around it. Lengths and areas are the
-/// closed forms of a 3-4-5 triangle grown by 1 and by 1.5.
+/// NISTIR 6556, tables 12 and 13: an edge, and the path of a one-inch cutter around it. Lengths and areas
+/// are the closed forms of a 3-4-5 triangle grown by 1 and by 1.5.
 #[test]
 fn the_edge_and_the_cutters_path_around_it() {
     use std::f64::consts::PI;
@@ -89,8 +89,8 @@ fn a_negative_radius_is_the_long_way_round() {
     assert_relative_eq!(sweep, 300.0, epsilon = 1e-9);
 }
 
-/// NISTIR 6556, 3.5.3: clockwise as seen from the positive end of the plane's normal. In G18 that is from +Y, where
-/// X points down when Z points right.
+/// NISTIR 6556, 3.5.3: clockwise as seen from the positive end of the plane's normal. In G18 that is from
+/// +Y, where X points down when Z points right.
 #[test]
 fn arcs_in_the_other_planes() {
     let program = shop("G21 G90 G94 G0 X0 Y0 Z0\nG18 G3 X10 Z0 I5 K0 F100\nM2");

@@ -1,4 +1,5 @@
-//! Arcs on the grid of a program's numbers: never a mismatch over the limit, never another arc than was meant.
+//! Arcs on the grid of a program's numbers: never a mismatch over the limit, never another arc than was
+//! meant.
 
 use kurbo::Point;
 use proptest::prelude::*;
@@ -83,7 +84,8 @@ proptest! {
         let off = stray(&[span], &read).max(stray(&read, &[span]));
         prop_assert!(off <= 1.5 * place, "{} of the last place on {}: {read:?}", off / place, machine.name);
         let length: f64 = read.iter().map(Span::length).sum();
-        prop_assert!((length - span.length()).abs() <= 4.0 * place + 0.01 * span.length(), "another way round: {read:?}");
+        let close = (length - span.length()).abs() <= 4.0 * place + 0.01 * span.length();
+        prop_assert!(close, "another way round: {read:?}");
     }
 
     /// check-values 1.5: rounding every number by itself breaks the limit in one arc of five thousand.

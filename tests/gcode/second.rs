@@ -1,5 +1,5 @@
-//! Every program that we write, read by a second parser (the `gcode` crate) and understood by a second, little
-//! interpreter that shares nothing with the first: the same places, the same arcs, the same feeds.
+//! Every program that we write, read by a second parser (the `gcode` crate) and understood by a second,
+//! little interpreter that shares nothing with the first: the same places, the same arcs, the same feeds.
 
 use gcode::{Block, Code, Value};
 use kurbo::{Point, Vec2};
@@ -149,10 +149,11 @@ proptest! {
         let skipped = usize::from(machine.retract.by == RetractBy::MachineCoordinate);
         prop_assert!(second.len() >= mine.len() && second.len() - mine.len() <= skipped, "{text}");
         for (a, b) in mine.iter().rev().zip(second.iter().rev()) {
-            // The second parser's numbers are f32, which leaves 1e-4 of a place; where the radii at an arc's two
-            // ends differ, its middle is a matter of taste by as much.
+            // The second parser's numbers are f32, which leaves 1e-4 of a place; where the radii at an
+            // arc's two ends differ, its middle is a matter of taste by as much.
             let off = |a: &[f64], b: &[f64]| a.iter().zip(b).map(|(a, b)| (a - b).abs()).fold(0.0, f64::max);
-            let near = off(&a.end, &b.end) < 1e-4 && off(&a.middle, &b.middle) < 1e-3 + 1.5 * machine.last_place();
+            let middles = 1e-3 + 1.5 * machine.last_place();
+            let near = off(&a.end, &b.end) < 1e-4 && off(&a.middle, &b.middle) < middles;
             let feeds = a.feed.zip(b.feed).is_none_or(|(a, b)| (a - b).abs() < 1e-3 * b);
             prop_assert!(near && feeds && a.feed.is_some() == b.feed.is_some(), "{a:?} {b:?}\n{text}");
         }
@@ -169,7 +170,8 @@ proptest! {
         let mut rest = read.iter();
         for end in ends {
             let near = |at: f64, meant: f64| (at - meant).abs() <= 0.5001 * place;
-            let found = rest.find(|m| near(m.to.xy.x, end.xy.x) && near(m.to.xy.y, end.xy.y) && near(m.to.z, end.z));
+            let (at, up) = (end.xy, end.z);
+            let found = rest.find(|m| near(m.to.xy.x, at.x) && near(m.to.xy.y, at.y) && near(m.to.z, up));
             prop_assert!(found.is_some() || read.is_empty(), "{end:?} is not reached\n{text}");
         }
         let length = |moves: &[ribband::toolpath::Move]| -> f64 {

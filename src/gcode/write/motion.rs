@@ -132,7 +132,7 @@ impl<'a> Motion<'a> {
             self.up(to.z);
         }
         if across && self.at.z < self.clearance {
-            return Err(self.too_low("across", self.at.z));
+            return Err(self.too_low("across at", self.at.z));
         }
         if across {
             self.across(to);

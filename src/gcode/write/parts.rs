@@ -1,4 +1,5 @@
-//! Programs for a controller that holds little: cut between contours into parts that are complete by themselves.
+//! Programs for a controller that holds little: cut between contours into parts that are complete by
+//! themselves.
 
 use std::ops::Range;
 
@@ -17,8 +18,9 @@ pub struct Part {
     pub moves: Range<usize>,
 }
 
-/// The programs that move the cutter along `toolpath`, each within the controller's memory: one where that is enough,
-/// else as few as can be cut between contours, or, inside a contour that is too long by itself, at a retract.
+/// The programs that move the cutter along `toolpath`, each within the controller's memory: one where that
+/// is enough, else as few as can be cut between contours, or, inside a contour that is too long by itself,
+/// at a retract.
 ///
 /// # Errors
 /// Those of [`write()`]; and [`Kind::Refused`] when what lies between two retracts is longer than the memory.
@@ -62,8 +64,8 @@ impl Cutter<'_> {
         Ok(ranges)
     }
 
-    /// Where a part may end: before a rapid at the clearance height or above it, one that goes across where it is
-    /// to be `between_contours`; and at the end.
+    /// Where a part may end: before a rapid at the clearance height or above it, one that goes across where
+    /// it is to be `between_contours`; and at the end.
     fn places(&self, between_contours: bool) -> Vec<usize> {
         let moves = &self.toolpath.moves;
         let up = |i: &usize| moves[*i].is_rapid() && moves[*i].from.z >= self.header.clearance;
