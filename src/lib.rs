@@ -18,6 +18,7 @@ pub mod gcode;
 pub mod geom;
 pub mod job;
 pub mod machine;
+pub mod measure;
 pub mod num;
 pub mod offset;
 pub mod preview;

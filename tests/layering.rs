@@ -5,7 +5,7 @@ use std::fs;
 use std::path::{Path, PathBuf};
 
 /// What each room may use of the others. Errors, quantities and geometry are for all.
-const ROOMS: [(&str, &[&str]); 22] = [
+const ROOMS: [(&str, &[&str]); 23] = [
     ("error", &[]),
     ("num", &["error"]),
     ("geom", &["num"]),
@@ -17,6 +17,7 @@ const ROOMS: [(&str, &[&str]); 22] = [
     ("job", &["error", "files", "machine", "num"]),
     ("read", &["error", "geom", "num", "sketch"]),
     ("clean", &["error", "geom", "num", "sketch"]),
+    ("measure", &["clean", "sketch"]),
     ("fair", &["error", "geom", "num"]),
     ("fit", &["error", "fair", "geom", "num", "clean"]),
     ("offset", &["error", "geom", "num"]),
@@ -27,7 +28,7 @@ const ROOMS: [(&str, &[&str]); 22] = [
     ("check", &["gcode", "geom", "machine", "num", "sketch", "toolpath"]),
     ("preview", &["check", "error", "feed", "gcode", "geom", "machine", "num", "sketch", "toolpath"]),
     ("report", &["check", "error", "job", "machine"]),
-    ("cli", &["cautions", "error", "files", "job", "machine", "num", "read", "report", "run"]),
+    ("cli", &["cautions", "error", "files", "job", "machine", "measure", "num", "read", "report", "run"]),
 ];
 
 /// Every Rust file below `folder`.

@@ -71,6 +71,74 @@ struct Arms {
     sigma: f64,
 }
 
+/// The place of each vertex along the path in mm, the end of the last span included, and the median step between them.
+fn stations(path: &ArcSpline) -> (Vec<f64>, f64) {
+    let mut steps: Vec<f64> = path.spans().map(|s| s.length()).collect();
+    let mut along = Vec::with_capacity(steps.len() + 1);
+    along.push(0.0);
+    for (i, step) in steps.iter().enumerate() {
+        along.push(along[i] + step);
+    }
+    let middle = steps.len() / 2;
+    (along, *steps.select_nth_unstable_by(middle, f64::total_cmp).1)
+}
+
+/// How a trace bends between its corners.
+pub(super) struct Bends<'a> {
+    path: &'a ArcSpline,
+    along: Vec<f64>,
+    step: f64,
+    sigma: f64,
+}
+
+impl<'a> Bends<'a> {
+    /// Of a path that has spans.
+    pub(super) fn of(path: &'a ArcSpline, sigma: f64) -> Self {
+        let (along, step) = stations(path);
+        Self { path, along, step, sigma }
+    }
+
+    /// The least radius of curvature in mm, as far as noise lets it be seen; `None` where all is straight.
+    pub(super) fn smallest_radius(&self, corners: &[CornerPlace]) -> Option<f64> {
+        let whole = self.along[self.along.len() - 1];
+        let mut arm = 2.0 * self.step;
+        while arm < whole / 8.0 {
+            let curvature = self.largest_curvature(arm, corners);
+            let faked = FAKED * self.sigma / (arm * arm);
+            if 4.0 * faked <= curvature {
+                return (curvature * whole > 1.0 / SURE).then(|| curvature.recip());
+            }
+            arm *= 2_f64.sqrt();
+        }
+        None
+    }
+
+    /// The largest turn over an arm's length, away from corners by two arms.
+    fn largest_curvature(&self, arm: f64, corners: &[CornerPlace]) -> f64 {
+        let whole = self.along[self.along.len() - 1];
+        let near = |vertex: usize, corner: &CornerPlace| {
+            let apart = (self.along[vertex] - self.along[corner.vertex]).abs();
+            let round = if self.path.closed { whole - apart } else { apart };
+            apart.min(round) < 2.0 * arm
+        };
+        let turns = Walker { path: self.path, along: &self.along }.turns(arm);
+        let mut next = 0;
+        let mut largest = 0.0_f64;
+        for (vertex, turn) in turns.iter().enumerate().filter(|(_, turn)| !turn.is_nan()) {
+            // Corners are in order: only the one before, the one after, and those across the start can be near.
+            while next + 1 < corners.len() && corners[next].vertex < vertex {
+                next += 1;
+            }
+            let around =
+                corners[next.saturating_sub(1)..].iter().take(2).chain(corners.first()).chain(corners.last());
+            if !around.clone().any(|corner| near(vertex, corner)) {
+                largest = largest.max(turn.abs() / arm);
+            }
+        }
+        largest
+    }
+}
+
 /// What a pair of arms says of a vertex.
 #[derive(PartialEq)]
 enum Verdict {
@@ -84,13 +152,7 @@ enum Verdict {
 
 impl Arms {
     fn of(path: &ArcSpline, sigma: f64) -> Self {
-        let mut along = vec![0.0];
-        for span in path.spans() {
-            along.push(along[along.len() - 1] + span.length());
-        }
-        let mut steps: Vec<f64> = path.spans().map(|s| s.length()).collect();
-        let middle = steps.len() / 2;
-        let step = *steps.select_nth_unstable_by(middle, f64::total_cmp).1;
+        let (along, step) = stations(path);
         let noisy = FAKED * sigma / LEAST_TURN;
         let shortest = noisy.max(2.0 * step) / 2.0;
         let lengths: Vec<f64> = (0..ARMS).map(|k| shortest * 2_f64.powf(k as f64 / 2.0)).collect();

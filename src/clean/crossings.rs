@@ -30,7 +30,7 @@ pub fn crossings(contours: &[Contour]) -> Vec<Flaw> {
         if let Some(length) = shared_length(&one, &two, &found) {
             let joint = shared.entry((a.contour, b.contour)).or_insert(Shared {
                 first: a,
-                at: one.start,
+                at: found[0].at,
                 length: 0.0,
             });
             joint.length += length;

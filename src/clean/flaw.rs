@@ -64,7 +64,7 @@ impl FlawKind {
 }
 
 impl Flaw {
-    /// What is wrong, in a sentence without its full stop, without the place.
+    /// What is wrong: what a sentence says of the contour, without the place and the full stop.
     pub fn what(&self) -> String {
         let size = self.size;
         let other = self.other.filter(|&o| o != self.contour);
@@ -75,7 +75,9 @@ impl Flaw {
         match self.kind {
             FlawKind::Crossing => with("crosses", "crosses itself"),
             FlawKind::NearlyClosed => format!("is open: its ends are {size:.3} mm apart"),
-            FlawKind::Junction => format!("{size:.0} ends meet; the straightest pairs were joined"),
+            FlawKind::Junction => {
+                format!("is one of {size:.0} ends that meet; the straightest pairs were joined")
+            }
             FlawKind::Overlap => {
                 format!("runs over {} for {size:.3} mm", with("", "itself").trim_start())
             }
@@ -89,7 +91,7 @@ impl Flaw {
                     with("", "itself").trim_start()
                 )
             }
-            FlawKind::Gap => format!("a gap of {size:.3} mm {} was closed", with("to", "in it")),
+            FlawKind::Gap => format!("had a gap of {size:.3} mm{}; closed", with(" to", "")),
             FlawKind::NoLength => "has no length; dropped".to_string(),
         }
     }
@@ -126,17 +128,13 @@ fn rounded_up(mm: f64) -> f64 {
 
 impl fmt::Display for Flaw {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        write!(
-            f,
-            "contour {}, vertex {}, at X {:.3} Y {:.3}: ",
-            self.contour, self.vertex, self.at.x, self.at.y
-        )?;
-        write!(f, "{}\n  {}", self.what(), self.remedy())
+        write!(f, "contour {} at vertex {} ", self.contour, self.vertex)?;
+        write!(f, "(X {:.3} Y {:.3}) {}\n  {}", self.at.x, self.at.y, self.what(), self.remedy())
     }
 }
 
 /// Sorts by kind, then the largest first, then by place in the drawing.
-pub(super) fn worst_first(flaws: &mut [Flaw]) {
+pub fn worst_first(flaws: &mut [Flaw]) {
     flaws.sort_by(|a, b| {
         let size = |a: &Flaw, b: &Flaw| b.size.partial_cmp(&a.size).unwrap_or(Ordering::Equal);
         a.kind.cmp(&b.kind).then(size(a, b)).then((a.contour, a.vertex).cmp(&(b.contour, b.vertex)))

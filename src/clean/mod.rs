@@ -8,15 +8,17 @@ mod duplicates;
 mod flaw;
 mod nesting;
 mod roughness;
+mod size;
 mod tidy;
 
 use crate::sketch::{Contour, Sketch};
 
 pub use corners::{CornerPlace, corners};
 pub use crossings::crossings;
-pub use flaw::{Flaw, FlawKind};
+pub use flaw::{Flaw, FlawKind, worst_first};
 pub use nesting::{Nest, Role, nesting};
-pub use roughness::{Roughness, Support, Texture, roughness};
+pub use roughness::{Roughness, Support, Texture, roughness, support};
+pub use size::{largest_disc, smallest_radius};
 
 /// A drawing put right, with what was wrong.
 #[derive(Clone, Debug, Default)]
@@ -45,6 +47,30 @@ pub struct Counts {
     pub chained: usize,
     /// Lines and contours drawn twice, removed or cut back to the part drawn once.
     pub duplicates: usize,
+}
+
+impl Counts {
+    /// What was done, one phrase each; nothing for what was not needed.
+    pub fn told(&self) -> Vec<String> {
+        let phrases = [
+            (self.repeated_points, "repeated point", "dropped"),
+            (self.without_length, "contour without length", "dropped"),
+            (self.duplicates, "duplicate", "removed"),
+            (self.chained, "loose piece", "joined to others"),
+            (self.gaps_closed, "gap", "closed"),
+        ];
+        let told = phrases.into_iter().filter(|(count, ..)| *count > 0);
+        told.map(|(count, what, done)| format!("{count} {} {done}", plural(what, count))).collect()
+    }
+}
+
+/// The plural of a phrase by its first noun, where the count asks for it.
+fn plural(phrase: &str, count: usize) -> String {
+    match (count, phrase.split_once(" without")) {
+        (1, _) => phrase.to_string(),
+        (_, Some((noun, rest))) => format!("{noun}s without{rest}"),
+        (_, None) => format!("{phrase}s"),
+    }
 }
 
 /// Puts a drawing right. Ends at most `join_mm` apart are joined, nearest first; nothing else of the drawing moves.

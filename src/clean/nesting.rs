@@ -22,6 +22,18 @@ pub enum Role {
     Island,
 }
 
+impl Role {
+    /// The role's name in tables and reports.
+    pub fn name(self) -> &'static str {
+        match self {
+            Self::Open => "open",
+            Self::Outer => "outer",
+            Self::Hole => "hole",
+            Self::Island => "island",
+        }
+    }
+}
+
 /// Where a contour stands among the others.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct Nest {
@@ -75,13 +87,13 @@ fn containers(contours: &[Contour], i: usize, ray: &Ray) -> Vec<usize> {
 type Boxed = GeomWithData<Rectangle<[f64; 2]>, (usize, usize)>;
 
 /// All spans of the closed contours, to be met by level rays.
-struct Ray {
+pub(super) struct Ray {
     tree: RTree<Boxed>,
     right: f64,
 }
 
 impl Ray {
-    fn tree(contours: &[Contour]) -> Self {
+    pub(super) fn tree(contours: &[Contour]) -> Self {
         let closed = contours.iter().enumerate().filter(|(_, c)| c.path.closed);
         let spans = closed.flat_map(|(i, c)| {
             c.path.spans().enumerate().map(move |(k, span)| {
@@ -95,7 +107,7 @@ impl Ray {
     }
 
     /// The contours with `p` inside: those whose spans a ray to the right meets an odd number of times.
-    fn holders(&self, contours: &[Contour], p: Point) -> Vec<usize> {
+    pub(super) fn holders(&self, contours: &[Contour], p: Point) -> Vec<usize> {
         let ray = AABB::from_corners([p.x, p.y], [self.right.max(p.x), p.y]);
         let mut odd: BTreeMap<usize, bool> = BTreeMap::new();
         for item in self.tree.locate_in_envelope_intersecting(ray) {

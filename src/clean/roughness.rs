@@ -3,8 +3,10 @@
 use std::f64::consts::FRAC_PI_4;
 
 use kurbo::{Point, Vec2};
+use rayon::prelude::*;
 
 use crate::geom::ArcSpline;
+use crate::sketch::Contour;
 
 /// What the jaggedness of a trace is.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -111,6 +113,13 @@ impl Roughness {
             }
         }
     }
+}
+
+/// The tolerance that all of the contours support: the largest of their own.
+pub fn support(contours: &[Contour]) -> Support {
+    let all = contours.par_iter().map(|c| roughness(&c.path).support());
+    let none = Support { mm: 0.0, reason: "no noise or pixel steps found".into() };
+    all.collect::<Vec<_>>().into_iter().fold(none, |most, own| if own.mm > most.mm { own } else { most })
 }
 
 /// `mm` rounded up to the second decimal; what exceeds that by less than a nanometre does not count.

@@ -7,10 +7,11 @@ use super::common::{Dice, at, open, ring, sketch};
 
 const JOIN: f64 = 0.1;
 
-/// The cleaned paths, and the kind, contour, other contour and size of each flaw.
-fn cleaned(
-    paths: impl IntoIterator<Item = ArcSpline>,
-) -> (Vec<ArcSpline>, Vec<(FlawKind, usize, usize, f64)>) {
+/// Kind, contour, other contour and size of a flaw.
+type Told = (FlawKind, usize, usize, f64);
+
+/// The cleaned paths and what is told.
+fn cleaned(paths: impl IntoIterator<Item = ArcSpline>) -> (Vec<ArcSpline>, Vec<Told>) {
     let cleaned = clean(&sketch(paths), JOIN);
     let flaws =
         cleaned.flaws.iter().map(|f| (f.kind, f.contour, f.other.unwrap_or(0), (f.size * 1e3).round() / 1e3));
