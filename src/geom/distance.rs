@@ -277,7 +277,7 @@ fn tightened(path: &[Point], contour: &[Point], coupling: Coupling, enough: f64)
                 bound.at = at;
                 low = trial;
             }
-            Reach::Unknown => break,
+            Reach::Unknown => high = trial,
         }
         trial = (low * high).sqrt();
     }
