@@ -136,4 +136,6 @@ fn style_sheets_elsewhere_are_told() {
     let read = sketch(&media);
     assert_eq!(read.contours.len(), 1, "the rule behind the block still counts");
     assert!(read.notes.iter().any(|n| n == "style rules inside @media are not applied"), "{:?}", read.notes);
+    let newer = svg(&format!("<style>path:not(.keep) {{display: none}}</style>{ANCHOR}<path d='M0 0H5'/>"));
+    assert_eq!(sketch(&newer).notes, ["style rules with selectors newer than CSS 2 are not applied"]);
 }

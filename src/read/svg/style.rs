@@ -72,6 +72,11 @@ pub(super) fn sheet_texts(document: &roxmltree::Document<'_>) -> (Vec<String>, O
         Some("a style sheet in another file is not read: what it hides or shows is not known".to_owned())
     } else if texts.iter().any(|t| t.contains("@media")) {
         Some("style rules inside @media are not applied".to_owned())
+    } else if texts
+        .iter()
+        .any(|t| [":not(", ":nth", ":is(", ":where(", ":last-", "~"].iter().any(|s| t.contains(s)))
+    {
+        Some("style rules with selectors newer than CSS 2 are not applied".to_owned())
     } else {
         None
     };
