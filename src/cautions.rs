@@ -48,3 +48,10 @@ fn fold(text: &str, width: usize, indent: usize) -> String {
     folded.push('\n');
     folded
 }
+
+/// The cautions that every program carries in its opening comments, in its plain characters.
+pub const SHORT: [&str; 3] = [
+    "hold the work fast, set and check all zeros, cut air first",
+    "eyes, ears and lungs protected, hands clear, one at the stop",
+    "the machine's manual and the shop's rules come first",
+];

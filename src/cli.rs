@@ -2,15 +2,19 @@
 
 mod args;
 mod machines;
+mod post;
+mod progress;
 
 use std::ffi::OsString;
 use std::io::Write;
+use std::path::Path;
 
 use clap::Parser;
 
 use crate::cautions;
-use crate::error::Error;
-use crate::files::cannot_write;
+use crate::error::{Error, Kind};
+use crate::files::{self, cannot_write};
+use crate::job::JobFile;
 use args::{Arguments, Command};
 
 /// Carries out the command line `typed` (its first word is the program's name) and returns the exit status.
@@ -26,7 +30,7 @@ pub fn main(typed: impl IntoIterator<Item = OsString>) -> u8 {
     match carry_out(arguments.command) {
         Ok(()) => 0,
         Err(error) => {
-            tell(&error);
+            tell_error(&error);
             error.exit_status()
         }
     }
@@ -34,6 +38,7 @@ pub fn main(typed: impl IntoIterator<Item = OsString>) -> u8 {
 
 fn carry_out(command: Command) -> Result<(), Error> {
     match command {
+        Command::Post(typed) => post::post(&typed),
         Command::Machines { name, report, overwrite } => {
             machines::machines(name.as_deref(), report.as_deref(), overwrite)
         }
@@ -49,9 +54,26 @@ fn print(text: &str) -> Result<(), Error> {
         .map_err(|why| cannot_write("standard output", &why))
 }
 
+/// `text` to standard error. Where that is closed, the exit status is all that is left to tell with.
+fn tell(text: &str) {
+    let _ = anstream::stderr().write_all(text.as_bytes());
+}
+
 /// `error` to standard error, in colour on a terminal.
-fn tell(error: &Error) {
+fn tell_error(error: &Error) {
     let red = anstyle::AnsiColor::Red.on_default().bold();
-    // Where standard error itself is closed, the exit status is all that is left to tell with.
-    let _ = writeln!(anstream::stderr(), "{red}error{red:#}: {error}");
+    tell(&format!("{red}error{red:#}: {error}\n"));
+}
+
+/// The job file of that name; an empty one where none is named.
+fn job_file(path: Option<&Path>) -> Result<JobFile, Error> {
+    let Some(path) = path else { return Ok(JobFile::default()) };
+    let name = path.display().to_string();
+    let bytes = files::read(path).map_err(|error| Error { kind: Kind::Settings, ..error })?;
+    let text = String::from_utf8(bytes).map_err(|_| {
+        Error::new(Kind::Settings, "the job file is not text in UTF-8")
+            .in_file(&*name)
+            .remedy("save it as UTF-8")
+    })?;
+    JobFile::parse(&name, &text)
 }

@@ -4,6 +4,8 @@ use std::fs;
 use std::io::{self, Write};
 use std::path::{Path, PathBuf};
 
+use tempfile::NamedTempFile;
+
 use crate::error::{Error, Kind};
 
 /// Everything in the file at `path`.
@@ -81,25 +83,60 @@ impl Target {
         Ok(())
     }
 
-    /// Writes `bytes` whole or not at all: to a temporary file in the same folder, flushed to the disk, then renamed.
+    /// Makes `bytes` ready to appear at the target, whole: in a temporary file in the same folder, flushed to the disk.
+    ///
+    /// # Errors
+    /// [`Kind::Output`] when there is no room, or writing there is not allowed.
+    pub fn stage(&self, bytes: &[u8]) -> Result<Staged, Error> {
+        match self {
+            Self::Stdout => Ok(Staged::Stdout(bytes.to_owned())),
+            Self::File(path) => {
+                let temporary = stage_file(path, bytes).map_err(|why| cannot_write(&self.name(), &why))?;
+                Ok(Staged::File(temporary, path.clone()))
+            }
+        }
+    }
+
+    /// Writes `bytes` whole or not at all.
     ///
     /// # Errors
     /// [`Kind::Output`] when it cannot be written; what stood there before then stands there still.
     pub fn write(&self, bytes: &[u8], overwrite: bool) -> Result<(), Error> {
+        self.stage(bytes)?.appear(overwrite)
+    }
+}
+
+/// An output that is ready to appear; dropped, it leaves nothing behind.
+#[derive(Debug)]
+pub enum Staged {
+    /// For standard output.
+    Stdout(Vec<u8>),
+    /// A temporary file beside the place it is meant for.
+    File(NamedTempFile, PathBuf),
+}
+
+impl Staged {
+    /// Lets the output appear in its place, in one step.
+    ///
+    /// # Errors
+    /// [`Kind::Output`] when the place is taken and may not be replaced, or writing fails.
+    pub fn appear(self, overwrite: bool) -> Result<(), Error> {
         match self {
-            Self::Stdout => {
+            Self::Stdout(bytes) => {
                 let mut out = io::stdout().lock();
-                out.write_all(bytes)
-                    .and_then(|()| out.flush())
-                    .map_err(|why| cannot_write("standard output", &why))
+                let written = out.write_all(&bytes).and_then(|()| out.flush());
+                written.map_err(|why| cannot_write("standard output", &why))
             }
-            Self::File(path) => write_file(path, bytes, overwrite)
-                .map_err(|why| cannot_write(&path.display().to_string(), &why)),
+            Self::File(temporary, path) => {
+                let kept =
+                    if overwrite { temporary.persist(&path) } else { temporary.persist_noclobber(&path) };
+                kept.map(drop).map_err(|why| cannot_write(&path.display().to_string(), &why.error))
+            }
         }
     }
 }
 
-fn write_file(path: &Path, bytes: &[u8], overwrite: bool) -> io::Result<()> {
+fn stage_file(path: &Path, bytes: &[u8]) -> io::Result<NamedTempFile> {
     let mut temporary = tempfile::Builder::new();
     temporary.prefix(".ribband-").suffix(".part");
     #[cfg(unix)]
@@ -107,8 +144,7 @@ fn write_file(path: &Path, bytes: &[u8], overwrite: bool) -> io::Result<()> {
     let mut temporary = temporary.tempfile_in(folder(path))?;
     temporary.write_all(bytes)?;
     temporary.as_file().sync_all()?;
-    if overwrite { temporary.persist(path) } else { temporary.persist_noclobber(path) }?;
-    Ok(())
+    Ok(temporary)
 }
 
 /// The error for an output that could not be written.

@@ -15,7 +15,7 @@ use crate::num::{Length, LengthUnit, Tolerance};
 
 pub use cutting::Cutting;
 pub use file::{JobFile, LayerSettings};
-pub use settings::{DrawingUnit, Origin, Outputs, Settings, Zero};
+pub use settings::{DrawingUnit, Entry, Held, Origin, Outputs, Settings, Zero};
 
 /// A job whose settings are whole and inside their bounds. Lengths in mm, feeds in mm/min.
 #[derive(Clone, Debug)]
@@ -59,8 +59,6 @@ pub struct DrawingSettings {
     pub layers: Option<Vec<String>>,
 }
 
-/// The tolerance where none is asked for and the trace supports it, in mm.
-pub const DEFAULT_TOLERANCE_MM: f64 = 0.1;
 /// How far above the stock the cutter travels where nothing else is asked for, in mm.
 const DEFAULT_CLEARANCE_MM: f64 = 5.0;
 /// How many units of the last decimal a tolerance must span at least: fitting loses 1.5 of them to the rounding of the

@@ -27,4 +27,5 @@ pub mod report;
 pub mod route;
 pub mod run;
 pub mod sketch;
+pub mod summary;
 pub mod toolpath;

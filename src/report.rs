@@ -159,8 +159,9 @@ pub struct AsDrawn {
 pub struct Check {
     /// True when no claim fails.
     pub holds: bool,
-    /// The certified deviation between what the text cuts and the drawing, the worst of all contours and passes.
-    pub deviation_mm: f64,
+    /// The certified deviation between what the text cuts and the drawing, the worst of all contours and passes;
+    /// none where nothing that is cut could be matched to the drawing.
+    pub deviation_mm: Option<f64>,
     /// The claims, one by one.
     pub claims: Vec<Claim>,
     /// What no program can check.
@@ -174,12 +175,16 @@ pub struct Claim {
     pub name: String,
     /// How it turned out.
     pub state: State,
-    /// What was found.
-    pub value: Option<String>,
-    /// What is allowed.
-    pub limit: Option<String>,
-    /// Where it was found.
+    /// The worst that was found, in `unit`.
+    pub value: Option<f64>,
+    /// What is allowed, in `unit`.
+    pub limit: Option<f64>,
+    /// The unit of both; empty for a count.
+    pub unit: String,
+    /// Where in the program the worst was found.
     pub at: Option<String>,
+    /// Why it fails or was not checked; may be empty.
+    pub note: String,
 }
 
 /// How a claim turned out.

@@ -1,1 +1,184 @@
-//! run: not built yet.
+//! The main job from end to end, to be read from top to bottom: drawing in, checked program out.
+
+mod checking;
+mod clock;
+mod cutting;
+mod header;
+mod placing;
+mod prepare;
+mod progress;
+mod reporting;
+
+use std::collections::BTreeMap;
+
+use kurbo::{Rect, Vec2};
+use rayon::prelude::*;
+use sha2::{Digest, Sha256};
+
+use crate::check::Verdict;
+use crate::clean::{Cleaned, Roughness};
+use crate::error::Error;
+use crate::feed::{self, Limits, Times};
+use crate::fit::{self, Fitted};
+use crate::gcode::{self, Dialect, Program};
+use crate::job::Job;
+use crate::machine::Machine;
+use crate::num::Tolerance;
+use crate::report::Report;
+use crate::route::{self, Routed, Routing};
+use crate::sketch::{Contour, Sketch};
+use checking::Intended;
+use clock::Clock;
+use prepare::prepare;
+
+pub use progress::{Progress, Unwatched};
+
+/// A drawing as it came.
+#[derive(Clone, Copy, Debug)]
+pub struct Source<'a> {
+    /// The file's name as typed, for messages and comments.
+    pub name: &'a str,
+    /// Everything in it.
+    pub bytes: &'a [u8],
+}
+
+/// A planned job: everything between the drawing and its checked program.
+#[derive(Clone, Debug)]
+pub struct Plan {
+    /// The drawing as read, without the layers that the job leaves out.
+    pub sketch: Sketch,
+    /// The drawing put right.
+    pub cleaned: Cleaned,
+    /// The jaggedness of each contour.
+    pub roughness: Vec<Roughness>,
+    /// The box around the finished parts, in the drawing's coordinates.
+    pub part: Rect,
+    /// The tolerance worked to.
+    pub tolerance: Tolerance,
+    /// The path of each contour, in the drawing's coordinates.
+    pub fitted: Vec<Fitted>,
+    /// The step from the drawing's coordinates to the program's.
+    pub shift: Vec2,
+    /// Each path in the program's coordinates, with how it is cut.
+    pub routed: Vec<Routed>,
+    /// The moves as meant.
+    pub routing: Routing,
+    /// The program's text.
+    pub text: String,
+    /// What that text says, read back.
+    pub program: Program,
+    /// What it was checked for.
+    pub verdict: Verdict,
+    /// Its planned times.
+    pub times: Times,
+    /// The same job with the drawing cut as it is.
+    pub as_drawn: AsDrawn,
+    /// SHA-256 of the drawing's bytes, in hexadecimal.
+    pub sha256: String,
+    /// What the person at the machine should know.
+    pub warnings: Vec<String>,
+    /// How long each stage took, in milliseconds.
+    pub timings_ms: BTreeMap<String, f64>,
+}
+
+/// The same job with every span of the drawing as a block of its own.
+#[derive(Clone, Debug)]
+pub struct AsDrawn {
+    /// Blocks that move an axis.
+    pub motion_blocks: usize,
+    /// Its planned times.
+    pub times: Times,
+}
+
+/// Plans, writes, reads back and checks the program for a drawing.
+///
+/// The same job and drawing give the same text on any number of cores.
+///
+/// # Errors
+/// Those of reading the drawing; [`Kind::Refused`](crate::error::Kind::Refused) when the job cannot be met, or the program fails its check.
+pub fn plan(job: &Job, source: Source, progress: &dyn Progress) -> Result<Plan, Error> {
+    plan_unplaced(job, source, progress)
+        .map_err(|error| if error.file.is_empty() { error.in_file(source.name) } else { error })
+}
+
+fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<Plan, Error> {
+    let mut clock = Clock::default();
+    let prepared = prepare(job, source, &mut clock)?;
+    let contours = &prepared.cleaned.contours;
+    let fitting = prepare::left_for_fitting(job, &prepared)?;
+    let fitted = clock.time("fit", || fit(contours, fitting, progress));
+
+    let shift = placing::shift(job.origin, prepared.part);
+    let setup = cutting::setup(job, prepared.part, shift);
+    let routed = cutting::routed(job, contours, fitted.iter().map(|fitted| &fitted.path), shift);
+    let routing = clock.time("route", || route::route(&routed, &setup))?;
+
+    let sha256 = digest(source.bytes);
+    let header = header::header(job, source.name, prepared.tolerance, &setup, &sha256);
+    let text = clock.time("write", || gcode::write(&routing.toolpath, &header, &job.machine))?;
+    let program = clock.time("read back", || read_back(&text, &job.machine))?;
+    let verdict = clock.time("check", || {
+        checking::check(job, &program, &prepared, &Intended { routed: &routed, setup: &setup, shift })
+    });
+    checking::hold(&verdict)?;
+
+    let limits = Limits::of(&job.machine);
+    let times = clock.time("time", || feed::time(&program.toolpath, &limits));
+    let as_drawn = clock.time("as drawn", || {
+        let paths = contours.iter().map(|contour| &contour.path);
+        let toolpath = route::route(&cutting::routed(job, contours, paths, shift), &setup)?.toolpath;
+        let as_drawn = gcode::write(&toolpath, &header, &job.machine)?;
+        // Both texts have the same lines but for their motion.
+        let still = text.lines().count() - program.motion_blocks;
+        let motion_blocks = as_drawn.lines().count() - still;
+        Ok(AsDrawn { motion_blocks, times: feed::time(&toolpath, &limits) })
+    })?;
+    let roughness = clock.time("measure", || prepare::roughness(contours));
+    let mut warnings = prepared.warnings;
+    warnings.extend(routing.notes.iter().cloned());
+    Ok(Plan {
+        sketch: prepared.sketch,
+        cleaned: prepared.cleaned,
+        part: prepared.part,
+        tolerance: prepared.tolerance,
+        roughness,
+        fitted,
+        shift,
+        routed,
+        routing,
+        text,
+        program,
+        verdict,
+        times,
+        as_drawn,
+        sha256,
+        warnings,
+        timings_ms: clock.times(),
+    })
+}
+
+/// The report of a plan; `drawing` and `program` are the files' names as typed.
+pub fn report(job: &Job, plan: &Plan, drawing: &str, program: &str) -> Report {
+    reporting::report(job, plan, drawing, program)
+}
+
+/// Every contour replaced by its path, in the contours' order however many cores work on them.
+fn fit(contours: &[Contour], tolerance: Tolerance, progress: &dyn Progress) -> Vec<Fitted> {
+    progress.begin(contours.iter().map(|contour| contour.path.vertices.len()).sum());
+    let fit = |contour: &Contour| {
+        let fitted = fit::fit(&contour.path, tolerance);
+        progress.done(contour.path.vertices.len());
+        fitted
+    };
+    contours.par_iter().map(fit).collect()
+}
+
+/// SHA-256 in hexadecimal (FIPS 180-4).
+fn digest(bytes: &[u8]) -> String {
+    Sha256::digest(bytes).iter().map(|byte| format!("{byte:02x}")).collect()
+}
+
+/// What the text says on the machine's controller.
+fn read_back(text: &str, machine: &Machine) -> Result<Program, Error> {
+    gcode::interpret(&gcode::read(text)?, &Dialect::of(machine))
+}

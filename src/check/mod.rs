@@ -12,6 +12,8 @@ mod shape;
 mod side;
 mod start_end;
 
+use std::collections::BTreeMap;
+
 use kurbo::{Affine, Point, Rect, Vec2};
 
 use crate::gcode::read::Program;
@@ -38,6 +40,8 @@ pub struct Asked {
     pub clearance: Option<f64>,
     /// The height that every contour is cut down to; `None` where it was not said.
     pub lowest: Option<f64>,
+    /// The height that single contours are cut down to instead, by their ids; on the line only.
+    pub lowest_of_contour: BTreeMap<usize, f64>,
     /// The deepest that one pass may take; `None` where it was not said.
     pub pass: Option<f64>,
     /// The largest feed in mm/min along a contour and straight down; `None` for what the machine can do.
@@ -95,6 +99,16 @@ pub struct KeepOut {
 }
 
 impl Asked {
+    /// The height that a contour is cut down to; `None` where it was not said.
+    fn lowest_of(&self, contour: usize) -> Option<f64> {
+        self.lowest_of_contour.get(&contour).copied().or(self.lowest)
+    }
+
+    /// The height below which nothing may go; `None` where it was not said.
+    fn lowest_of_all(&self) -> Option<f64> {
+        self.lowest.map(|lowest| self.lowest_of_contour.values().copied().fold(lowest, f64::min))
+    }
+
     /// A cut on the line within `tolerance`, zero on the stock's top, nothing else said.
     pub fn new(tolerance: Tolerance) -> Self {
         Self {
@@ -104,6 +118,7 @@ impl Asked {
             stock_top: 0.0,
             clearance: None,
             lowest: None,
+            lowest_of_contour: BTreeMap::new(),
             pass: None,
             feeds: None,
             cutter: 0.0,
@@ -138,7 +153,7 @@ pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Aske
     let at = asked.drawing_at.unwrap_or_else(|| place::find(&cuts, sketch));
     let placed = Placed::new(sketch, at);
     let (shape, uncut) = match asked.side {
-        Side::On => (shape::judge(&cuts, placed.all(), true, machine, asked).0, Vec::new()),
+        Side::On => (shape::judge(&cuts, placed.contours, true, machine, asked).0, Vec::new()),
         side => side::judge(&cuts, &placed, side, machine, asked),
     };
     let mut claims = shape.claims;
@@ -168,10 +183,6 @@ impl Placed {
     fn new(sketch: &Sketch, at: Vec2) -> Self {
         let place = Affine::translate(at);
         Self { contours: sketch.contours.iter().map(|c| (c.id, c.path.transformed(place))).collect() }
-    }
-
-    fn all(self) -> Vec<ArcSpline> {
-        self.contours.into_iter().map(|(_, path)| path).collect()
     }
 }
 

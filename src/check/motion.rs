@@ -133,7 +133,7 @@ impl<'a> Walk<'a> {
         let mut claims = vec![self.travel_claim(machine), self.feed_claim(), self.spindle_claim(machine)];
         let rapids = Claim::at_least(RAPIDS, "mm", self.rapid, self.clearance, self.slack);
         claims.push(rapids.because("a rapid may run into the stock or what holds it"));
-        claims.push(match asked.lowest {
+        claims.push(match asked.lowest_of_all() {
             Some(lowest) => Claim::at_least(LOWEST, "mm", self.lowest, lowest, self.slack)
                 .because("the cutter goes below the height asked"),
             None => {

@@ -26,17 +26,19 @@ pub(super) struct Shape {
 struct Target {
     path: ArcSpline,
     bbox: Rect,
+    /// The height that it is to be cut down to; `None` where it was not said.
+    lowest: Option<f64>,
     /// The heights of the passes that follow it within tolerance, in the order of the program.
     floors: Vec<f64>,
     /// The nearest that any pass comes to it in order, with a spot of that pass.
     best: Option<(Deviation, Spot)>,
 }
 
-/// Compares the cuts with `contours`, which are in the program's coordinates. With `alone`, all cuts must be theirs;
+/// Compares the cuts with `contours`, by their ids, which are in the program's coordinates. With `alone`, all cuts must be theirs;
 /// else those that follow none are handed back.
 pub(super) fn judge<'a, 'b>(
     cuts: &'b Cuts<'a>,
-    contours: Vec<ArcSpline>,
+    contours: Vec<(usize, ArcSpline)>,
     alone: bool,
     machine: &Machine,
     asked: &Asked,
@@ -70,10 +72,11 @@ struct Comparison {
 }
 
 impl Comparison {
-    fn new(contours: Vec<ArcSpline>, asked: &Asked) -> Self {
-        let target = |path: ArcSpline| {
+    fn new(contours: Vec<(usize, ArcSpline)>, asked: &Asked) -> Self {
+        let target = |(id, path): (usize, ArcSpline)| {
             let bbox = path.bbox()?;
-            Some(Target { path, bbox, floors: Vec::new(), best: None })
+            let lowest = asked.lowest_of(id);
+            Some(Target { path, bbox, lowest, floors: Vec::new(), best: None })
         };
         let targets: Vec<Target> = contours.into_iter().filter_map(target).collect();
         let mut by_left: Vec<usize> = (0..targets.len()).collect();
@@ -206,17 +209,24 @@ impl Comparison {
 
     /// The highest floor among the deepest passes of the contours: each must reach the height asked, none go below.
     fn depth_claim(&self, machine: &Machine, asked: &Asked) -> Claim {
-        let Some(lowest) = asked.lowest else { return Claim::open(DEPTH, "no depth was asked for") };
+        if asked.lowest.is_none() {
+            return Claim::open(DEPTH, "no depth was asked for");
+        }
         let mut short = Worst::none();
+        let mut limit = asked.lowest;
         for target in &self.targets {
+            let Some(lowest) = target.lowest else { continue };
             let floor = target.floors.iter().copied().fold(f64::INFINITY, f64::min);
             if let Some((_, spot)) = target.best.filter(|_| floor.is_finite()) {
-                short.note((floor - lowest).abs(), || spot);
+                short.note((floor - lowest).abs(), || {
+                    limit = Some(lowest);
+                    spot
+                });
             }
         }
         let mut claim = Claim::at_most(DEPTH, "mm", short, 0.0, machine.last_place());
-        claim.value = claim.value.map(|off| lowest + off);
-        claim.limit = Some(lowest);
+        claim.value = claim.value.zip(limit).map(|(off, lowest)| lowest + off);
+        claim.limit = limit;
         claim.because("the deepest pass of a contour is not at the height asked")
     }
 

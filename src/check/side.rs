@@ -42,7 +42,6 @@ pub(super) fn judge(
         return (Shape { deviation: None, claims }, Vec::new());
     }
     let (closed, open): (Vec<_>, Vec<_>) = placed.contours.iter().cloned().partition(|(_, c)| c.closed);
-    let open: Vec<ArcSpline> = open.into_iter().map(|(_, path)| path).collect();
     let (shape, beside) = match open.is_empty() {
         true => (None, cuts.passes.iter().collect()),
         false => {

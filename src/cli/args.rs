@@ -2,7 +2,9 @@
 
 use std::path::PathBuf;
 
-use clap::{Parser, Subcommand};
+use clap::{Args, Parser, Subcommand};
+
+use crate::job::{Outputs, Settings};
 
 /// Traced outlines to smooth router programs.
 #[derive(Parser, Debug)]
@@ -23,6 +25,8 @@ const EXIT_STATUSES: &str = "Exit status:
 /// The commands.
 #[derive(Subcommand, Debug)]
 pub(super) enum Command {
+    /// Write the router program for a drawing
+    Post(Post),
     /// List the machine profiles, or check and explain one of them
     Machines {
         /// A built-in profile, or a TOML file
@@ -38,3 +42,26 @@ pub(super) enum Command {
     /// Print the safety cautions
     Cautions,
 }
+
+/// `ribband post` as typed.
+#[derive(Args, Debug)]
+#[command(after_help = POST_EXAMPLES)]
+pub(super) struct Post {
+    /// The drawing: SVG, DXF or a list of points
+    pub(super) drawing: PathBuf,
+    #[command(flatten)]
+    pub(super) settings: Settings,
+    #[command(flatten)]
+    pub(super) outputs: Outputs,
+    /// Take settings from this file; what is typed wins
+    #[arg(long, value_name = "FILE", help_heading = "Files")]
+    pub(super) job: Option<PathBuf>,
+    /// Print errors only
+    #[arg(long, help_heading = "Files")]
+    pub(super) quiet: bool,
+}
+
+const POST_EXAMPLES: &str = "Examples:
+  ribband post sign.dxf --depth 3mm
+  ribband post blade.svg --depth 6 --tolerance 0.05mm --cutter 3.175mm --feed 1200mm/min -o blade.nc
+  ribband post template.csv --drawing-unit mm --depth 1/4in --machine inch-gantry --report template.json";

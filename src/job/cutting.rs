@@ -1,7 +1,7 @@
 //! How a contour is cut: depth, passes, feeds and speed, from what was asked, the profile, and the built-in defaults.
 
 use super::bounds::{self, at_most};
-use super::{LayerSettings, Settings, Units};
+use super::{Entry, Held, LayerSettings, Settings, Units};
 use crate::error::{Error, Kind};
 use crate::machine::{Cutter, Machine};
 
@@ -18,6 +18,10 @@ pub struct Cutting {
     pub plunge: f64,
     /// Spindle speed, in rev/min.
     pub spindle_rpm: f64,
+    /// How the cutter goes down.
+    pub entry: Entry,
+    /// How a part is held that the cut frees.
+    pub held: Option<Held>,
 }
 
 /// The feed for a cutter of which only the diameter is known, in mm/min: a cautious one for wood.
@@ -49,7 +53,8 @@ impl Maker<'_> {
         let spindle_rpm = self.spindle(all)?;
         let feed = self.feed(all, spindle_rpm)?;
         let plunge = self.plunge(all, feed)?;
-        Ok(Cutting { depth_mm, pass_mm, feed, plunge, spindle_rpm })
+        let entry = all.entry.unwrap_or_default();
+        Ok(Cutting { depth_mm, pass_mm, feed, plunge, spindle_rpm, entry, held: all.held })
     }
 
     fn depth(&self, all: &Settings) -> Result<f64, Error> {
@@ -104,6 +109,8 @@ impl LayerSettings {
             pass: self.pass,
             feed: self.feed,
             plunge: self.plunge,
+            entry: self.entry,
+            held: self.held,
             ..Settings::default()
         }
     }

@@ -5,7 +5,7 @@ use std::collections::BTreeMap;
 use clap::Args;
 use serde::{Deserialize, Serialize};
 
-use super::settings::Settings;
+use super::settings::{Entry, Held, Settings};
 use crate::error::{Error, Kind};
 use crate::num::{Feed, Length};
 
@@ -37,6 +37,12 @@ pub struct LayerSettings {
     /// Feed straight down.
     #[arg(long)]
     pub plunge: Option<Feed>,
+    /// How the cutter goes down.
+    #[arg(long)]
+    pub entry: Option<Entry>,
+    /// How a part is held that the cut frees.
+    #[arg(long)]
+    pub held: Option<Held>,
 }
 
 impl JobFile {

@@ -55,6 +55,13 @@ pub struct Settings {
     #[arg(long, value_name = "DIAMETER or NAME", help_heading = "Cut")]
     pub cutter: Option<String>,
 
+    /// How the cutter goes down [default: ramp]
+    #[arg(long, value_enum, help_heading = "Cut")]
+    pub entry: Option<Entry>,
+    /// How a part is held that the cut frees
+    #[arg(long, value_enum, help_heading = "Cut")]
+    pub held: Option<Held>,
+
     /// Where Z is zero [default: stock-top]
     #[arg(long, value_enum, help_heading = "Setting up")]
     pub zero: Option<Zero>,
@@ -81,6 +88,31 @@ pub enum DrawingUnit {
     Px,
 }
 
+/// How the cutter goes down.
+#[derive(Clone, Copy, Debug, Default, Deserialize, Serialize, PartialEq, Eq, ValueEnum)]
+#[serde(rename_all = "kebab-case")]
+pub enum Entry {
+    /// Along the contour
+    #[default]
+    Ramp,
+    /// Straight down
+    Plunge,
+    /// Round and round, where there is room beside the part
+    Helix,
+}
+
+/// How a part is held that the cut frees.
+#[derive(Clone, Copy, Debug, Deserialize, Serialize, PartialEq, Eq, ValueEnum)]
+#[serde(rename_all = "kebab-case")]
+pub enum Held {
+    /// By vacuum
+    Vacuum,
+    /// By screws
+    Screws,
+    /// By tape
+    Tape,
+}
+
 /// Where Z is zero.
 #[derive(Clone, Copy, Debug, Default, Deserialize, Serialize, JsonSchema, PartialEq, Eq, ValueEnum)]
 #[serde(rename_all = "kebab-case")]
@@ -103,6 +135,27 @@ pub enum Origin {
     Centre,
     /// Where the drawing has it
     Drawing,
+}
+
+impl Zero {
+    /// The place in words.
+    pub fn words(self) -> &'static str {
+        match self {
+            Self::StockTop => "the top of the stock",
+            Self::Bed => "the bed under the stock",
+        }
+    }
+}
+
+impl Origin {
+    /// The place in words.
+    pub fn words(self) -> &'static str {
+        match self {
+            Self::LowerLeft => "the lower left corner of the finished parts",
+            Self::Centre => "the middle of the finished parts",
+            Self::Drawing => "the drawing's own zero",
+        }
+    }
 }
 
 /// Where outputs go, and what may be replaced.
@@ -138,6 +191,8 @@ impl Settings {
             plunge: self.plunge.or(other.plunge),
             spindle: self.spindle.or(other.spindle),
             cutter: self.cutter.or(other.cutter),
+            entry: self.entry.or(other.entry),
+            held: self.held.or(other.held),
             zero: self.zero.or(other.zero),
             thickness: self.thickness.or(other.thickness),
             clearance: self.clearance.or(other.clearance),

@@ -9,6 +9,9 @@ use kurbo::Point;
 pub struct Tolerance(f64);
 
 impl Tolerance {
+    /// The tolerance where none is asked for: a tenth of a millimetre.
+    pub const DEFAULT: Self = Self(0.1);
+
     /// A tolerance of `mm`; `None` unless it is finite and above zero.
     pub fn new(mm: f64) -> Option<Self> {
         (mm.is_finite() && mm > 0.0).then_some(Self(mm))

@@ -1,7 +1,11 @@
 //! The command line from outside: statuses, messages, files.
 
+mod bad;
 mod demo;
 mod formats;
 mod lengths;
+//mod outlines;
 mod outputs;
+mod posting;
+mod reading;
 mod words;

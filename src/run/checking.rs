@@ -1,0 +1,75 @@
+//! The written text held against the drawing, the machine, and what was asked for.
+
+use kurbo::Vec2;
+
+use super::prepare::Prepared;
+use crate::check::{self, Asked, Claim, Feeds, State, Verdict};
+use crate::error::{Error, Kind};
+use crate::gcode::Program;
+use crate::job::Job;
+use crate::route::{Cut, Routed, Setup};
+use crate::sketch::Contour;
+
+/// What the program says, judged against the drawing as it was read.
+pub(super) fn check(job: &Job, program: &Program, prepared: &Prepared, plan: &Intended) -> Verdict {
+    check::check(program, &prepared.sketch, &job.machine, &asked(job, prepared, plan))
+}
+
+/// What the program was meant to do, as far as the check may know it.
+pub(super) struct Intended<'a> {
+    pub(super) routed: &'a [Routed],
+    pub(super) setup: &'a Setup,
+    pub(super) shift: Vec2,
+}
+
+fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
+    let most =
+        |figure: fn(&Cut) -> f64| plan.routed.iter().map(|routed| figure(&routed.cut)).fold(0.0, f64::max);
+    let heights = plan.setup.heights();
+    let of_contour = |contour: &Contour| {
+        let cutting = job.cutting_of(&contour.layer).filter(|_| job.layers.contains_key(&contour.layer))?;
+        Some((contour.id, heights.top - cutting.depth_mm))
+    };
+    Asked {
+        drawing_at: Some(plan.shift),
+        stock_top: heights.top,
+        clearance: Some(heights.clearance),
+        lowest: Some(heights.top - job.cutting.depth_mm),
+        lowest_of_contour: prepared.sketch.contours.iter().filter_map(of_contour).collect(),
+        pass: Some(most(|cut| cut.pass_mm)),
+        feeds: Some(Feeds { cutting: most(|cut| cut.feed), plunge: most(|cut| cut.plunge) }),
+        cutter: job.cutter_mm,
+        ..Asked::new(prepared.tolerance)
+    }
+}
+
+/// Refuses a program for which a claim fails.
+pub(super) fn hold(verdict: &Verdict) -> Result<(), Error> {
+    if verdict.holds {
+        return Ok(());
+    }
+    let failed: Vec<String> =
+        verdict.claims.iter().filter(|claim| claim.state == State::Fails).map(in_words).collect();
+    let what = format!(
+        "the program fails its check against the drawing, so it was not written: {}",
+        failed.join("; ")
+    );
+    let remedy =
+        "look at the drawing there, or change tolerance, depth or feeds; please report it if neither helps";
+    Err(Error::new(Kind::Refused, what).remedy(remedy))
+}
+
+/// A failed claim in one line.
+fn in_words(claim: &Claim) -> String {
+    let mut words = format!("it does not hold that {}", claim.name);
+    if let (Some(value), Some(limit)) = (claim.value, claim.limit) {
+        words += &format!(" ({value:.4} against {limit:.4} {})", claim.unit);
+    }
+    if let Some(at) = claim.at {
+        words += &format!(" at {at}");
+    }
+    if !claim.note.is_empty() {
+        words += &format!(": {}", claim.note);
+    }
+    words
+}

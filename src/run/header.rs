@@ -1,0 +1,44 @@
+//! What the program says of itself before it moves.
+
+use std::path::Path;
+
+use crate::cautions;
+use crate::gcode::Header;
+use crate::job::Job;
+use crate::num::Tolerance;
+use crate::route::Setup;
+
+/// The header of the program for the drawing called `name`, whose bytes have that digest. It holds no time, so that
+/// the same job gives the same text.
+pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup, sha256: &str) -> Header {
+    let file = Path::new(name).file_name().map_or_else(|| name.into(), |file| file.to_string_lossy());
+    let cutting = &job.cutting;
+    let mut notes = vec![
+        "on the line: the part comes out smaller by the radius of the cutter".to_owned(),
+        format!(
+            "tolerance {} mm, depth {} mm, pass {} mm at most",
+            tolerance.mm(),
+            cutting.depth_mm,
+            cutting.pass_mm
+        ),
+        format!("made by ribband {} from {file}", env!("CARGO_PKG_VERSION")),
+        format!("drawing sha256 {sha256}"),
+    ];
+    notes.extend(cautions::SHORT.map(str::to_owned));
+    Header {
+        title: file.into_owned(),
+        xy_zero: job.origin.words().into(),
+        z_zero: job.zero.words().into(),
+        cutter: cutter(job),
+        clearance: setup.heights().clearance,
+        chord_error: tolerance.mm() / 4.0,
+        notes,
+        marks: Vec::new(),
+    }
+}
+
+/// The cutter in words.
+pub(super) fn cutter(job: &Job) -> String {
+    let diameter = job.cutter_mm / job.machine.unit.mm();
+    format!("{diameter} {}", job.machine.unit.symbol())
+}

@@ -1,0 +1,155 @@
+//! From the drawing's bytes to contours that can be cut: read, measured, put right, held against the machine.
+
+use kurbo::Rect;
+use rayon::prelude::*;
+
+use super::Source;
+use super::clock::Clock;
+use crate::clean::{self, Cleaned, Roughness};
+use crate::error::{Error, Kind};
+use crate::job::{DrawingSettings, DrawingUnit, Job};
+use crate::machine::Machine;
+use crate::num::Tolerance;
+use crate::read::{self, Scale, Unit};
+use crate::sketch::{Contour, Sketch};
+
+/// A drawing ready to be fitted.
+pub(super) struct Prepared {
+    /// As read, without the layers that the job leaves out.
+    pub(super) sketch: Sketch,
+    /// Put right.
+    pub(super) cleaned: Cleaned,
+    /// The tolerance to work to.
+    pub(super) tolerance: Tolerance,
+    /// The box around the finished parts, in the drawing's coordinates.
+    pub(super) part: Rect,
+    /// What the person at the machine should know.
+    pub(super) warnings: Vec<String>,
+}
+
+/// Reads the drawing, settles the tolerance, puts the contours right.
+pub(super) fn prepare(job: &Job, source: Source, clock: &mut Clock) -> Result<Prepared, Error> {
+    let sketch = clock.time("read", || read_wanted(job, source))?;
+    let (tolerance, told) = clock.time("measure", || tolerance(job, &sketch));
+    let join_mm = job.join_mm.unwrap_or(tolerance.mm());
+    let cleaned = clock.time("clean", || clean::clean(&sketch, join_mm));
+    let bbox = cleaned.contours.iter().filter_map(|c| c.path.bbox()).reduce(|a, b| a.union(b));
+    let part = bbox.ok_or_else(nothing_to_cut)?;
+    fits_machine(part, &job.machine)?;
+    let mut warnings: Vec<String> = told.into_iter().collect();
+    warnings.extend(cleaning(&cleaned));
+    warnings.extend(sketch.notes.iter().cloned());
+    Ok(Prepared { sketch, cleaned, tolerance, part, warnings })
+}
+
+/// What the settings say of a drawing's scale, in the reader's words.
+pub(super) fn scale(settings: &DrawingSettings) -> Scale {
+    let unit = |unit| match unit {
+        DrawingUnit::Mm => Unit::Mm,
+        DrawingUnit::In => Unit::Inch,
+        DrawingUnit::Px => Unit::Px,
+    };
+    Scale {
+        drawing_unit: settings.unit.map(unit),
+        scale: settings.scale.unwrap_or(1.0),
+        fit_width_mm: settings.fit_width_mm,
+        layers: settings.layers.clone(),
+    }
+}
+
+/// The jaggedness of each contour.
+pub(super) fn roughness(contours: &[Contour]) -> Vec<Roughness> {
+    contours.par_iter().map(|contour| clean::roughness(&contour.path)).collect()
+}
+
+/// What is left of the tolerance for fitting: rounding the program's numbers takes 1.5 units of their last place, and
+/// sampling the drawing's free curves what the reader says.
+pub(super) fn left_for_fitting(job: &Job, prepared: &Prepared) -> Result<Tolerance, Error> {
+    let spent = 1.5 * job.machine.last_place() + prepared.sketch.sampling_mm;
+    prepared.tolerance.less(spent).ok_or_else(|| {
+        let what = format!("rounding and the drawing's free curves take {spent:.4} mm, the whole tolerance");
+        Error::new(Kind::Refused, what).remedy("ask for a wider --tolerance")
+    })
+}
+
+/// The drawing, without the layers that the job leaves out.
+fn read_wanted(job: &Job, source: Source) -> Result<Sketch, Error> {
+    let mut sketch = read::read(source.name, source.bytes, &scale(&job.drawing))?;
+    let before = sketch.contours.len();
+    sketch.contours.retain(|contour| job.cutting_of(&contour.layer).is_some());
+    if sketch.contours.is_empty() && before > 0 {
+        return Err(nothing_to_cut());
+    }
+    let drawn = |layer: &&String| !sketch.contours.iter().any(|contour| contour.layer == **layer);
+    let missing: Vec<_> =
+        job.layers.iter().filter(|(_, cutting)| cutting.is_some()).map(|(layer, _)| layer).collect();
+    let notes = missing
+        .into_iter()
+        .filter(drawn)
+        .map(|layer| format!("the job file has a layer \"{layer}\", the drawing has none"));
+    sketch.notes.extend(notes.collect::<Vec<_>>());
+    Ok(sketch)
+}
+
+/// The tolerance asked for; else the default, or what the traces support where that is more, which is then told.
+fn tolerance(job: &Job, sketch: &Sketch) -> (Tolerance, Option<String>) {
+    let rough = roughness(&sketch.contours);
+    let supports = rough.iter().map(Roughness::support);
+    let worst = supports.max_by(|a, b| a.mm.total_cmp(&b.mm)).filter(|support| support.mm > 0.0);
+    let default = Tolerance::DEFAULT;
+    match (job.tolerance, worst) {
+        (Some(asked), Some(support)) if support.mm > asked.mm() => {
+            let told = format!(
+                "the trace supports a tolerance of {} mm, not {}: {}",
+                support.mm,
+                asked.mm(),
+                support.reason
+            );
+            (asked, Some(told))
+        }
+        (None, Some(support)) if support.mm > default.mm() => {
+            let told = format!("tolerance {} mm, as the trace supports: {}", support.mm, support.reason);
+            (Tolerance::new(support.mm).unwrap_or(default), Some(told))
+        }
+        (asked, _) => (asked.unwrap_or(default), None),
+    }
+}
+
+/// What cleaning did, for the person who drew it.
+fn cleaning(cleaned: &Cleaned) -> Vec<String> {
+    let counts = &cleaned.counts;
+    let told = [
+        (counts.repeated_points, "repeated points dropped"),
+        (counts.without_length, "contours without length dropped"),
+        (counts.gaps_closed, "gaps closed"),
+        (counts.duplicates, "lines drawn twice removed"),
+    ];
+    let mut told: Vec<String> =
+        told.iter().filter(|(count, _)| *count > 0).map(|(count, what)| format!("{count} {what}")).collect();
+    let flawed = cleaned.flaws.iter().filter(|flaw| flaw.kind == clean::FlawKind::NearlyClosed);
+    told.extend(flawed.map(ToString::to_string));
+    told
+}
+
+fn nothing_to_cut() -> Error {
+    Error::new(Kind::Refused, "there is nothing to cut")
+        .remedy("look at the layers asked for, and at the drawing's size")
+}
+
+/// Refuses a part that is larger than the machine's travel.
+fn fits_machine(part: Rect, machine: &Machine) -> Result<(), Error> {
+    let travel = &machine.travel;
+    if part.width() <= travel.x && part.height() <= travel.y {
+        return Ok(());
+    }
+    let what = format!(
+        "the part is {:.1} x {:.1} mm, and {} travels {:.0} x {:.0} mm",
+        part.width(),
+        part.height(),
+        machine.name,
+        travel.x,
+        travel.y
+    );
+    Err(Error::new(Kind::Refused, what)
+        .remedy("look at the drawing's unit and scale, or name a larger machine with --machine"))
+}

@@ -1,0 +1,147 @@
+//! From a plan to its report.
+
+use kurbo::Rect;
+
+use super::Plan;
+use crate::check::{self, Verdict};
+use crate::clean::Roughness;
+use crate::fit::Fitted;
+use crate::job::Job;
+use crate::report::{AsDrawn, Check, Claim, Contour, Drawing, Program, Report, Setup, State};
+use crate::sketch;
+use crate::toolpath::{Move, Toolpath};
+
+/// The report of `plan`; `drawing` and `program` are the files' names as typed.
+pub(super) fn report(job: &Job, plan: &Plan, drawing: &str, program: &str) -> Report {
+    Report {
+        ribband: env!("CARGO_PKG_VERSION").into(),
+        tolerance_mm: plan.tolerance.mm(),
+        drawing: drawing_of(plan, drawing),
+        contours: contours(plan, job.machine.last_place()),
+        setup: setup(job, plan),
+        program: program_of(plan, program),
+        check: check_of(&plan.verdict),
+        warnings: plan.warnings.clone(),
+        timings_ms: plan.timings_ms.clone(),
+    }
+}
+
+fn drawing_of(plan: &Plan, file: &str) -> Drawing {
+    let contours = &plan.sketch.contours;
+    Drawing {
+        file: file.into(),
+        sha256: plan.sha256.clone(),
+        mm_per_unit: plan.sketch.mm_per_unit,
+        scale_from: plan.sketch.scale_from.clone(),
+        width_mm: plan.part.width(),
+        height_mm: plan.part.height(),
+        contours: contours.len(),
+        vertices: contours.iter().map(|c| c.path.vertices.len()).sum(),
+        length_mm: contours.iter().map(|c| c.path.length()).sum(),
+    }
+}
+
+fn contours(plan: &Plan, place_mm: f64) -> Vec<Contour> {
+    let drawn = plan.cleaned.contours.iter().zip(&plan.roughness);
+    let told = |((drawn, rough), fitted): ((&sketch::Contour, &Roughness), &Fitted)| Contour {
+        roughness_mm: rough.sigma_mm,
+        ..contour(drawn, fitted, place_mm)
+    };
+    drawn.zip(&plan.fitted).map(told).collect()
+}
+
+fn contour(drawn: &sketch::Contour, fitted: &Fitted, place_mm: f64) -> Contour {
+    let bbox = drawn.path.bbox().unwrap_or(Rect::ZERO);
+    let lines = fitted.path.spans().filter(|span| span.is_line()).count();
+    Contour {
+        id: drawn.id,
+        layer: drawn.layer.clone(),
+        closed: drawn.path.closed,
+        vertices: drawn.path.vertices.len(),
+        length_mm: drawn.path.length(),
+        bbox_mm: [bbox.x0, bbox.y0, bbox.x1, bbox.y1],
+        roughness_mm: 0.0,
+        corners: fitted.path.corners(place_mm).count(),
+        lines,
+        arcs: fitted.path.len() - lines,
+        deviation_mm: fitted.deviation.mm,
+        uncut: Vec::new(),
+    }
+}
+
+fn setup(job: &Job, plan: &Plan) -> Setup {
+    let cuts = || plan.routed.iter().map(|routed| &routed.cut);
+    let most = |figure: fn(&crate::route::Cut) -> f64| cuts().map(figure).fold(0.0, f64::max);
+    Setup {
+        machine: job.machine.name.clone(),
+        unit: job.machine.unit.symbol().into(),
+        zero: job.zero,
+        origin: job.origin,
+        extents_mm: extents(&plan.program.toolpath),
+        cutter_mm: job.cutter_mm,
+        side: "on".into(),
+        direction: None,
+        depth_mm: most(|cut| cut.depth_mm),
+        passes: cuts().map(|cut| cut.passes().len()).max().unwrap_or(0),
+        feed_mm_min: most(|cut| cut.feed),
+        plunge_mm_min: most(|cut| cut.plunge),
+        spindle_rpm: most(|cut| cut.spindle_rpm),
+    }
+}
+
+/// Least x, y, z and largest x, y, z of the moves.
+fn extents(toolpath: &Toolpath) -> [f64; 6] {
+    let mut boxes = toolpath.moves.iter().map(|m| m.span().bbox());
+    let plane = boxes.next().map_or(Rect::ZERO, |first| boxes.fold(first, |all, one| all.union(one)));
+    let heights = || toolpath.moves.iter().flat_map(|m| [m.from.z, m.to.z]);
+    let (low, high) = (heights().fold(f64::INFINITY, f64::min), heights().fold(f64::NEG_INFINITY, f64::max));
+    [plane.x0, plane.y0, low, plane.x1, plane.y1, high]
+}
+
+fn program_of(plan: &Plan, file: &str) -> Program {
+    let length = |wanted: fn(&Move) -> bool| {
+        plan.program.toolpath.moves.iter().filter(|m| wanted(m)).map(Move::length).sum()
+    };
+    Program {
+        file: file.into(),
+        blocks: plan.program.blocks,
+        motion_blocks: plan.program.motion_blocks,
+        bytes: plan.text.len(),
+        cut_length_mm: length(|m| !m.is_rapid()),
+        rapid_length_mm: length(Move::is_rapid),
+        time_s: plan.times.time_s,
+        cut_time_s: plan.times.cut_time_s,
+        starved_blocks: plan.times.starved_blocks,
+        as_drawn: AsDrawn {
+            motion_blocks: plan.as_drawn.motion_blocks,
+            time_s: plan.as_drawn.times.time_s,
+            cut_time_s: plan.as_drawn.times.cut_time_s,
+            starved_blocks: plan.as_drawn.times.starved_blocks,
+        },
+    }
+}
+
+fn check_of(verdict: &Verdict) -> Check {
+    Check {
+        holds: verdict.holds,
+        deviation_mm: verdict.deviation.map(|deviation| deviation.mm),
+        claims: verdict.claims.iter().map(claim).collect(),
+        not_checked: verdict.not_checked.clone(),
+    }
+}
+
+fn claim(claim: &check::Claim) -> Claim {
+    Claim {
+        name: claim.name.into(),
+        state: match claim.state {
+            check::State::Holds => State::Holds,
+            check::State::Fails => State::Fails,
+            check::State::NotChecked => State::NotChecked,
+        },
+        value: claim.value,
+        limit: claim.limit,
+        unit: claim.unit.into(),
+        at: claim.at.map(|spot| spot.to_string()),
+        note: claim.note.clone(),
+    }
+}

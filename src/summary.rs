@@ -1,0 +1,188 @@
+//! The summary on the terminal: a job's report in a few lines, the machine first.
+
+use std::fmt::Write;
+
+use crate::num::LengthUnit;
+use crate::report::{Report, Setup, State};
+
+/// The summary of `report`, in the machine's own unit, with a line end.
+pub fn summary(report: &Report) -> String {
+    let show = Show::new(&report.setup);
+    let rows = [
+        ("Machine", format!("{}, program in {}", report.setup.machine, report.setup.unit)),
+        ("Part", part(report, show)),
+        ("Zero", zero(&report.setup)),
+        ("Path", extents(&report.setup, show)),
+        ("Cut", cut(&report.setup, show)),
+        ("Cutter", cutter(&report.setup, show)),
+        ("Blocks", blocks(report)),
+        ("Deviation", deviation(report, show)),
+        ("Time", time(report)),
+        ("Check", check(report)),
+        ("Program", program(report)),
+    ];
+    let mut text = String::new();
+    for (name, told) in rows {
+        // A string takes everything that is written to it.
+        let _ = writeln!(text, "{name:10} {told}");
+    }
+    for warning in &report.warnings {
+        let _ = writeln!(text, "{:10} {warning}", "Note");
+    }
+    text
+}
+
+/// Shows lengths in the machine's unit.
+#[derive(Clone, Copy)]
+struct Show(LengthUnit);
+
+impl Show {
+    fn new(setup: &Setup) -> Self {
+        Self(if setup.unit == LengthUnit::Inch.symbol() { LengthUnit::Inch } else { LengthUnit::Mm })
+    }
+
+    /// A coordinate or size: a tenth of a mm, or five thousandths of an inch.
+    fn size(self, mm: f64) -> String {
+        let rounded = match self.0 {
+            LengthUnit::Mm => format!("{mm:.1}"),
+            LengthUnit::Inch => format!("{:.3}", mm / 25.4),
+        };
+        if rounded.trim_start_matches('-').chars().all(|c| c == '0' || c == '.') {
+            rounded.trim_start_matches('-').to_owned()
+        } else {
+            rounded
+        }
+    }
+
+    /// A deviation.
+    fn fine(self, mm: f64) -> String {
+        match self.0 {
+            LengthUnit::Mm => format!("{mm:.4} mm"),
+            LengthUnit::Inch => format!("{:.5} in", mm / 25.4),
+        }
+    }
+
+    /// A feed.
+    fn feed(self, mm_min: f64) -> String {
+        match self.0 {
+            LengthUnit::Mm => format!("{mm_min:.0} mm/min"),
+            LengthUnit::Inch => format!("{:.1} in/min", mm_min / 25.4),
+        }
+    }
+
+    fn unit(self) -> &'static str {
+        self.0.symbol()
+    }
+}
+
+fn part(report: &Report, show: Show) -> String {
+    let drawing = &report.drawing;
+    let (width, height) = (show.size(drawing.width_mm), show.size(drawing.height_mm));
+    let contours = counted(report.contours.len(), "contour");
+    format!("{width} x {height} {} finished, {contours}, scale by {}", show.unit(), drawing.scale_from)
+}
+
+fn zero(setup: &Setup) -> String {
+    format!("X and Y at {}, Z at {}", setup.origin.words(), setup.zero.words())
+}
+
+fn extents(setup: &Setup, show: Show) -> String {
+    let [x0, y0, z0, x1, y1, z1] = setup.extents_mm.map(|mm| show.size(mm));
+    format!(
+        "X {x0} to {x1}, Y {y0} to {y1}, Z {z1} down to {z0} {} from that zero; lowest Z {z0}",
+        show.unit()
+    )
+}
+
+fn cut(setup: &Setup, show: Show) -> String {
+    let passes = counted(setup.passes, "pass");
+    let depth = show.size(setup.depth_mm);
+    let side = side_words(&setup.side);
+    format!("{depth} {} deep in {passes}, {side}", show.unit())
+}
+
+/// What a side means for the part's size.
+pub fn side_words(side: &str) -> String {
+    match side {
+        "on" => "on the line: the part comes out smaller by the cutter's radius".into(),
+        other => format!("{other} the contour"),
+    }
+}
+
+fn cutter(setup: &Setup, show: Show) -> String {
+    let diameter = setup.cutter_mm / show.0.mm();
+    let (feed, plunge) = (show.feed(setup.feed_mm_min), show.feed(setup.plunge_mm_min));
+    format!(
+        "{diameter} {}, feed {feed}, plunge {plunge}, spindle {:.0} rev/min",
+        show.unit(),
+        setup.spindle_rpm
+    )
+}
+
+fn blocks(report: &Report) -> String {
+    let program = &report.program;
+    let (lines, arcs) = report.contours.iter().fold((0, 0), |sum, c| (sum.0 + c.lines, sum.1 + c.arcs));
+    format!(
+        "{} motion blocks, {} as drawn; contours of {} and {}",
+        program.motion_blocks,
+        program.as_drawn.motion_blocks,
+        counted(lines, "line"),
+        counted(arcs, "arc")
+    )
+}
+
+/// Near the tolerance by design, so it is said in a way that does not alarm.
+fn deviation(report: &Report, show: Show) -> String {
+    let tolerance = match show.0 {
+        LengthUnit::Mm => format!("{:.2} mm", report.tolerance_mm),
+        LengthUnit::Inch => format!("{:.4} in", report.tolerance_mm / 25.4),
+    };
+    let certified =
+        report.check.deviation_mm.map_or("not found".into(), |mm| format!("{} certified", show.fine(mm)));
+    format!("within {tolerance}, as allowed ({certified})")
+}
+
+fn time(report: &Report) -> String {
+    let program = &report.program;
+    format!(
+        "{}, of which {} along the contours; as drawn {} and {}",
+        duration(program.time_s),
+        duration(program.cut_time_s),
+        duration(program.as_drawn.time_s),
+        duration(program.as_drawn.cut_time_s)
+    )
+}
+
+fn check(report: &Report) -> String {
+    let count = |state| report.check.claims.iter().filter(|claim| claim.state == state).count();
+    let open = match count(State::NotChecked) {
+        0 => String::new(),
+        open => format!(", {open} not checked"),
+    };
+    format!("read back and checked against the drawing: {} hold{open}", counted(count(State::Holds), "claim"))
+}
+
+fn program(report: &Report) -> String {
+    let file = if report.program.file == "-" { "to standard output" } else { &report.program.file };
+    format!("{file}, {} blocks, {} bytes", report.program.blocks, report.program.bytes)
+}
+
+/// `2 passes`, `1 line`.
+fn counted(count: usize, what: &str) -> String {
+    let ending = match (count, what.ends_with('s')) {
+        (1, _) => "",
+        (_, true) => "es",
+        (_, false) => "s",
+    };
+    format!("{count} {what}{ending}")
+}
+
+/// `45 s`, `4 min 5 s`, `1 h 2 min`.
+pub fn duration(seconds: f64) -> String {
+    let whole = seconds.round() as u64;
+    match (whole / 3600, whole / 60 % 60, whole % 60) {
+        (0, 0, _) => format!("{seconds:.1} s"),
+        (0, minutes, seconds) => format!("{minutes} min {seconds} s"),
+        (hours, minutes, _) => format!("{hours} h {minutes} min"),
+    }
+}
