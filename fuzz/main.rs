@@ -4,6 +4,8 @@
 //! `cargo run --release --example fuzz -- [TARGET or all] [SECONDS] [SEED]`. A failing input is written to
 //! `fuzz/found/`, printed as a Rust literal for a regression test, and makes the exit status 1.
 
+#![allow(clippy::print_stdout, clippy::print_stderr, reason = "a fuzzer tells what it does")]
+
 mod mutate;
 mod targets;
 

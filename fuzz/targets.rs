@@ -144,7 +144,7 @@ fn post(input: &[u8]) -> Result<bool, String> {
         .toolpath
         .moves
         .iter()
-        .filter(|m| !m.is_rapid() && m.from.z == m.to.z)
+        .filter(|m| !m.is_rapid() && (m.from.z - m.to.z).abs() == 0.0)
         .map(|m| m.length())
         .sum();
     let passes = job.cutting.depth_mm / job.cutting.pass_mm;

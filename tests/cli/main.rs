@@ -8,4 +8,5 @@ mod lengths;
 mod outputs;
 mod posting;
 mod reading;
+mod schema;
 mod words;
