@@ -1,11 +1,11 @@
 //! The region to keep: its outline with the waste on the left, and the questions asked of it.
 
 use kurbo::{Point, Rect};
+use rstar::AABB;
 use rstar::primitives::{GeomWithData, Rectangle};
-use rstar::{AABB, RTree};
 
 use crate::error::{Error, Kind};
-use crate::geom::{ArcSpline, Span};
+use crate::geom::{ArcSpline, SpanIndex};
 
 use super::chain::Fault;
 use super::simple::{Drawn, Loop};
@@ -22,8 +22,7 @@ pub(super) struct Region {
     /// Below this distance, in mm, two places are one: tangent contacts are known to half the digits only.
     pub(super) snap: f64,
     drawn: Drawn,
-    spans: Vec<Span>,
-    index: RTree<Boxed>,
+    outline: SpanIndex,
 }
 
 impl Region {
@@ -37,21 +36,19 @@ impl Region {
         let snap = f64::EPSILON.sqrt() * scale;
         let drawn = Drawn::new(loops, side);
         let (loops, contacts) = drawn.simple(snap).map_err(undecided)?;
-        let spans: Vec<Span> = loops.iter().flat_map(|l| l.path.spans()).collect();
-        let index = RTree::bulk_load(spans.iter().enumerate().map(|(i, s)| boxed(s.bbox(), i)).collect());
-        Ok(Self { loops, contacts, snap, drawn, spans, index })
+        let outline = SpanIndex::new(loops.iter().flat_map(|l| l.path.spans()));
+        Ok(Self { loops, contacts, snap, drawn, outline })
     }
 
-    /// The distance from `p` to the outline, in mm.
+    /// The distance from `p` to the outline, in mm; infinite when nothing bounds the region.
     pub(super) fn distance(&self, p: Point) -> f64 {
-        nearest(&self.index, &self.spans, p)
+        distance(&self.outline, p)
     }
 
-    /// True when a joint of the outline is within `reach` mm of `p`.
+    /// True when the outline has a joint within `reach` mm of `p`.
     pub(super) fn has_vertex_at(&self, p: Point, reach: f64) -> bool {
-        let near = AABB::from_corners([p.x - reach, p.y - reach], [p.x + reach, p.y + reach]);
-        let mut spans = self.index.locate_in_envelope_intersecting(near).map(|b| &self.spans[b.data]);
-        spans.any(|span| span.start.distance(p) <= reach || span.end.distance(p) <= reach)
+        let near = self.outline.nearest(p);
+        near.is_some_and(|(_, span)| span.start.distance(p) <= reach || span.end.distance(p) <= reach)
     }
 
     /// A line of the cutter's centre must be on its side and nowhere closer than the radius.
@@ -74,15 +71,8 @@ impl Region {
 }
 
 /// The distance from `p` to the nearest of the indexed spans, in mm; infinite without any.
-pub(super) fn nearest(index: &RTree<Boxed>, spans: &[Span], p: Point) -> f64 {
-    let mut best = f64::INFINITY;
-    for (boxed, lower_squared) in index.nearest_neighbor_iter_with_distance_2([p.x, p.y]) {
-        if lower_squared >= best * best {
-            break;
-        }
-        best = best.min(spans[boxed.data].nearest(p).distance);
-    }
-    best
+pub(super) fn distance(index: &SpanIndex, p: Point) -> f64 {
+    index.nearest(p).map_or(f64::INFINITY, |(_, span)| span.nearest(p).distance)
 }
 
 /// A box for the index.

@@ -1,12 +1,11 @@
 //! What a round cutter leaves standing: inside corners, narrow places, loops it does not fit into.
 
 use kurbo::Point;
-use rstar::RTree;
 
-use crate::geom::{ArcSpline, Span};
+use crate::geom::{ArcSpline, SpanIndex};
 
 use super::Compensated;
-use super::region::{Boxed, boxed, nearest};
+use super::region::distance;
 
 /// A stretch of an outline that the cutter does not reach.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -24,10 +23,8 @@ pub struct Uncut {
 /// The stretches of `loops` that are further than `tolerance` mm from the edge of a cutter of `radius` on its lines,
 /// found to a tolerance of length, in the order of the loops.
 pub fn uncut(loops: &[ArcSpline], compensated: &Compensated, radius: f64, tolerance: f64) -> Vec<Uncut> {
-    let spans: Vec<Span> = compensated.lines.iter().flat_map(|line| line.path.spans()).collect();
-    let index: RTree<Boxed> =
-        RTree::bulk_load(spans.iter().enumerate().map(|(i, s)| boxed(s.bbox(), i)).collect());
-    let gap = |p: Point| nearest(&index, &spans, p) - radius;
+    let lines = SpanIndex::new(compensated.lines.iter().flat_map(|line| line.path.spans()));
+    let gap = |p: Point| distance(&lines, p) - radius;
     loops.iter().enumerate().flat_map(|(along, chain)| stretches(along, chain, tolerance, &gap)).collect()
 }
 

@@ -6,8 +6,9 @@ use std::path::Path;
 
 use geo::algorithm::buffer::{BufferStyle, LineJoin};
 use geo::{Area, Buffer, MultiPolygon};
+use kurbo::Point;
 use rayon::prelude::*;
-use ribband::geom::ArcSpline;
+use ribband::geom::{ArcSpline, SpanIndex};
 use ribband::offset::{Corners, Side, compensate};
 use ribband::read::{Scale, Unit, read};
 
@@ -98,4 +99,26 @@ fn every_outline_agrees_with_an_independent_buffer() {
         })
         .collect();
     assert!(failures.is_empty(), "{} of {}:\n{}", failures.len(), names.len() * 8, failures.join("\n"));
+}
+
+/// A nearest span that is not the nearest would let the cutter into the part.
+#[test]
+fn the_index_finds_the_nearest_span_of_real_outlines() {
+    for name in
+        ["analytic/limacon-a-s05-n05.csv", "analytic/gear-a-s05-q01.csv", "glyph/dejavu-sans-u0038.csv"]
+    {
+        let spans: Vec<_> = loops(name).iter().flat_map(|l| l.spans().collect::<Vec<_>>()).collect();
+        let index = SpanIndex::new(spans.iter().copied());
+        let boxes = spans.iter().map(|span| span.bbox()).reduce(|a, b| a.union(b)).expect("there are spans");
+        for k in 0..2500 {
+            let share = |k: i32| f64::from(k) / 49.0;
+            let at = Point::new(
+                boxes.x0 + boxes.width() * share(k % 50),
+                boxes.y0 + boxes.height() * share(k / 50),
+            );
+            let (_, nearest) = index.nearest(at).expect("there are spans");
+            let least = spans.iter().map(|span| span.nearest(at).distance).fold(f64::INFINITY, f64::min);
+            assert!(nearest.nearest(at).distance <= least, "{name} at {at}");
+        }
+    }
 }
