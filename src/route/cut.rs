@@ -1,6 +1,7 @@
 //! How one contour is cut.
 
 use crate::error::Error;
+use crate::offset::Corners;
 
 use super::setup::{Setup, positive, refused, settings};
 
@@ -24,6 +25,20 @@ pub enum Direction {
     Conventional,
     /// The other way round.
     Climb,
+}
+
+/// On which side of a contour the cutter runs.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
+pub enum Side {
+    /// Its centre on the contour: the part comes out smaller by the cutter's radius.
+    #[default]
+    On,
+    /// Inside.
+    Inside,
+    /// Outside.
+    Outside,
+    /// By nesting: outer contours outside, holes inside, islands in holes outside.
+    Auto,
 }
 
 /// How a part that is cut free is held.
@@ -72,6 +87,17 @@ pub struct Cut {
     pub spindle_rpm: f64,
     /// The cutter's diameter, in mm.
     pub cutter_mm: f64,
+    /// On which side of the contour it runs.
+    pub side: Side,
+    /// How it passes corners that jut out towards it.
+    pub corners: Corners,
+    /// How much material stays on the drawn edge, in mm; negative for a part that fits more loosely, or a hole that is
+    /// wider.
+    pub allowance_mm: f64,
+    /// How much the passes leave for a last one at full depth, in mm.
+    pub leave_mm: f64,
+    /// True when inside corners get a way in, so that a sharp corner seats in them.
+    pub relief: bool,
     /// How the cutter goes down.
     pub entry: Entry,
     /// The angle of ramps and helices, in degrees.
@@ -95,6 +121,11 @@ impl Default for Cut {
             plunge: 0.0,
             spindle_rpm: 0.0,
             cutter_mm: 0.0,
+            side: Side::On,
+            corners: Corners::Round,
+            allowance_mm: 0.0,
+            leave_mm: 0.0,
+            relief: false,
             entry: Entry::Ramp,
             ramp_deg: 3.0,
             direction: Direction::Conventional,
@@ -109,6 +140,11 @@ impl Cut {
     pub fn passes(&self) -> Vec<f64> {
         let count = (self.depth_mm / self.pass_mm * (1.0 - f64::EPSILON)).ceil().max(1.0);
         (1..=count as usize).map(|k| self.depth_mm * k as f64 / count).collect()
+    }
+
+    /// How far the cutter's centre runs from the drawn contour, in mm, before anything is left for a last pass.
+    pub fn distance(&self) -> f64 {
+        self.cutter_mm / 2.0 + self.allowance_mm
     }
 
     /// How far a ramp runs to go down by `height`, in mm.
@@ -135,6 +171,16 @@ impl Cut {
         if !(self.ramp_deg > 0.0 && self.ramp_deg <= 45.0) {
             let what = format!("a ramp of {} degrees is not between 0 and 45", self.ramp_deg);
             return Err(settings(what, "common practice in wood is 1 to 5"));
+        }
+        if !(self.distance() > 0.0 && self.leave_mm >= 0.0 && self.leave_mm.is_finite()) {
+            let what = format!(
+                "an allowance of {} mm, leaving {} mm, is more than a cutter of {} mm can do",
+                self.allowance_mm, self.leave_mm, self.cutter_mm
+            );
+            return Err(settings(
+                what,
+                "keep --allowance above minus half the cutter, and --leave at 0 or more",
+            ));
         }
         self.tabs.map_or(Ok(()), |tabs| tabs.validate())
     }

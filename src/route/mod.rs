@@ -9,7 +9,10 @@ mod cut;
 mod keep_out;
 mod order;
 mod profile;
+mod relief;
 mod setup;
+mod sides;
+mod start;
 mod tabs;
 mod track;
 
@@ -25,8 +28,9 @@ use order::Stop;
 use track::Track;
 
 pub use contour::Lead;
-pub use cut::{Cut, Direction, Entry, Held, TabNumber, Tabs};
+pub use cut::{Cut, Direction, Entry, Held, Side, TabNumber, Tabs};
 pub use setup::{Heights, KeepOut, Order, Setup, Thickness, Zero};
+pub use sides::{Outline, Sided, beside};
 
 /// A contour ready to be cut: the line that the cutter's centre follows, and how it is cut.
 #[derive(Clone, Debug, Default)]
