@@ -5,5 +5,6 @@ mod grammar;
 mod nist;
 mod parts;
 mod rounded;
+mod routed;
 mod second;
 mod written;

@@ -68,7 +68,7 @@ fn spans() -> impl Strategy<Value = Span> {
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig::with_cases(2000))]
+    #![proptest_config(ProptestConfig::with_cases(800))]
 
     #[test]
     fn an_arc_comes_back_as_it_was_meant(span in spans(), which in 0..11_usize) {

@@ -24,6 +24,9 @@ pub fn interpret(text: &Text, dialect: &Dialect) -> Result<Program, Error> {
             controller.assume("lines that start with a slash are skipped");
             continue;
         }
+        if block.optional {
+            controller.assume("lines that start with a slash are run");
+        }
         let words = text.words(block);
         controller.line = block.line;
         let done = codes.fill(words).and_then(|()| controller.execute(block, words.is_empty(), &mut codes));

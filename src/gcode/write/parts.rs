@@ -3,6 +3,7 @@
 
 use std::ops::Range;
 
+use super::decimal::Grid;
 use super::header::{Header, Mark};
 use super::write;
 use crate::error::{Error, Kind};
@@ -68,7 +69,9 @@ impl Cutter<'_> {
     /// it is to be `between_contours`; and at the end.
     fn places(&self, between_contours: bool) -> Vec<usize> {
         let moves = &self.toolpath.moves;
-        let up = |i: &usize| moves[*i].is_rapid() && moves[*i].from.z >= self.header.clearance;
+        let grid = Grid::of(self.machine);
+        let clearance = grid.count(self.header.clearance);
+        let up = |i: &usize| moves[*i].is_rapid() && grid.count(moves[*i].from.z) >= clearance;
         let across = |i: &usize| !between_contours || moves[*i].from.xy != moves[*i].to.xy;
         (1..moves.len()).filter(up).filter(across).chain([moves.len()]).collect()
     }
