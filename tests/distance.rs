@@ -4,7 +4,7 @@ use std::f64::consts::{PI, TAU};
 
 use kurbo::{Affine, Point, Vec2};
 use proptest::prelude::*;
-use ribband::geom::{ArcSpline, Span, Vertex, frechet};
+use ribband::geom::{ArcSpline, Span, SpanIndex, Vertex, frechet};
 
 fn polyline(points: &[(f64, f64)], closed: bool) -> ArcSpline {
     ArcSpline::polyline(points.iter().map(|&p| Point::from(p)), closed)
@@ -220,6 +220,30 @@ fn chains_that_have_nothing_in_common_are_bounded_in_reasonable_time() {
     let near = polygon(5.0, 3000, 0.0);
     let mm = frechet(&far, &near).mm;
     assert!((895.0..1800.0).contains(&mm), "bound {mm}");
+}
+
+#[test]
+fn the_index_finds_the_nearest_span_of_chains_on_a_grid() {
+    // Corners on a grid of thousandths, where many distances tie but for rounding.
+    let grid = |v: f64| (v * 1000.0).round() / 1000.0;
+    let ring =
+        |k: usize| Point::new(50.0, 50.0) + Vec2::from_angle(0.01 * k as f64) * (30.0 + (k % 3) as f64 * 0.2);
+    let mut chain = ArcSpline::polyline((0..628).map(|k| Point::new(grid(ring(k).x), grid(ring(k).y))), true);
+    for (k, v) in chain.vertices.iter_mut().enumerate() {
+        v.bulge = [0.0, -0.002, 0.3][k % 3];
+    }
+    let index = SpanIndex::new(chain.spans());
+    for k in 0..2000 {
+        let p =
+            Point::new(50.0, 50.0) + Vec2::from_angle(0.37 * f64::from(k)) * (25.0 + 0.006 * f64::from(k));
+        let (_, found) = index.nearest(p).expect("there are spans");
+        let least = chain.spans().map(|span| span.nearest(p).distance).fold(f64::INFINITY, f64::min);
+        assert!(
+            found.nearest(p).distance <= least * (1.0 + 1e-12),
+            "{} for {least}",
+            found.nearest(p).distance
+        );
+    }
 }
 
 /// A wavy chain of `n` points with spikes and backward steps, and its generator's seed numbers.

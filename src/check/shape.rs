@@ -5,7 +5,7 @@ use kurbo::{Point, Rect};
 use super::Asked;
 use super::claim::{Claim, Spot, State, Worst};
 use super::cuts::{Cuts, Pass};
-use crate::geom::{Along, ArcSpline, SpanIndex, frechet};
+use crate::geom::{Along, ArcSpline, SpanIndex, Vertex, frechet};
 use crate::machine::Machine;
 use crate::num::Deviation;
 
@@ -144,7 +144,9 @@ impl Comparison {
                 follows |= self.note(target, deviation, pass);
             }
         }
-        if !follows {
+        let laps = || first_laps(chain, self.tolerance / 100.0);
+        let lap = if follows { None } else { laps().into_iter().find(|lap| self.take(pass, lap)) };
+        if !follows && lap.is_none() {
             self.take_failed(pass, chain, bbox);
         }
     }
@@ -254,6 +256,18 @@ fn all_cut(uncut: &[&Target]) -> Claim {
         at: Some(crate::toolpath::Position { xy: target.bbox.center(), z: 0.0 }),
     });
     Claim::none_of(ALL_CUT, uncut.len(), first).because("no pass follows the contour within the tolerance")
+}
+
+/// The closed chains that an open one makes each time it comes back to within `gap` mm of its start: a lap that runs
+/// on over its start is one of them.
+fn first_laps(chain: &ArcSpline, gap: f64) -> Vec<ArcSpline> {
+    const FEW: usize = 4;
+    let vertices = &chain.vertices;
+    let back = |&k: &usize| vertices[k].at.distance(vertices[0].at) <= gap;
+    let returns = (2..vertices.len()).filter(back).take(if chain.closed { 0 } else { FEW });
+    let closing = |k: usize| Vertex { at: vertices[k].at, bulge: 0.0 };
+    let lap = |k: usize| vertices[..k].iter().copied().chain([closing(k)]).collect();
+    returns.map(|k| ArcSpline { vertices: lap(k), closed: true }).collect()
 }
 
 /// How far the sides of two boxes are apart at most: chains within a distance of each other differ by no more.

@@ -31,7 +31,7 @@ fn contours(path: &Path) -> Vec<ArcSpline> {
 }
 
 /// Name, contours and tolerance of a sample of the outlines: every `nth` of the manifest.
-fn outlines(nth: usize) -> Vec<(String, Vec<ArcSpline>, f64)> {
+pub(crate) fn outlines(nth: usize) -> Vec<(String, Vec<ArcSpline>, f64)> {
     let root = Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures/outlines");
     let manifest = std::fs::read_to_string(root.join("manifest.json")).expect("the manifest");
     let manifest: serde_json::Value = serde_json::from_str(&manifest).expect("the manifest is JSON");

@@ -2,6 +2,7 @@
 
 mod claims;
 mod emit;
+mod entries;
 mod foreign;
 mod sides;
 mod tampering;

@@ -141,3 +141,29 @@ fn passes_and_depth_are_judged_beside_the_line_too() {
     assert!(with("Z-4.000", "Z-5.000").contains(&"no pass is deeper than asked"));
     assert!(with("Z-6.000", "Z-5.500").contains(&"some pass goes to the depth asked"));
 }
+
+#[test]
+fn real_outlines_compensated_hold_on_both_sides() {
+    use ribband::offset::{self, Corners, compensate};
+    let closed = |paths: &[ArcSpline]| paths.iter().all(|path| path.closed);
+    let sample = crate::foreign::outlines(5).into_iter().filter(|(_, paths, _)| closed(paths)).take(14);
+    for (k, (name, paths, _)) in sample.enumerate() {
+        let (side, theirs) =
+            [(Side::Outside, offset::Side::Outside), (Side::Inside, offset::Side::Inside)][k % 2];
+        let lines = compensate(&paths, RADIUS, theirs, Corners::Round).expect("it can be followed").lines;
+        let lines: Vec<ArcSpline> = lines.into_iter().map(|line| line.path).collect();
+        if lines.is_empty() {
+            continue;
+        }
+        let verdict = judged(&lines, &paths, &beside(side, 0.1));
+        // This test's own writer rounds every number by itself, which may break the rule for the radii.
+        let bad: Vec<_> = failing(&verdict).into_iter().filter(|name| !name.contains("radii")).collect();
+        assert!(bad.is_empty(), "{name}, {side:?}: {bad:?} {:#?}", verdict.claims);
+        assert!(verdict.deviation.expect("a figure").mm < 0.03, "{name}: {:?}", verdict.deviation);
+        // One loop left out, if there is another to go by.
+        if lines.len() > 1 {
+            let verdict = judged(&lines[1..], &paths, &beside(side, 0.1));
+            assert!(failing(&verdict).iter().any(|name| name.contains("reaches all")), "{name} lost a loop");
+        }
+    }
+}
