@@ -88,7 +88,7 @@ fn a_contour_that_was_lost_on_the_way_is_found() {
     let hole = rectangle(25.0, 20.0, 20.0, 15.0);
     let drawing = [rectangle(10.0, 10.0, 60.0, 40.0), hole];
     let outer = around(10.0, 10.0, 60.0, 40.0, RADIUS);
-    let verdict = judged(&[outer.clone()], &drawing, &beside(Side::Outside, 0.1));
+    let verdict = judged(std::slice::from_ref(&outer), &drawing, &beside(Side::Outside, 0.1));
     assert_eq!(failing(&verdict), ["the cutter reaches all of the drawing that it can"]);
     // A hole that the cutter does not fit into is told, not judged.
     let small = [rectangle(10.0, 10.0, 60.0, 40.0), rectangle(30.0, 20.0, 5.0, 15.0)];
@@ -108,7 +108,7 @@ fn jagged_traces_are_judged_by_what_touches_the_cutter() {
     points.extend([(70.0, 50.0), (10.0, 50.0)]);
     let drawing = [polyline(&points, true)];
     let path = around(10.0, 9.95, 60.0, 40.05, RADIUS);
-    let verdict = judged(&[path.clone()], &drawing, &beside(Side::Outside, 0.1));
+    let verdict = judged(std::slice::from_ref(&path), &drawing, &beside(Side::Outside, 0.1));
     assert!(verdict.holds, "fails {:?} {:#?}", failing(&verdict), verdict.claims);
     let low = path.transformed(kurbo::Affine::translate((0.0, -0.15)));
     let verdict = judged(&[low], &drawing, &beside(Side::Outside, 0.1));
