@@ -117,9 +117,16 @@ impl Roughness {
 
 /// The tolerance that all of the contours support: the largest of their own.
 pub fn support(contours: &[Contour]) -> Support {
-    let all = contours.par_iter().map(|c| roughness(&c.path).support());
-    let none = Support { mm: 0.0, reason: "no noise or pixel steps found".into() };
-    all.collect::<Vec<_>>().into_iter().fold(none, |most, own| if own.mm > most.mm { own } else { most })
+    let all: Vec<Support> = contours.par_iter().map(|c| roughness(&c.path).support()).collect();
+    Support::largest(&all)
+}
+
+impl Support {
+    /// The one of the largest tolerance.
+    pub fn largest<'a>(all: impl IntoIterator<Item = &'a Self>) -> Self {
+        let none = Self { mm: 0.0, reason: "no noise or pixel steps found".into() };
+        all.into_iter().fold(&none, |most, own| if own.mm > most.mm { own } else { most }).clone()
+    }
 }
 
 /// `mm` rounded up to the second decimal; what exceeds that by less than a nanometre does not count.

@@ -89,9 +89,7 @@ pub fn measure(sketch: &Sketch, join_mm: f64) -> Measurement {
     let roles = clean::nesting(&cleaned.contours);
     let contours: Vec<Measured> =
         cleaned.contours.par_iter().zip(&roles).filter_map(|(c, nest)| measured(c, nest.role)).collect();
-    let none = Support { mm: 0.0, reason: "no noise or pixel steps found".into() };
-    let supports = contours.iter().map(|c| &c.support);
-    let support = supports.fold(&none, |most, own| if own.mm > most.mm { own } else { most }).clone();
+    let support = Support::largest(contours.iter().map(|c| &c.support));
     let mut flaws = cleaned.flaws;
     flaws.extend(clean::crossings(&cleaned.contours));
     clean::worst_first(&mut flaws);
