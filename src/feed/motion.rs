@@ -55,12 +55,12 @@ pub(super) fn run(toolpath: &Toolpath, limits: &Limits, mut tell: impl FnMut(Hap
     let (mut now, mut speed) = (0.0_f64, 0.0_f64);
     let last = course.blocks.len() - 1;
     for block in 0..last {
-        let wait = queue.next_ready() - now;
+        let wait = queue.wait(now);
+        queue.next(now);
         if wait > 0.0 {
             tell(Happening::Starved(wait));
             now += wait;
         }
-        queue.start(now);
         let (first, end) = (course.blocks[block], course.blocks[block + 1]);
         view.look(first, course.blocks[(block + limits.queue).min(last)]);
         for i in first..end {

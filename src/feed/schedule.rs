@@ -1,7 +1,7 @@
 //! The feed of every block: what the process asks for, lowered to what the machine and its controller sustain.
 
 use super::stretch::speed_cap;
-use super::{Limits, time};
+use super::{Limits, Queue};
 use crate::toolpath::{Move, Toolpath};
 
 /// What a schedule came to.
@@ -9,8 +9,8 @@ use crate::toolpath::{Move, Toolpath};
 pub struct Schedule {
     /// Moves whose feed was lowered.
     pub lowered: usize,
-    /// The highest feed override at which no block starves, in percent; at most [`MOST_OVERRIDE`], and 0 where blocks
-    /// starve at 100 % already.
+    /// A feed override at which no block starves, in percent: the highest when every block runs at its feed from end to
+    /// end, as no machine does; at most [`MOST_OVERRIDE`], and 0 where blocks starve at 100 % already.
     pub highest_override: u32,
 }
 
@@ -91,14 +91,19 @@ fn sustain(moves: &[Move], times: &mut [f64], limits: &Limits) {
     }
 }
 
-/// The highest feed override, in whole percent, at which no block starves by the model of motion.
+/// The highest feed override, in whole percent, at which no block starves when every one runs from end to end at the
+/// feed that the override and the machine allow.
 fn highest_override(toolpath: &Toolpath, limits: &Limits) -> u32 {
     let starves = |percent: u32| {
-        let mut faster = toolpath.clone();
-        for m in &mut faster.moves {
-            m.feed = m.feed.map(|feed| feed * f64::from(percent) / 100.0);
-        }
-        time(&faster, limits).starved_blocks > 0
+        let mut queue = Queue::full(limits.queue, limits.interval());
+        let mut now = 0.0;
+        toolpath.moves.iter().filter(|m| m.length() > 0.0).any(|m| {
+            let feed = m.feed.map(|feed| feed * f64::from(percent) / 100.0);
+            let waits = queue.wait(now) > 0.0;
+            queue.next(now);
+            now += least_time(&Move { feed, ..*m }, limits);
+            waits
+        })
     };
     if starves(100) {
         return 0;

@@ -12,7 +12,7 @@ use crate::geom::Span;
 use crate::toolpath::Move;
 
 /// The largest turn of one stretch. The acceleration that the axes leave is the least over its directions.
-const TURN: f64 = TAU / 64.0;
+const TURN: f64 = TAU / 256.0;
 
 /// A stretch of constant curvature, all of one move.
 #[derive(Clone, Copy, Debug)]
@@ -23,7 +23,7 @@ pub(super) struct Stretch {
     pub(super) from: f64,
     /// Its length in mm.
     pub(super) length: f64,
-    /// The largest squared speed: feed, axis speeds, and the centripetal limit over the whole move.
+    /// The largest squared speed: feed, axis speeds, and the centripetal limit in all its directions.
     pub(super) cap: f64,
     /// What the axes leave for gaining speed.
     gain: Bound,
@@ -57,15 +57,15 @@ impl Stretch {
             let losing = ramp(end, peak, self.loss.over(peak, end));
             (gaining, losing)
         };
-        let fits = |peak: f64| {
+        let excess = |peak: f64| {
             let (gaining, losing) = parts(peak);
-            gaining + losing <= self.length
+            gaining + losing - self.length
         };
         let least = start.max(end);
         let peak = if self.gain.bend == 0.0 && self.gain.steady > 0.0 {
             (self.gain.steady * self.length + (start + end) / 2.0).clamp(least, self.cap.max(least))
         } else {
-            largest(least, self.cap.max(least), fits)
+            largest(least, self.cap.max(least), excess)
         };
         let (gaining, losing) = parts(peak);
         // Rounding, or a joint that only just comes into reach, must not make the parts longer than the whole.
@@ -81,19 +81,33 @@ fn ramp(low: f64, high: f64, acceleration: f64) -> f64 {
     if high - low > 16.0 * f64::EPSILON * high { (high - low) / (2.0 * acceleration) } else { 0.0 }
 }
 
-/// The largest number from `least`, which holds, to `most`, by halving; `holds` must not come back once lost.
-fn largest(least: f64, most: f64, holds: impl Fn(f64) -> bool) -> f64 {
-    if holds(most) {
-        return most;
+/// The largest number from `least` to `most` at which `excess` is not above zero, by false position (the Illinois
+/// variant, Dowell and Jarratt 1971); `excess` must not come back once above zero.
+fn largest(least: f64, most: f64, excess: impl Fn(f64) -> f64) -> f64 {
+    let (mut inside, mut below) = (least, excess(least));
+    let (mut outside, mut above) = (most, excess(most));
+    if above <= 0.0 || below >= 0.0 {
+        return if above <= 0.0 { most } else { least };
     }
-    let (mut inside, mut outside) = (least, most);
-    loop {
-        let middle = f64::midpoint(inside, outside);
-        if middle <= inside || middle >= outside || outside - inside <= 4.0 * f64::EPSILON * most {
-            return inside;
+    let mut moved_inside = None;
+    while outside - inside > 4.0 * f64::EPSILON * most {
+        let aim = outside - above * (outside - inside) / (above - below);
+        let middle = if aim > inside && aim < outside { aim } else { f64::midpoint(inside, outside) };
+        let there = excess(middle);
+        if middle <= inside || middle >= outside {
+            break;
         }
-        if holds(middle) { inside = middle } else { outside = middle }
+        // An end that stays twice has its value halved, so that the next aim falls beyond the root.
+        if there <= 0.0 {
+            (inside, below) = (middle, there);
+            above /= if moved_inside == Some(true) { 2.0 } else { 1.0 };
+        } else {
+            (outside, above) = (middle, there);
+            below /= if moved_inside == Some(false) { 2.0 } else { 1.0 };
+        }
+        moved_inside = Some(there <= 0.0);
     }
+    inside
 }
 
 /// What the axes leave for tangential acceleration along a stretch.
@@ -144,7 +158,7 @@ impl Bound {
             return (start + 2.0 * self.steady * length).min(cap);
         }
         let here = self.at(start);
-        largest(start.min(cap), cap, |end| end - start <= 2.0 * length * here.min(self.at(end)))
+        largest(start.min(cap), cap, |end| end - start - 2.0 * length * here.min(self.at(end)))
     }
 
     /// The bound on losing speed that belongs to this one on gaining it.
@@ -214,12 +228,12 @@ impl Shape {
         Self { span, length, level, slope: (m.to.z - m.from.z) / length, sweep }
     }
 
-    /// The largest sizes of the components of the unit tangent, over the whole move.
-    fn largest_tangent(&self) -> [f64; 3] {
-        let (start, end) = (self.tangent(0.0), self.tangent(1.0));
+    /// The largest sizes of the components of the unit tangent between two fractions of the move.
+    fn largest_tangent(&self, t0: f64, t1: f64) -> [f64; 3] {
+        let (start, end) = (self.tangent(t0), self.tangent(t1));
         let passes = |axis: f64| {
             let ahead = |k: f64| ((axis + k - start.atan2()) * self.sweep.signum()).rem_euclid(TAU);
-            ahead(0.0).min(ahead(TAU / 2.0)) < self.sweep.abs()
+            ahead(0.0).min(ahead(TAU / 2.0)) < self.sweep.abs() * (t1 - t0)
         };
         let along = |axis: f64, a: f64, b: f64| if passes(axis) { 1.0 } else { a.abs().max(b.abs()) };
         let (x, y) = (along(0.0, start.x, end.x), along(FRAC_PI_2, start.y, end.y));
@@ -231,9 +245,9 @@ impl Shape {
         if self.level > 0.0 { self.span.tangent(t) } else { Vec2::ZERO }
     }
 
-    /// The largest squared speed along the whole of the move.
-    fn cap(&self, m: &Move, limits: &Limits) -> f64 {
-        let [x, y, z] = self.largest_tangent();
+    /// The largest squared speed that may be held between two fractions of the move.
+    fn cap(&self, (t0, t1): (f64, f64), m: &Move, limits: &Limits) -> f64 {
+        let [x, y, z] = self.largest_tangent(t0, t1);
         let axes = if m.is_rapid() { limits.rapid } else { limits.feed };
         let speed = least([x, y, z], axes).min(m.feed.map_or(f64::INFINITY, |feed| feed / 60.0));
         // The normal is the tangent turned by a right angle, so that X and Y change places.
@@ -244,7 +258,7 @@ impl Shape {
 
 /// The highest speed along the whole of a move, in mm/s: feed, axis speeds, centripetal limit. The move has length.
 pub(super) fn speed_cap(m: &Move, limits: &Limits) -> f64 {
-    Shape::of(m).cap(m, limits).sqrt()
+    Shape::of(m).cap((0.0, 1.0), m, limits).sqrt()
 }
 
 /// The largest size of a vector of which no component passes its axis' limit; `along` holds its direction.
@@ -257,11 +271,12 @@ pub(super) fn least(along: [f64; 3], limits: [f64; 3]) -> f64 {
 pub(super) fn stretches(of: usize, m: &Move, limits: &Limits) -> impl Iterator<Item = Stretch> + use<> {
     let shape = Shape::of(m);
     let parts = if shape.length > 0.0 { (shape.sweep.abs() / TURN).ceil().max(1.0) } else { 0.0 };
-    let cap = if parts > 0.0 { shape.cap(m, limits) } else { 0.0 };
+    let part = move |k: u32| f64::from(k) / parts;
+    let caps: Vec<f64> = (0..parts as u32).map(|k| shape.cap((part(k), part(k + 1)), m, limits)).collect();
     let acceleration = limits.acceleration;
     let bend = if shape.sweep == 0.0 { 0.0 } else { shape.span.curvature().abs() * shape.level };
-    (0..parts as u32).map(move |part| {
-        let ends = [part, part + 1].map(|k| shape.tangent(f64::from(k) / parts));
+    caps.into_iter().zip(0..).map(move |(cap, k)| {
+        let ends = [k, k + 1].map(|k| shape.tangent(part(k)));
         let flat = if bend == 0.0 { ends[0] * shape.level } else { Vec2::ZERO };
         let steady = least([flat.x, flat.y, shape.slope], acceleration);
         let plane = [0, 1].map(|axis| {
@@ -269,7 +284,7 @@ pub(super) fn stretches(of: usize, m: &Move, limits: &Limits) -> impl Iterator<I
             Axis { limit: acceleration[axis] / shape.level, start, end }
         });
         let gain = Bound { steady, bend, plane };
-        let from = shape.length * f64::from(part) / parts;
-        Stretch { of, from, length: shape.length / parts, cap, gain, loss: gain.reversed() }
+        let (from, length) = (shape.length * part(k), shape.length / parts);
+        Stretch { of, from, length, cap, gain, loss: gain.reversed() }
     })
 }
