@@ -129,6 +129,7 @@ fn programs_that_are_refused_as_a_whole() {
         long.as_str(),
         "\u{0}\u{1}\u{2}",
         "G81 X0 Y0 Z-1 R1 F10",
+        "G0 X0 Y0 Z5\nG81 X1 Z-1 R1 F10\nG91 X5 Z-2",
     ];
     let said: Vec<_> = rows.iter().map(|text| refusal(text)).collect();
     insta::assert_snapshot!(said.join("\n"));

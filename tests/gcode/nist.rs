@@ -152,12 +152,13 @@ fn what_the_text_leaves_open_is_listed() {
 
 #[test]
 fn drilling_goes_down_and_back_for_every_hole() {
-    let text = "G21 G90 G94 G17 G98 G0 X0 Y0 Z10\nG83 X5 Y0 Z-4 R1 Q2.5 F200\nG91 X5 L2\nG80\nG90 G0 Z20\nM2";
+    let text = "G21 G90 G94 G17 G98 G0 X0 Y0 Z10\nG83 X5 Y0 Z-4 R1 Q2.5 F200\nG91 X5 R-9 Z-5 L2\nG80\nG90 G0 Z20\nM2";
     let program = shop(text);
     let lows: Vec<_> =
         program.toolpath.moves.iter().filter(|m| !m.is_rapid()).map(|m| (m.to.xy.x, m.to.z)).collect();
     // In increments, R counts from the height before the cycle and Z from R (NISTIR 6556, 3.5.16).
-    assert_eq!(lows[..2], [(5.0, -1.5), (5.0, -4.0)]);
+    let expected = [5.0, 10.0, 15.0].into_iter().flat_map(|x| [(x, -1.5), (x, -4.0)]);
+    assert_eq!(lows, expected.collect::<Vec<_>>());
     let holes = program.events.iter().filter(|e| matches!(e.what, What::Drilling { .. })).count();
     assert_eq!(holes, 2, "one for each line");
     assert!(program.toolpath.moves.windows(2).all(|w| w[0].to == w[1].from), "one chain");

@@ -15,6 +15,8 @@ const MOST: f64 = 10_000.0;
 /// The numbers that stay in force from one hole to the next, in mm and seconds.
 #[derive(Clone, Copy, Debug, Default)]
 pub(super) struct Hole {
+    /// Whether they were given from zero.
+    absolute: Option<bool>,
     level: Option<f64>,
     bottom: Option<f64>,
     dwell: Option<f64>,
@@ -83,7 +85,14 @@ impl Controller<'_> {
     fn depths(&mut self, code: u16, codes: &mut Codes) -> Result<Depths, Error> {
         let unit = self.unit().mm();
         let hole = self.hole;
+        let absolute = self.is_absolute();
+        let restated = codes.has(b'R') && codes.has(b'Z');
+        if !restated && hole.absolute.is_some_and(|was| was != absolute) {
+            let what = "G90 or G91 came between the cycle's R and Z and this hole";
+            return Err(wrong(what).remedy("controllers differ in what they mean now: state R and Z again"));
+        }
         self.hole = Hole {
+            absolute: Some(absolute),
             level: codes.value(b'R').map(|r| r * unit).or(hole.level),
             bottom: codes.value(b'Z').map(|z| z * unit).or(hole.bottom),
             dwell: if code == 820 { codes.value(b'P').or(hole.dwell) } else { None },
@@ -93,7 +102,7 @@ impl Controller<'_> {
             |number: Option<f64>, letter| number.ok_or_else(|| wrong(format!("the cycle needs {letter}")));
         let (level, bottom) = (need(self.hole.level, "R")?, need(self.hole.bottom, "Z")?);
         let start = need(self.at[2], "a stated height to start from")?;
-        let (level, bottom) = if self.is_absolute() {
+        let (level, bottom) = if absolute {
             (level + self.offset(2), bottom + self.offset(2))
         } else {
             (start + level, start + level + bottom)
