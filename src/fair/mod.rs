@@ -65,19 +65,17 @@ pub fn fair(points: &[Point], ends: Ends, tolerance: Tolerance, effort: Effort) 
         Effort::Start => (2, 1e-1),
     };
     let mut stations = trace.first_stations(tolerance);
-    let centres: Vec<Point> = stations.iter().map(|station| station.at).collect();
-    let (mut best, _) = judged(&trace, &stations, (&centres, ends), tolerance)?;
-    let (mut accuracy, mut steps) = (1e-1, 0);
+    let (mut best, mut accuracy, mut steps) = (None, 1e-1, 0);
     for round in 1..=rounds {
         // Stations too close for the numbers end the work: what is there already is the answer then.
         let Some((places, taken)) = least_bending(&stations, (ends, trace.length()), radius, accuracy) else {
             break;
         };
-        steps += taken;
         let Some((next, strays)) = judged(&trace, &stations, (&places, ends), tolerance) else { break };
-        best = Fair { steps, ..next };
-        if round >= rounds || (strays.is_empty() && accuracy <= fine) {
-            best.capped = !strays.is_empty();
+        steps += taken;
+        let done = strays.is_empty() && accuracy <= fine;
+        best = Some(Fair { steps, capped: !strays.is_empty(), ..next });
+        if done {
             break;
         }
         if strays.len() * 20 < stations.len() {
@@ -85,7 +83,10 @@ pub fn fair(points: &[Point], ends: Ends, tolerance: Tolerance, effort: Effort) 
         }
         stations = merged(&stations, &strays);
     }
-    Some(best)
+    best.or_else(|| {
+        let centres: Vec<Point> = stations.iter().map(|station| station.at).collect();
+        judged(&trace, &stations, (&centres, ends), tolerance).map(|(through, _)| through)
+    })
 }
 
 /// The spline through `places` at the stations' parameters, measured, and the places where it strays.

@@ -43,7 +43,7 @@ pub fn schedule(toolpath: &mut Toolpath, limits: &Limits) -> Schedule {
 /// even where the direction allows it.
 fn slowest_axis(m: &Move, limits: &Limits) -> f64 {
     let flat = m.span().length() > 0.0;
-    let used = [flat, flat, m.to.z != m.from.z];
+    let used = [flat, flat, (m.to.z - m.from.z).abs() > 0.0];
     let feeds = limits.feed.iter().zip(used).filter(|(_, used)| *used).map(|(feed, _)| *feed);
     feeds.fold(f64::INFINITY, f64::min) * 60.0
 }

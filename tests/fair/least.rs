@@ -172,11 +172,11 @@ fn the_curve_is_held_only_at_its_contacts() {
     let third = |i: usize| (seconds[i + 1] - seconds[i]) / (knots[i + 1] - knots[i]);
     let last = knots.len() - 2;
     let (mut slack, mut total) = (0.0, 0.0);
-    for i in 0..=last {
+    for (i, &knot) in knots[..=last].iter().enumerate() {
         let pull = third(i) - third(if i == 0 { last } else { i - 1 });
-        let j = along.partition_point(|&t| t <= knots[i]) - 1;
+        let j = along.partition_point(|&t| t <= knot) - 1;
         let next = points[(j + 1) % points.len()];
-        let centre = points[j].lerp(next, (knots[i] - along[j]) / (along[j + 1] - along[j]));
+        let centre = points[j].lerp(next, (knot - along[j]) / (along[j + 1] - along[j]));
         let offset = ours.spline.places()[i] - centre;
         slack += pull.hypot() * tolerance + pull.dot(offset);
         total += pull.hypot() * tolerance;
