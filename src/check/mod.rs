@@ -8,6 +8,7 @@ mod cuts;
 mod motion;
 mod place;
 mod region;
+mod rings;
 mod shape;
 mod side;
 mod start_end;

@@ -12,6 +12,7 @@ use kurbo::{Point, Rect, Vec2};
 use super::claim::{Claim, Spot, State, Worst};
 use super::cuts::{Cuts, Pass};
 use super::region::Region;
+use super::rings::in_rings;
 use super::shape::{self, Shape};
 use super::{Asked, Placed, Side, Uncut};
 use crate::geom::{ArcSpline, Span, SpanIndex};
@@ -21,6 +22,7 @@ use crate::toolpath::Move;
 
 const CLEARANCE: &str = "the cutter stays off what is kept";
 const COVERAGE: &str = "the cutter reaches all of the drawing that it can";
+const STRAY: &str = "every cut comes to the drawing";
 const DEPTH: &str = "some pass goes to the depth asked";
 const PASSES: &str = "no pass is deeper than asked";
 
@@ -41,7 +43,7 @@ pub(super) fn judge(
         let claims = claims.into_iter().map(|claim| Claim { state: State::Fails, ..claim }).collect();
         return (Shape { deviation: None, claims }, Vec::new());
     }
-    let (closed, open): (Vec<_>, Vec<_>) = placed.contours.iter().cloned().partition(|(_, c)| c.closed);
+    let (closed, open) = bordering(placed, asked);
     let (shape, beside) = match open.is_empty() {
         true => (None, cuts.passes.iter().collect()),
         false => {
@@ -53,6 +55,7 @@ pub(super) fn judge(
     let clearance = judge.clearance(&beside, cuts);
     let (coverage, uncut) = judge.coverage(&beside, machine, asked);
     let mut claims = vec![judge.clearance_claim(clearance), judge.coverage_claim(coverage)];
+    claims.push(judge.touch_claim(&beside));
     claims.push(depth_claim(&beside, machine, asked));
     claims.push(pass_claim(&beside, machine, asked));
     let deviation = judge.deviation(clearance, coverage);
@@ -61,6 +64,21 @@ pub(super) fn judge(
     claims.extend(shape.map_or_else(Vec::new, |shape| shape.claims));
     (Shape { deviation: worst, claims }, uncut)
 }
+
+/// The contours that bound the region, closed or drawn in pieces, and the open ones, which are cut on the line.
+fn bordering(placed: &Placed, asked: &Asked) -> (Contours, Contours) {
+    let (mut border, open): (Contours, Contours) =
+        placed.contours.iter().cloned().partition(|(_, path)| path.closed);
+    let paths: Vec<&ArcSpline> = open.iter().map(|(_, path)| path).collect();
+    let mut in_ring = in_rings(&paths, asked.tolerance.mm()).into_iter();
+    let (pieces, open): (Contours, Contours) =
+        open.into_iter().partition(|_| in_ring.next().unwrap_or(false));
+    border.extend(pieces);
+    (border, open)
+}
+
+/// Contours with their ids.
+type Contours = Vec<(usize, ArcSpline)>;
 
 struct Judge {
     /// The contours' ids, one for each span of the region's border.
@@ -228,6 +246,31 @@ impl Judge {
             let rounding = 64.0 * f64::EPSILON * (reach + p.to_vec2().hypot());
             self.region.distance(centre) >= reach - rounding && self.is_free(centre)
         })
+    }
+
+    /// Every pass comes within the cutter's reach of the border somewhere.
+    fn touch_claim(&self, beside: &[&Pass]) -> Claim {
+        let mut astray = beside.iter().filter(|pass| !pass.moves.iter().any(|m| self.comes_near(m.span())));
+        let first = astray.next().map(|pass| Spot::end_of(pass.moves[0]));
+        let found = astray.count() + usize::from(first.is_some());
+        Claim::none_of(STRAY, found, first).because("the cutter goes down where nothing is drawn")
+    }
+
+    /// True when some place of a span is within radius and tolerance of the border.
+    fn comes_near(&self, span: Span) -> bool {
+        let reach = self.radius + self.tolerance;
+        let mut pieces = vec![span];
+        while let Some(piece) = pieces.pop() {
+            let here = self.region.distance(piece.at(0.5));
+            let half = piece.length() / 2.0;
+            if here <= reach {
+                return true;
+            }
+            if here - half <= reach && half > self.fine() {
+                pieces.extend([piece.part(0.0, 0.5), piece.part(0.5, 1.0)]);
+            }
+        }
+        false
     }
 
     fn clearance_claim(&self, clearance: Worst) -> Claim {

@@ -119,6 +119,27 @@ fn jagged_traces_are_judged_by_what_touches_the_cutter() {
 }
 
 #[test]
+fn an_outline_drawn_in_pieces_bounds_a_part_too() {
+    let corners = [(10.0, 10.0), (70.0, 10.0), (70.0, 50.0), (10.0, 50.01), (10.0, 10.0)];
+    let mut drawing: Vec<ArcSpline> = corners.windows(2).map(|ends| polyline(ends, false)).collect();
+    drawing[2] = polyline(&[(10.0, 50.0), (70.0, 50.0)], false);
+    let outer = around(10.0, 10.0, 60.0, 40.0, RADIUS);
+    let verdict = judged(std::slice::from_ref(&outer), &drawing, &beside(Side::Outside, 0.1));
+    assert!(verdict.holds, "fails {:?}", failing(&verdict));
+    let inner = rectangle(13.0, 13.0, 54.0, 34.0);
+    let verdict = judged(&[inner], &drawing, &beside(Side::Outside, 0.1));
+    assert!(failing(&verdict).contains(&"the cutter stays off what is kept"), "{:?}", failing(&verdict));
+}
+
+#[test]
+fn a_cut_away_from_everything_is_stray() {
+    let drawing = [rectangle(10.0, 10.0, 60.0, 40.0)];
+    let paths = [around(10.0, 10.0, 60.0, 40.0, RADIUS), rectangle(100.0, 100.0, 20.0, 20.0)];
+    let verdict = judged(&paths, &drawing, &beside(Side::Outside, 0.1));
+    assert_eq!(failing(&verdict), ["every cut comes to the drawing"]);
+}
+
+#[test]
 fn open_contours_are_cut_on_the_line() {
     let stroke = polyline(&[(20.0, 70.0), (60.0, 75.0)], false);
     let drawing = [rectangle(10.0, 10.0, 60.0, 40.0), stroke.clone()];
