@@ -5,7 +5,7 @@ use std::fs;
 use std::path::{Path, PathBuf};
 
 /// What each room may use of the others. Errors, quantities and geometry are for all.
-const ROOMS: [(&str, &[&str]); 23] = [
+const ROOMS: &[(&str, &[&str])] = &[
     ("error", &[]),
     ("num", &["error"]),
     ("geom", &["num"]),
@@ -27,8 +27,15 @@ const ROOMS: [(&str, &[&str]); 23] = [
     ("gcode::write", &["error", "geom", "machine", "num", "toolpath"]),
     ("check", &["gcode", "geom", "machine", "num", "sketch", "toolpath"]),
     ("preview", &["check", "error", "feed", "gcode", "geom", "machine", "num", "sketch", "toolpath"]),
+    ("summary", &["num", "report"]),
     ("report", &["check", "error", "job", "machine"]),
-    ("cli", &["cautions", "error", "files", "job", "machine", "measure", "num", "read", "report", "run"]),
+    (
+        "cli",
+        &[
+            "cautions", "error", "files", "job", "machine", "measure", "num", "read", "report", "run",
+            "summary",
+        ],
+    ),
 ];
 
 /// Every Rust file below `folder`.
