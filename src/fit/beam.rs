@@ -16,7 +16,7 @@ use super::trace::{Bead, Trace};
 /// How many states of a level go on by a tangent arc.
 const TANGENT: usize = 48;
 /// How many states of a level may turn a corner.
-const CORNER: usize = 12;
+const CORNER: usize = 6;
 /// How many ends of a level are refined.
 const REFINED: usize = 24;
 /// How many beads of a reach are tried as its end.

@@ -13,7 +13,7 @@ use super::trace::{Bead, Trace};
 
 /// How many levels a run warms up before the place to start from is chosen on it.
 const WARM_UP: usize = 24;
-/// What the last spans of a lap cost: two arcs, or an arc and a corner.
+/// The least that the last spans of a lap cost.
 const CLOSING: usize = 2;
 /// Shares of the longest possible first tangent that are tried for the last two arcs.
 const SHARES: [f64; 9] = [0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9];
@@ -29,7 +29,8 @@ pub(super) fn closed(trace: &Trace) -> Run {
     } else {
         vec![first]
     };
-    let goal = Goal { at: first.at, heading: (!start.corner).then_some(first.heading), beads };
+    let goal =
+        Goal { at: first.at, heading: (!start.corner).then_some(first.heading), beads, trace: trace.beads() };
     around(&goal, starts).unwrap_or_else(|| Run::straight(trace.beads(), 0, trace.lap()))
 }
 
@@ -72,6 +73,8 @@ struct Goal<'a> {
     heading: Option<Vec2>,
     /// All beads of the lap; the last is the one the run started from.
     beads: &'a [Bead],
+    /// The beads beyond it too: the goal may lie past the last bead of the lap.
+    trace: &'a [Bead],
 }
 
 /// The cheapest lap from the starts back to the goal.
@@ -81,10 +84,10 @@ fn around(goal: &Goal, starts: Vec<State>) -> Option<Run> {
     for level in 0.. {
         for id in beam.level(level).collect::<Vec<_>>() {
             let state = beam.states[id];
-            if let Some(last) = goal.closed_from(&state)
-                && best.as_ref().is_none_or(|b| level + CLOSING < b.0)
+            if let Some((cost, last)) = goal.closed_from(&state)
+                && best.as_ref().is_none_or(|b| level + cost < b.0)
             {
-                best = Some((level + CLOSING, id, last));
+                best = Some((level + cost, id, last));
             }
         }
         if best.as_ref().is_some_and(|b| level + 1 + CLOSING >= b.0) || !beam.step() {
@@ -100,19 +103,22 @@ fn around(goal: &Goal, starts: Vec<State>) -> Option<Run> {
 }
 
 impl Goal<'_> {
-    /// The last spans from `state` to the goal: two arcs that arrive with its heading, else one and a corner, which
-    /// costs the same.
-    fn closed_from(&self, state: &State) -> Option<Run> {
+    /// The cheapest last spans from `state` to the goal, with their cost: two arcs that arrive with its heading, or one
+    /// and a corner, which costs the same; else a line between two corners.
+    fn closed_from(&self, state: &State) -> Option<(usize, Run)> {
         let last = self.beads.len() - 1;
         let from = self.beads[state.bead].along;
         let reached = reach(state, self.beads, &mut Vec::new()) - from;
         if self.beads[last].along - from > 4.0 * reached {
             return None;
         }
-        self.heading.and_then(|heading| self.two_arcs(state, heading)).or_else(|| {
-            let span = Span::leaving(state.at, state.heading, self.at);
-            passes(&span, self.beads, state.bead, last).then(|| Run { spans: vec![span], passed: vec![last] })
-        })
+        let one = |span: Span| {
+            passes(&span, self.trace, state.bead, last).then(|| Run { spans: vec![span], passed: vec![last] })
+        };
+        let two_arcs = || self.heading.and_then(|heading| self.two_arcs(state, heading));
+        let arc = || one(Span::leaving(state.at, state.heading, self.at));
+        let cheap = two_arcs().or_else(arc).map(|run| (CLOSING, run));
+        cheap.or_else(|| one(Span::line(state.at, self.at)).map(|run| (CLOSING + 1, run)))
     }
 
     /// Two tangent arcs from `state` to the goal and its heading.

@@ -29,6 +29,9 @@ pub(super) fn keeps(span: &Span, beads: &[Bead], first: usize, last: usize) -> b
     let start = Matched { foot: 0.0, bead: Bead { at: beside(beads, first, span.start), ..beads[first] } };
     let end =
         Matched { foot: span.length(), bead: Bead { at: beside(beads, last, span.end), band, along: 0.0 } };
+    if first == last && goes_back(beads, first, start.bead.at, end.bead.at) {
+        return false;
+    }
     let mut matched = Vec::with_capacity(last - first + 2);
     matched.push(start);
     let leaving = State::leaving(span);
@@ -48,6 +51,11 @@ pub(super) fn keeps(span: &Span, beads: &[Bead], first: usize, last: usize) -> b
             before = (here, apart);
             fits
         })
+}
+
+/// True when, on the stretch after bead `i`, `to` lies before `from`.
+fn goes_back(beads: &[Bead], i: usize, from: Point, to: Point) -> bool {
+    beads.get(i + 1).is_some_and(|next| (to - from).dot(next.at - beads[i].at) < 0.0)
 }
 
 /// A place on the trace and the length along the span that it is matched to.

@@ -7,7 +7,7 @@ use super::state::State;
 use super::trace::Bead;
 
 /// How many headings are kept for each place.
-const KEPT: usize = 6;
+const KEPT: usize = 3;
 /// Sideways aims at each bead, in bands.
 const AIMS: [f64; 5] = [-0.9, -0.45, 0.0, 0.45, 0.9];
 
