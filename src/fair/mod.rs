@@ -66,7 +66,7 @@ pub fn fair(points: &[Point], ends: Ends, tolerance: Tolerance, effort: Effort) 
     };
     let mut stations = trace.first_stations(tolerance);
     let (mut best, mut accuracy, mut steps) = (None, 1e-1, 0);
-    for round in 1..=rounds {
+    for _ in 0..rounds {
         // Stations too close for the numbers end the work: what is there already is the answer then.
         let Some((places, taken)) = least_bending(&stations, (ends, trace.length()), radius, accuracy) else {
             break;

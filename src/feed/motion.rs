@@ -62,7 +62,7 @@ pub(super) fn run(toolpath: &Toolpath, limits: &Limits, mut tell: impl FnMut(Hap
             now += wait;
         }
         let (first, end) = (course.blocks[block], course.blocks[block + 1]);
-        view.look(first, course.blocks[(block + limits.queue).min(last)]);
+        view.look((first, end), course.blocks[(block + limits.queue).min(last)]);
         for i in first..end {
             let stretch = &course.stretches[i];
             let next = stretch.reach(speed).min(view.limit(i + 1));
@@ -81,9 +81,12 @@ pub(super) fn run(toolpath: &Toolpath, limits: &Limits, mut tell: impl FnMut(Hap
     }
 }
 
-/// What the controller allows at the joints ahead, knowing the course up to some joint at which it must be able to stop.
+/// What the controller allows at the joints of a block, knowing the course up to some joint at which it must be able to
+/// stop.
 struct View<'a> {
     course: &'a Course,
+    /// The squared speed that can surely be lost from the start to each joint.
+    losses: Vec<f64>,
     /// Squared speeds at the joints back from the last known one, until they meet the course's own.
     ahead: Vec<f64>,
     /// The last known joint.
@@ -92,19 +95,29 @@ struct View<'a> {
 
 impl<'a> View<'a> {
     fn of(course: &'a Course) -> Self {
-        Self { course, ahead: Vec::new(), known: 0 }
+        let mut loss = 0.0;
+        let to_end = course.stretches.iter().map(|stretch| {
+            loss += stretch.sure_loss();
+            loss
+        });
+        Self { course, losses: std::iter::once(0.0).chain(to_end).collect(), ahead: Vec::new(), known: 0 }
     }
 
-    /// Looks from joint `here` up to joint `known`.
-    fn look(&mut self, here: usize, known: usize) {
+    /// Looks from the joints of a block, its first to its last, up to joint `known`.
+    fn look(&mut self, (first, last): (usize, usize), known: usize) {
         self.ahead.clear();
         self.known = known;
+        let (joints, losses) = (&self.course.joints, &self.losses);
+        // Where the course's own speeds can surely be lost in time, there is no need to look.
+        if (first..=last).all(|joint| joints[joint] <= losses[known] - losses[joint]) {
+            return;
+        }
         let mut speed = 0.0;
-        for joint in (here..=known).rev() {
+        for joint in (first..=known).rev() {
             if joint < known {
                 speed = self.course.stretches[joint].reach_back(speed);
             }
-            if speed >= self.course.joints[joint] {
+            if speed >= joints[joint] {
                 return;
             }
             self.ahead.push(speed);

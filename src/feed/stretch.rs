@@ -50,6 +50,11 @@ impl Stretch {
         self.loss.reach(end, self.length, self.cap)
     }
 
+    /// The squared speed that can be lost along it from whatever speed it may be run at.
+    pub(super) fn sure_loss(&self) -> f64 {
+        2.0 * self.length * self.loss.over(0.0, self.cap)
+    }
+
     /// The fastest run between two squared speeds that are within reach of each other.
     pub(super) fn run(&self, start: f64, end: f64) -> Run {
         let parts = |peak: f64| {
