@@ -6,10 +6,13 @@
 mod contour;
 mod course;
 mod cut;
+mod dry;
 mod keep_out;
 mod order;
+mod place;
 mod profile;
 mod relief;
+mod resume;
 mod setup;
 mod sides;
 mod start;
@@ -29,6 +32,10 @@ use track::Track;
 
 pub use contour::Lead;
 pub use cut::{Cut, Direction, Entry, Held, Side, TabNumber, Tabs};
+pub use dry::{AirCut, air_cut, frame};
+pub use order::by_cutter;
+pub use place::Placement;
+pub use resume::resume;
 pub use setup::{Heights, KeepOut, Order, Setup, Thickness, Zero};
 pub use sides::{Outline, Sided, beside};
 

@@ -43,6 +43,44 @@ pub(super) fn tour(contours: &[Routed], setup: &Setup) -> Vec<Stop> {
     stops
 }
 
+/// One program's worth of contours for each change of cutter: a contour never comes before one that it encloses, so
+/// that the freeing cut is in the last program. Cutters come in the order of the drawing where that leaves a choice, and
+/// as seldom as the nesting allows.
+pub fn by_cutter(contours: &[Routed]) -> Vec<Vec<Routed>> {
+    let parents = parents(contours);
+    let mut left: Vec<usize> = (0..contours.len()).collect();
+    let mut programs = Vec::new();
+    while !left.is_empty() {
+        let mut cutters: Vec<f64> = left.iter().map(|&i| contours[i].cut.cutter_mm).collect();
+        cutters.dedup_by(|a, b| a.total_cmp(b).is_eq());
+        // Of all cutters the one that gets done with most of its contours.
+        let unfinished = |cutter: f64| {
+            let now = possible(contours, &parents, &left, cutter).len();
+            let all = left.iter().filter(|&&i| contours[i].cut.cutter_mm.total_cmp(&cutter).is_eq()).count();
+            (all - now, usize::MAX - now)
+        };
+        let Some(best) = cutters.into_iter().min_by_key(|&cutter| unfinished(cutter)) else { break };
+        let now = possible(contours, &parents, &left, best);
+        left.retain(|i| !now.contains(i));
+        programs.push(now.into_iter().map(|i| contours[i].clone()).collect());
+    }
+    programs
+}
+
+/// The contours that a cutter can do now: those within which nothing is left for another cutter.
+fn possible(contours: &[Routed], parents: &[Option<usize>], left: &[usize], cutter: f64) -> Vec<usize> {
+    let mut blocked = vec![false; contours.len()];
+    for &i in left.iter().filter(|&&i| contours[i].cut.cutter_mm.total_cmp(&cutter).is_ne()) {
+        let mut around = parents[i];
+        while let Some(j) = around {
+            blocked[j] = true;
+            around = parents[j];
+        }
+    }
+    let is_its_own = |&i: &usize| contours[i].cut.cutter_mm.total_cmp(&cutter).is_eq() && !blocked[i];
+    left.iter().copied().filter(is_its_own).collect()
+}
+
 /// For every contour the smallest closed one around it.
 fn parents(contours: &[Routed]) -> Vec<Option<usize>> {
     let boxes: Vec<Rect> = contours.iter().map(|c| c.path.bbox().unwrap_or_default()).collect();

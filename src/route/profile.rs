@@ -37,8 +37,11 @@ impl Profile {
         ways.dedup();
         let crossings = ways.windows(2).filter_map(|pair| self.crossing(other, pair));
         let mut breaks: Vec<(f64, f64)> = crossings.collect();
-        breaks.extend(ways.iter().map(|&s| (s, self.at(s).max(other.at(s)))));
+        // A break of the lower one is none of both.
+        breaks.extend(self.0.iter().filter(|&&(s, z)| z >= other.at(s)));
+        breaks.extend(other.0.iter().filter(|&&(s, z)| z >= self.at(s)));
         breaks.sort_by(|a, b| a.0.total_cmp(&b.0));
+        breaks.dedup();
         Self(breaks)
     }
 

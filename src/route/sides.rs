@@ -1,5 +1,7 @@
 //! From fitted outlines to the lines of the cutter's centre, each with its start and its way in and out.
 
+use std::f64::consts::SQRT_2;
+
 use kurbo::Point;
 
 use crate::error::Error;
@@ -133,7 +135,8 @@ impl Group<'_> {
                     line.path.clone()
                 };
                 let rough = rough.iter().filter(|rough| rough.along == line.along);
-                let rough = beside_line(&line.path, rough, cut.leave_mm + tolerance);
+                // Where both corners are sharp, the rough one is a diagonal further out.
+                let rough = beside_line(&line.path, rough, cut.leave_mm * SQRT_2 + tolerance);
                 sided.routed.push(self.routed(cut, &path, rough, (line.along[0], all)));
             }
             sided.uncut.extend(uncut.into_iter().map(|u| (self.outlines[u.along].id, u)));

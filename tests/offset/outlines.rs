@@ -1,4 +1,4 @@
-//! Closed outlines as drawn, four cutters, both sides, against the buffer of the `geo` crate, which shares no code with
+//! Closed outlines as drawn and as fitted, four cutters, both sides, against the buffer of the `geo` crate, which shares no code with
 //! ours: it sweeps polygons on an integer grid.
 
 use std::fs;
@@ -8,23 +8,33 @@ use geo::algorithm::buffer::{BufferStyle, LineJoin};
 use geo::{Area, Buffer, MultiPolygon};
 use kurbo::Point;
 use rayon::prelude::*;
-use ribband::geom::{ArcSpline, SpanIndex};
+use ribband::fit::fit;
+use ribband::geom::{ArcSpline, Span, SpanIndex};
+use ribband::num::Tolerance;
 use ribband::offset::{Corners, Side, compensate};
 use ribband::read::{Scale, Unit, read};
 
 /// Larger outlines take the reference seconds each; all of them agreed when last compared.
 const LARGEST: u64 = 1200;
 
+/// The same for fitted outlines, which the reference is given as chords.
+const LARGEST_FITTED: u64 = 250;
+
 const CUTTERS: [f64; 4] = [1.0, 3.175, 6.0, 12.0];
 
-/// The names of the outlines that are closed and not too large.
-fn closed_outlines() -> Vec<String> {
+/// The names of the closed outlines of at most so many vertices, with the tolerance to fit them within.
+fn closed_outlines(largest: u64) -> Vec<(String, Tolerance)> {
     let manifest = fs::read_to_string(outline("manifest.json")).expect("the manifest is there");
     let manifest: serde_json::Value = serde_json::from_str(&manifest).expect("the manifest is JSON");
     let entries = manifest["outlines"].as_array().expect("a list of outlines");
     let closed = entries.iter().filter(|entry| entry["closed"] == true);
-    let small = closed.filter(|entry| entry["vertices"].as_u64().is_some_and(|count| count <= LARGEST));
-    small.map(|entry| entry["csv"].as_str().expect("a file name").to_string()).collect()
+    let small = closed.filter(|entry| entry["vertices"].as_u64().is_some_and(|count| count <= largest));
+    let tolerance = |entry: &serde_json::Value| entry["tolerance_mm"].as_f64().and_then(Tolerance::new);
+    let row = |entry: &serde_json::Value| {
+        let name = entry["csv"].as_str().expect("a file name").to_string();
+        (name, tolerance(entry).expect("a tolerance"))
+    };
+    small.map(row).collect()
 }
 
 fn outline(name: &str) -> std::path::PathBuf {
@@ -39,11 +49,26 @@ fn loops(name: &str) -> Vec<ArcSpline> {
     sketch.contours.into_iter().map(|c| c.path).filter(|path| path.closed).collect()
 }
 
+/// How far a chord may be from its arc in the polygons that the reference is given, in mm.
+const SAGITTA: f64 = 5e-4;
+
+/// The starts of the chords that stand for a span.
+fn chords(span: &Span) -> Vec<(f64, f64)> {
+    let longest = if span.is_line() { f64::INFINITY } else { (8.0 * span.radius() * SAGITTA).sqrt() };
+    let count = (span.length() / longest).ceil().max(1.0);
+    (0..count as usize).map(|k| span.at(k as f64 / count)).map(|p| (p.x, p.y)).collect()
+}
+
+/// The length of all arcs.
+fn arc_length<'a>(paths: impl Iterator<Item = &'a ArcSpline>) -> f64 {
+    paths.flat_map(|path| path.spans()).filter(|span| !span.is_line()).map(|span| span.length()).sum()
+}
+
 /// The region that polygons bound by even and odd.
 fn region(loops: &[ArcSpline]) -> MultiPolygon {
     use geo::BooleanOps;
     let polygon = |chain: &ArcSpline| {
-        let ring = chain.vertices.iter().map(|v| (v.at.x, v.at.y)).collect();
+        let ring = chain.spans().flat_map(|span| chords(&span)).collect();
         MultiPolygon::new(vec![geo::Polygon::new(ring, Vec::new())])
     };
     loops.iter().map(polygon).fold(MultiPolygon::new(Vec::new()), |a, b| a.xor(&b))
@@ -72,13 +97,12 @@ fn compare(name: &str, loops: &[ArcSpline], cutter: f64, side: Side) -> Option<S
     let area = -sign * ours.lines.iter().map(|line| line.path.area()).sum::<f64>();
     let (expected, rings) = buffer(loops, sign * radius);
     let sagitta = radius * STEP * STEP / 8.0;
-    let arcs = ours.lines.iter().flat_map(|l| l.path.spans()).filter(|s| !s.is_line());
-    let chords = arcs.map(|arc| arc.length()).sum::<f64>() * sagitta;
+    let chords = arc_length(ours.lines.iter().map(|l| &l.path)) * (sagitta + SAGITTA);
     if (area - expected).abs() > 1e-4 * expected + chords {
         return Some(format!("{at}: area {area:.4} for {expected:.4}"));
     }
     let count = ours.lines.len();
-    let nearly = || [-sagitta, sagitta].map(|d| buffer(loops, sign * (radius + d)).1);
+    let nearly = || [-sagitta - SAGITTA, sagitta + SAGITTA].map(|d| buffer(loops, sign * (radius + d)).1);
     let agrees = count == rings || {
         let [fewer, more] = nearly();
         count >= rings.min(fewer).min(more) && count <= rings.max(fewer).max(more)
@@ -86,18 +110,30 @@ fn compare(name: &str, loops: &[ArcSpline], cutter: f64, side: Side) -> Option<S
     (!agrees).then(|| format!("{at}: {count} lines for {rings}"))
 }
 
+/// All cutters, both sides, on loops that `prepare` makes of each outline.
+fn compare_all(
+    names: &[(String, Tolerance)],
+    prepare: impl Fn(ArcSpline, Tolerance) -> ArcSpline + Sync,
+) -> Vec<String> {
+    let cases = CUTTERS.iter().flat_map(|&cutter| [Side::Inside, Side::Outside].map(|side| (cutter, side)));
+    let compare = |(name, tolerance): &(String, Tolerance)| {
+        let loops: Vec<ArcSpline> = loops(name).into_iter().map(|path| prepare(path, *tolerance)).collect();
+        cases.clone().filter_map(|(cutter, side)| compare(name, &loops, cutter, side)).collect::<Vec<_>>()
+    };
+    names.par_iter().flat_map_iter(compare).collect()
+}
+
 #[test]
-fn every_outline_agrees_with_an_independent_buffer() {
-    let names = closed_outlines();
-    let sides = [Side::Inside, Side::Outside];
-    let cases = CUTTERS.iter().flat_map(|&cutter| sides.map(|side| (cutter, side)));
-    let failures: Vec<String> = names
-        .par_iter()
-        .flat_map_iter(|name| {
-            let loops = loops(name);
-            cases.clone().filter_map(|(cutter, side)| compare(name, &loops, cutter, side)).collect::<Vec<_>>()
-        })
-        .collect();
+fn outlines_as_drawn_agree_with_an_independent_buffer() {
+    let names = closed_outlines(LARGEST);
+    let failures = compare_all(&names, |path, _| path);
+    assert!(failures.is_empty(), "{} of {}:\n{}", failures.len(), names.len() * 8, failures.join("\n"));
+}
+
+#[test]
+fn outlines_as_fitted_agree_with_an_independent_buffer() {
+    let names = closed_outlines(LARGEST_FITTED);
+    let failures = compare_all(&names, |path, tolerance| fit(&path, tolerance).path);
     assert!(failures.is_empty(), "{} of {}:\n{}", failures.len(), names.len() * 8, failures.join("\n"));
 }
 

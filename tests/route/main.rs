@@ -1,9 +1,12 @@
 //! From centre lines to moves, through the public door.
 #![allow(clippy::float_cmp, reason = "heights of a toolpath are copied, not computed: equality is exact")]
 
+mod dry;
 mod entries;
 mod passes;
+mod programs;
 mod refusals;
+mod sides;
 mod tabs;
 
 use kurbo::Point;
