@@ -75,7 +75,8 @@ impl<'a> Inside<'a> {
 
     fn weigh(&self, area: Rect) -> Weighed {
         let centre = area.center();
-        let nearest = self.edges.nearest_neighbor([centre.x, centre.y]);
+        // Not `nearest_neighbor`, whose bounds rounding can undercut: it then misses the nearest span.
+        let nearest = self.edges.nearest_neighbor_iter([centre.x, centre.y]).next();
         let distance = nearest.map_or(0.0, |edge| edge.0.nearest(centre).distance);
         let inside = !self.ray.holders(std::slice::from_ref(self.contour), centre).is_empty();
         let radius = if inside { distance } else { -distance };

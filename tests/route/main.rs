@@ -1,6 +1,7 @@
 //! From centre lines to moves, through the public door.
 #![allow(clippy::float_cmp, reason = "heights of a toolpath are copied, not computed: equality is exact")]
 
+mod demo;
 mod dry;
 mod entries;
 mod passes;

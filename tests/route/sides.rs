@@ -39,7 +39,7 @@ fn sided(outlines: &[Outline]) -> Sided {
 }
 
 /// No cut below the stock's top comes closer to any outline than `distance`: leads, ramps and helices included.
-fn assert_clear(toolpath: &Toolpath, outlines: &[Outline], distance: f64) {
+pub(crate) fn assert_clear(toolpath: &Toolpath, outlines: &[Outline], distance: f64) {
     let index = SpanIndex::new(outlines.iter().flat_map(|o| o.path.spans()));
     for m in toolpath.moves.iter().filter(|m| m.to.z < 0.0 && !m.is_rapid()) {
         for k in 0..=20 {
