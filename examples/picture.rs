@@ -6,7 +6,7 @@
 use std::fmt::Write;
 
 use ribband::geom::Span;
-use ribband::job::{DrawingUnit, Job, JobFile, Settings};
+use ribband::job::{DrawingArgs, DrawingUnit, Job, JobFile, Settings};
 use ribband::num::Length;
 use ribband::run::{Plan, Source, Unwatched, plan};
 
@@ -17,7 +17,7 @@ fn main() -> Result<(), Box<dyn std::error::Error>> {
     let name = std::env::args().nth(1).ok_or("name a drawing")?;
     let settings = Settings {
         depth: Some(Length::from_mm(3.0)),
-        drawing_unit: Some(DrawingUnit::Mm),
+        drawing: DrawingArgs { drawing_unit: Some(DrawingUnit::Mm), ..DrawingArgs::default() },
         ..Settings::default()
     };
     let job = Job::new(&settings, &JobFile::default())?;

@@ -1,7 +1,9 @@
 //! The command line: what was typed, carried out, and told.
 
 mod args;
+mod check;
 mod machines;
+mod measure;
 mod post;
 mod progress;
 
@@ -13,7 +15,7 @@ use clap::Parser;
 
 use crate::cautions;
 use crate::error::{Error, Kind};
-use crate::files::{self, cannot_write};
+use crate::files::{self, Target, cannot_write};
 use crate::job::JobFile;
 use args::{Arguments, Command};
 
@@ -39,11 +41,21 @@ pub fn main(typed: impl IntoIterator<Item = OsString>) -> u8 {
 fn carry_out(command: Command) -> Result<(), Error> {
     match command {
         Command::Post(typed) => post::post(&typed),
+        Command::Measure(typed) => measure::measure(&typed),
+        Command::Check(typed) => check::check(&typed),
         Command::Machines { name, report, overwrite } => {
             machines::machines(name.as_deref(), report.as_deref(), overwrite)
         }
         Command::Cautions => print(&cautions::list()),
     }
+}
+
+/// Where a report goes, where one was asked for; refused now where writing would be refused later.
+fn report_to(report: Option<&Path>, overwrite: bool, inputs: &[&Path]) -> Result<Option<Target>, Error> {
+    let Some(report) = report else { return Ok(None) };
+    let target = Target::new(Some(report), report, "json");
+    target.check(overwrite, inputs)?;
+    Ok(Some(target))
 }
 
 /// `text` to standard output.

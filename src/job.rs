@@ -1,6 +1,7 @@
 //! What is asked for: settings as typed, merged from all their sources in one place, and judged before any work.
 
 mod bounds;
+mod checking;
 mod cutting;
 mod file;
 mod settings;
@@ -13,9 +14,10 @@ use crate::files;
 use crate::machine::{Cutter, Machine};
 use crate::num::{Length, LengthUnit, Tolerance};
 
+pub use checking::{CheckArgs, CheckJob};
 pub use cutting::Cutting;
 pub use file::{JobFile, LayerSettings};
-pub use settings::{DrawingUnit, Entry, Held, Origin, Outputs, Settings, Zero};
+pub use settings::{DrawingArgs, DrawingUnit, Entry, Held, Origin, Outputs, SettingUpArgs, Settings, Zero};
 
 /// A job whose settings are whole and inside their bounds. Lengths in mm, feeds in mm/min.
 #[derive(Clone, Debug)]
@@ -26,8 +28,6 @@ pub struct Job {
     pub drawing: DrawingSettings,
     /// The tolerance asked for; `None` for the default.
     pub tolerance: Option<Tolerance>,
-    /// How far apart ends may be that are joined; `None` for the tolerance.
-    pub join_mm: Option<f64>,
     /// The cutter's diameter.
     pub cutter_mm: f64,
     /// The cutter's entry in the profile, if it has one.
@@ -36,14 +36,8 @@ pub struct Job {
     pub cutting: Cutting,
     /// How the contours of single layers are cut instead; `None` where they are left out.
     pub layers: BTreeMap<String, Option<Cutting>>,
-    /// Where Z is zero.
-    pub zero: Zero,
-    /// The stock's thickness, where it is given.
-    pub thickness_mm: Option<f64>,
-    /// How far above the stock the cutter travels.
-    pub clearance_mm: f64,
-    /// Where X and Y are zero.
-    pub origin: Origin,
+    /// Zero, stock and the height of travel.
+    pub stock: Stock,
 }
 
 /// How a drawing is read.
@@ -57,6 +51,21 @@ pub struct DrawingSettings {
     pub fit_width_mm: Option<f64>,
     /// The layers to cut; `None` for all.
     pub layers: Option<Vec<String>>,
+    /// How far apart ends may be that are joined; `None` for the tolerance.
+    pub join_mm: Option<f64>,
+}
+
+/// Zero, stock and the height of travel.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Stock {
+    /// Where Z is zero.
+    pub zero: Zero,
+    /// The stock's thickness, where it is given.
+    pub thickness_mm: Option<f64>,
+    /// How far above the stock the cutter travels, where that was said.
+    pub clearance_mm: Option<f64>,
+    /// Where X and Y are zero; `None` where that was not said.
+    pub origin: Option<Origin>,
 }
 
 /// How far above the stock the cutter travels where nothing else is asked for, in mm.
@@ -64,6 +73,36 @@ const DEFAULT_CLEARANCE_MM: f64 = 5.0;
 /// How many units of the last decimal a tolerance must span at least: fitting loses 1.5 of them to the rounding of the
 /// program's numbers.
 const LEAST_TOLERANCE_STEPS: f64 = 3.0;
+
+impl Stock {
+    /// Where X and Y are zero.
+    pub fn origin(&self) -> Origin {
+        self.origin.unwrap_or_default()
+    }
+
+    /// How far above the stock the cutter travels.
+    pub fn clearance_mm(&self) -> f64 {
+        self.clearance_mm.unwrap_or(DEFAULT_CLEARANCE_MM)
+    }
+
+    /// The height of the stock's top, in the program's coordinates.
+    pub fn top_mm(&self) -> f64 {
+        match (self.zero, self.thickness_mm) {
+            (Zero::Bed, Some(thickness)) => thickness,
+            _ => 0.0,
+        }
+    }
+}
+
+impl DrawingSettings {
+    /// How a drawing is read for `machine`, judged.
+    ///
+    /// # Errors
+    /// [`Kind::Settings`] for a setting out of its bounds.
+    pub fn new(typed: &DrawingArgs, machine: &Machine) -> Result<Self, Error> {
+        drawing(typed, Units { machine: machine.unit })
+    }
+}
 
 impl Job {
     /// The job that `typed` asks for, the settings of `file` standing where nothing was typed.
@@ -88,19 +127,14 @@ impl Job {
             Ok((name.clone(), cutting))
         };
         let layers = file.layers.iter().map(entry).collect::<Result<_, Error>>()?;
-        let clearance = mm.length(&bounds::CLEARANCE, all.clearance)?;
         Ok(Self {
-            drawing: drawing(&all, mm)?,
+            drawing: drawing(&all.drawing, mm)?,
             tolerance: tolerance.and_then(Tolerance::new),
-            join_mm: mm.length(&bounds::JOIN, all.join)?,
             cutter_mm,
             cutter,
             cutting,
             layers,
-            zero: all.zero.unwrap_or_default(),
-            thickness_mm: thickness(&all, mm)?,
-            clearance_mm: clearance.unwrap_or(DEFAULT_CLEARANCE_MM),
-            origin: all.origin.unwrap_or_default(),
+            stock: stock(&all.setting_up, mm)?,
             machine,
         })
     }
@@ -128,14 +162,6 @@ pub fn machine(name: Option<&str>) -> Result<Machine, Error> {
             .remedy("save it as UTF-8")
     })?;
     Machine::from_toml(&text).map_err(|error| error.in_file(name))
-}
-
-/// The settings that say how a drawing is read, judged.
-///
-/// # Errors
-/// [`Kind::Settings`] for one out of its bounds.
-pub fn drawing_settings(typed: &Settings, machine: &Machine) -> Result<DrawingSettings, Error> {
-    drawing(typed, Units { machine: machine.unit })
 }
 
 /// Turns what was typed into mm on a machine that works in the given unit.
@@ -166,22 +192,28 @@ fn bare(name: &str, typed: &str, per: &str) -> Error {
         .remedy(format!("write {typed}in{per} or {typed}mm{per}"))
 }
 
-fn drawing(all: &Settings, mm: Units) -> Result<DrawingSettings, Error> {
+fn drawing(typed: &DrawingArgs, mm: Units) -> Result<DrawingSettings, Error> {
     Ok(DrawingSettings {
-        unit: all.drawing_unit,
-        scale: all.scale.map(|scale| bounds::SCALE.hold(scale)).transpose()?,
-        fit_width_mm: mm.length(&bounds::FIT_WIDTH, all.fit_width)?,
-        layers: all.layers.clone(),
+        unit: typed.drawing_unit,
+        scale: typed.scale.map(|scale| bounds::SCALE.hold(scale)).transpose()?,
+        fit_width_mm: mm.length(&bounds::FIT_WIDTH, typed.fit_width)?,
+        layers: typed.layers.clone(),
+        join_mm: mm.length(&bounds::JOIN, typed.join)?,
     })
 }
 
-fn thickness(all: &Settings, mm: Units) -> Result<Option<f64>, Error> {
-    let thickness = mm.length(&bounds::THICKNESS, all.thickness)?;
-    if all.zero == Some(Zero::Bed) && thickness.is_none() {
+fn stock(typed: &SettingUpArgs, mm: Units) -> Result<Stock, Error> {
+    let thickness_mm = mm.length(&bounds::THICKNESS, typed.thickness)?;
+    if typed.zero == Some(Zero::Bed) && thickness_mm.is_none() {
         let what = "zero is on the bed, and the thickness of the stock is not given";
         return Err(Error::new(Kind::Settings, what).remedy("give --thickness, or use --zero stock-top"));
     }
-    Ok(thickness)
+    Ok(Stock {
+        zero: typed.zero.unwrap_or_default(),
+        thickness_mm,
+        clearance_mm: mm.length(&bounds::CLEARANCE, typed.clearance)?,
+        origin: typed.origin,
+    })
 }
 
 fn spans_decimals(tolerance_mm: f64, machine: &Machine) -> Result<(), Error> {

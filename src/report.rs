@@ -213,6 +213,11 @@ impl Report {
     }
 }
 
+/// A check alone as JSON, `{"check": ...}`, with a line end.
+pub fn check_json(check: &Check) -> String {
+    pretty(&BTreeMap::from([("check", check)]))
+}
+
 /// `value` as indented JSON with a line end.
 fn pretty(value: &impl Serialize) -> String {
     let mut text = serde_json::to_string_pretty(value).unwrap_or_default();

@@ -21,10 +21,12 @@ use crate::error::Error;
 use crate::feed::{self, Limits, Times};
 use crate::fit::{self, Fitted};
 use crate::gcode::{self, Dialect, Program};
-use crate::job::Job;
+use crate::job::{CheckJob, DrawingSettings, Job};
 use crate::machine::Machine;
+use crate::measure::{self, Measurement};
 use crate::num::Tolerance;
-use crate::report::Report;
+use crate::read;
+use crate::report::{self, Report};
 use crate::route::{self, Routed, Routing};
 use crate::sketch::{Contour, Sketch};
 use checking::Intended;
@@ -108,7 +110,7 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let fitting = prepare::left_for_fitting(job, &prepared)?;
     let fitted = clock.time("fit", || fit(contours, fitting, progress));
 
-    let shift = placing::shift(job.origin, prepared.part);
+    let shift = placing::shift(job.stock.origin(), prepared.part);
     let setup = cutting::setup(job, prepared.part, shift);
     let routed = cutting::routed(job, contours, fitted.iter().map(|fitted| &fitted.path), shift);
     let routing = clock.time("route", || route::route(&routed, &setup))?;
@@ -155,6 +157,33 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
         warnings,
         timings_ms: clock.times(),
     })
+}
+
+/// Reads a drawing and measures what is in it.
+///
+/// # Errors
+/// Those of reading the drawing.
+pub fn measure(settings: &DrawingSettings, drawing: Source) -> Result<Measurement, Error> {
+    let sketch = read::read(drawing.name, drawing.bytes, &prepare::scale(settings))?;
+    Ok(measure::measure(&sketch, settings.join_mm.unwrap_or(Tolerance::DEFAULT.mm())))
+}
+
+/// Reads a program, whoever wrote it, and checks it against a drawing and a machine.
+///
+/// # Errors
+/// Those of reading the drawing and the program; [`Kind::Refused`](crate::error::Kind::Refused) for a program with
+/// words that are not known. That a claim fails is no error here.
+pub fn check(job: &CheckJob, program: Source, drawing: Source) -> Result<Verdict, Error> {
+    let sketch = read::read(drawing.name, drawing.bytes, &prepare::scale(&job.drawing))?;
+    // Comments may be in any encoding; what a controller executes is ASCII.
+    let text = String::from_utf8_lossy(program.bytes);
+    let read = read_back(&text, &job.machine).map_err(|error| error.in_file(program.name))?;
+    Ok(checking::check_existing(job, &read, &sketch))
+}
+
+/// A verdict as the report shows it.
+pub fn check_report(verdict: &Verdict) -> report::Check {
+    reporting::check_of(verdict)
 }
 
 /// The report of a plan; `drawing` and `program` are the files' names as typed.

@@ -3,7 +3,7 @@
 use std::fmt::Write;
 
 use crate::num::LengthUnit;
-use crate::report::{Report, Setup, State};
+use crate::report::{Check, Claim, Report, Setup, State};
 
 /// The summary of `report`, in the machine's own unit, with a line end.
 pub fn summary(report: &Report) -> String {
@@ -99,6 +99,40 @@ fn cut(setup: &Setup, show: Show) -> String {
     let depth = show.size(setup.depth_mm);
     let side = side_words(&setup.side);
     format!("{depth} {} deep in {passes}, {side}", show.unit())
+}
+
+/// A check claim by claim, with what it leaves to the person at the machine.
+pub fn check_list(check: &Check) -> String {
+    let mut text = String::new();
+    for claim in &check.claims {
+        let state = match claim.state {
+            State::Holds => "holds",
+            State::Fails => "FAILS",
+            State::NotChecked => "open",
+        };
+        let _ = writeln!(text, "{state:6} {}{}", claim.name, figures(claim));
+    }
+    text.push_str("\nNo program can check:\n");
+    for open in &check.not_checked {
+        let _ = writeln!(text, "       {open}");
+    }
+    text
+}
+
+/// What a claim found, what is allowed, where, and why.
+fn figures(claim: &Claim) -> String {
+    let unit = if claim.unit.is_empty() { String::new() } else { format!(" {}", claim.unit) };
+    let mut told = match (claim.value, claim.limit) {
+        (Some(value), Some(limit)) if !claim.unit.is_empty() => format!(": {value:.4} of {limit:.4}{unit}"),
+        _ => String::new(),
+    };
+    if let (State::Fails, Some(at)) = (claim.state, &claim.at) {
+        let _ = write!(told, ", at {at}");
+    }
+    if !claim.note.is_empty() {
+        let _ = write!(told, " ({})", claim.note);
+    }
+    told
 }
 
 /// What a side means for the part's size.

@@ -4,7 +4,7 @@ use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand};
 
-use crate::job::{Outputs, Settings};
+use crate::job::{CheckArgs, DrawingArgs, Outputs, Settings};
 
 /// Traced outlines to smooth router programs.
 #[derive(Parser, Debug)]
@@ -27,6 +27,10 @@ const EXIT_STATUSES: &str = "Exit status:
 pub(super) enum Command {
     /// Write the router program for a drawing
     Post(Post),
+    /// Say what is in a drawing: size, contours, flaws, and the tolerance it supports
+    Measure(Measure),
+    /// Check any program against a drawing and a machine
+    Check(Check),
     /// List the machine profiles, or check and explain one of them
     Machines {
         /// A built-in profile, or a TOML file
@@ -59,6 +63,39 @@ pub(super) struct Post {
     /// Print errors only
     #[arg(long, help_heading = "Files")]
     pub(super) quiet: bool,
+}
+
+/// `ribband measure` as typed.
+#[derive(Args, Debug)]
+pub(super) struct Measure {
+    /// The drawing: SVG, DXF or a list of points
+    pub(super) drawing: PathBuf,
+    #[command(flatten)]
+    pub(super) settings: DrawingArgs,
+    /// Write the figures in JSON
+    #[arg(long, value_name = "FILE", help_heading = "Files")]
+    pub(super) report: Option<PathBuf>,
+    /// Replace the report if it exists already
+    #[arg(long, requires = "report", help_heading = "Files")]
+    pub(super) overwrite: bool,
+}
+
+/// `ribband check` as typed.
+#[derive(Args, Debug)]
+pub(super) struct Check {
+    /// The program
+    pub(super) program: PathBuf,
+    /// The drawing that it should cut
+    #[arg(long, value_name = "DRAWING")]
+    pub(super) against: PathBuf,
+    #[command(flatten)]
+    pub(super) settings: CheckArgs,
+    /// Write the verdict in JSON
+    #[arg(long, value_name = "FILE", help_heading = "Files")]
+    pub(super) report: Option<PathBuf>,
+    /// Replace the report if it exists already
+    #[arg(long, requires = "report", help_heading = "Files")]
+    pub(super) overwrite: bool,
 }
 
 const POST_EXAMPLES: &str = "Examples:

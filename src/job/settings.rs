@@ -10,27 +10,16 @@ use crate::num::{Feed, Length};
 
 /// Every setting, each of which may be absent.
 #[derive(Args, Clone, Debug, Default, Deserialize, Serialize, PartialEq)]
-#[serde(default, deny_unknown_fields, rename_all = "kebab-case")]
+#[serde(default, rename_all = "kebab-case")]
 pub struct Settings {
     /// Machine profile: a built-in name, or a TOML file [default: shop-router]
     #[arg(long, value_name = "NAME or FILE", help_heading = "Machine")]
     pub machine: Option<String>,
 
-    /// What a bare number in the drawing means, where the drawing does not say
-    #[arg(long, value_enum, value_name = "UNIT", help_heading = "Drawing")]
-    pub drawing_unit: Option<DrawingUnit>,
-    /// Scale the drawing by this factor
-    #[arg(long, value_name = "F", help_heading = "Drawing")]
-    pub scale: Option<f64>,
-    /// Scale the drawing to this finished width
-    #[arg(long, value_name = "LEN", help_heading = "Drawing", conflicts_with = "scale")]
-    pub fit_width: Option<Length>,
-    /// Cut only these layers
-    #[arg(long, value_name = "A,B", value_delimiter = ',', help_heading = "Drawing")]
-    pub layers: Option<Vec<String>>,
-    /// Join ends that are at most this far apart [default: the tolerance]
-    #[arg(long, value_name = "LEN", help_heading = "Drawing")]
-    pub join: Option<Length>,
+    /// How the drawing is read.
+    #[command(flatten)]
+    #[serde(flatten)]
+    pub drawing: DrawingArgs,
 
     /// Largest distance allowed between cut path and drawing [default: 0.1mm, or what the trace supports]
     #[arg(long, value_name = "LEN", help_heading = "Accuracy")]
@@ -62,6 +51,37 @@ pub struct Settings {
     #[arg(long, value_enum, help_heading = "Cut")]
     pub held: Option<Held>,
 
+    /// Zero and stock.
+    #[command(flatten)]
+    #[serde(flatten)]
+    pub setting_up: SettingUpArgs,
+}
+
+/// How a drawing is read.
+#[derive(Args, Clone, Debug, Default, Deserialize, Serialize, PartialEq)]
+#[serde(default, rename_all = "kebab-case")]
+pub struct DrawingArgs {
+    /// What a bare number in the drawing means, where the drawing does not say
+    #[arg(long, value_enum, value_name = "UNIT", help_heading = "Drawing")]
+    pub drawing_unit: Option<DrawingUnit>,
+    /// Scale the drawing by this factor
+    #[arg(long, value_name = "F", help_heading = "Drawing")]
+    pub scale: Option<f64>,
+    /// Scale the drawing to this finished width
+    #[arg(long, value_name = "LEN", help_heading = "Drawing", conflicts_with = "scale")]
+    pub fit_width: Option<Length>,
+    /// Cut only these layers
+    #[arg(long, value_name = "A,B", value_delimiter = ',', help_heading = "Drawing")]
+    pub layers: Option<Vec<String>>,
+    /// Join ends that are at most this far apart [default: the tolerance]
+    #[arg(long, value_name = "LEN", help_heading = "Drawing")]
+    pub join: Option<Length>,
+}
+
+/// Zero, stock and the height of travel.
+#[derive(Args, Clone, Debug, Default, Deserialize, Serialize, PartialEq)]
+#[serde(default, rename_all = "kebab-case")]
+pub struct SettingUpArgs {
     /// Where Z is zero [default: stock-top]
     #[arg(long, value_enum, help_heading = "Setting up")]
     pub zero: Option<Zero>,
@@ -178,12 +198,7 @@ impl Settings {
     pub fn or(self, other: Self) -> Self {
         Self {
             machine: self.machine.or(other.machine),
-            drawing_unit: self.drawing_unit.or(other.drawing_unit),
-            // A typed scale replaces a width asked for in the file, and the other way round.
-            scale: if self.fit_width.is_some() { self.scale } else { self.scale.or(other.scale) },
-            fit_width: if self.scale.is_some() { self.fit_width } else { self.fit_width.or(other.fit_width) },
-            layers: self.layers.or(other.layers),
-            join: self.join.or(other.join),
+            drawing: self.drawing.or(other.drawing),
             tolerance: self.tolerance.or(other.tolerance),
             depth: self.depth.or(other.depth),
             pass: self.pass.or(other.pass),
@@ -193,6 +208,27 @@ impl Settings {
             cutter: self.cutter.or(other.cutter),
             entry: self.entry.or(other.entry),
             held: self.held.or(other.held),
+            setting_up: self.setting_up.or(other.setting_up),
+        }
+    }
+}
+
+impl DrawingArgs {
+    fn or(self, other: Self) -> Self {
+        Self {
+            drawing_unit: self.drawing_unit.or(other.drawing_unit),
+            // A typed scale replaces a width asked for in the file, and the other way round.
+            scale: if self.fit_width.is_some() { self.scale } else { self.scale.or(other.scale) },
+            fit_width: if self.scale.is_some() { self.fit_width } else { self.fit_width.or(other.fit_width) },
+            layers: self.layers.or(other.layers),
+            join: self.join.or(other.join),
+        }
+    }
+}
+
+impl SettingUpArgs {
+    fn or(self, other: Self) -> Self {
+        Self {
             zero: self.zero.or(other.zero),
             thickness: self.thickness.or(other.thickness),
             clearance: self.clearance.or(other.clearance),

@@ -1,14 +1,15 @@
 //! The written text held against the drawing, the machine, and what was asked for.
 
-use kurbo::Vec2;
+use kurbo::{Rect, Vec2};
 
+use super::placing::shift;
 use super::prepare::Prepared;
 use crate::check::{self, Asked, Claim, Feeds, State, Verdict};
 use crate::error::{Error, Kind};
 use crate::gcode::Program;
-use crate::job::Job;
+use crate::job::{CheckJob, Job};
 use crate::route::{Cut, Routed, Setup};
-use crate::sketch::Contour;
+use crate::sketch::{Contour, Sketch};
 
 /// What the program says, judged against the drawing as it was read.
 pub(super) fn check(job: &Job, program: &Program, prepared: &Prepared, plan: &Intended) -> Verdict {
@@ -41,6 +42,21 @@ fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
         cutter: job.cutter_mm,
         ..Asked::new(prepared.tolerance)
     }
+}
+
+/// Checks a program that exists already, whoever wrote it.
+pub(super) fn check_existing(job: &CheckJob, program: &Program, sketch: &Sketch) -> Verdict {
+    let top = job.stock.top_mm();
+    let part = sketch.bbox().unwrap_or(Rect::ZERO);
+    let asked = Asked {
+        drawing_at: job.stock.origin.map(|origin| shift(origin, part)),
+        stock_top: top,
+        clearance: job.stock.clearance_mm.map(|clearance| top + clearance),
+        lowest: job.depth_mm.map(|depth| top - depth),
+        pass: job.pass_mm,
+        ..Asked::new(job.tolerance)
+    };
+    check::check(program, sketch, &job.machine, &asked)
 }
 
 /// Refuses a program for which a claim fails.

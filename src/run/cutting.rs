@@ -11,14 +11,14 @@ use crate::sketch::Contour;
 /// What all contours of the program share. The program ends above its zero, or, where that is the drawing's, above the
 /// part's lower left corner.
 pub(super) fn setup(job: &Job, part: Rect, shift: Vec2) -> Setup {
-    let park = if job.origin == Origin::Drawing { part.origin() + shift } else { Point::ORIGIN };
+    let park = if job.stock.origin() == Origin::Drawing { part.origin() + shift } else { Point::ORIGIN };
     Setup {
-        zero: match job.zero {
+        zero: match job.stock.zero {
             job::Zero::StockTop => Zero::StockTop,
             job::Zero::Bed => Zero::Bed,
         },
-        thickness: job.thickness_mm.map(|mm| Thickness { thinnest: mm, thickest: mm }),
-        clearance_mm: job.clearance_mm,
+        thickness: job.stock.thickness_mm.map(|mm| Thickness { thinnest: mm, thickest: mm }),
+        clearance_mm: job.stock.clearance_mm(),
         park,
         step_mm: job.machine.last_place(),
         ..Setup::default()

@@ -27,8 +27,8 @@ pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup,
     notes.extend(cautions::SHORT.map(str::to_owned));
     Header {
         title: file.into_owned(),
-        xy_zero: job.origin.words().into(),
-        z_zero: job.zero.words().into(),
+        xy_zero: job.stock.origin().words().into(),
+        z_zero: job.stock.zero.words().into(),
         cutter: cutter(job),
         clearance: setup.heights().clearance,
         chord_error: tolerance.mm() / 4.0,

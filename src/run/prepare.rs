@@ -31,7 +31,7 @@ pub(super) struct Prepared {
 pub(super) fn prepare(job: &Job, source: Source, clock: &mut Clock) -> Result<Prepared, Error> {
     let sketch = clock.time("read", || read_wanted(job, source))?;
     let (tolerance, told) = clock.time("measure", || tolerance(job, &sketch));
-    let join_mm = job.join_mm.unwrap_or(tolerance.mm());
+    let join_mm = job.drawing.join_mm.unwrap_or(tolerance.mm());
     let cleaned = clock.time("clean", || clean::clean(&sketch, join_mm));
     let bbox = cleaned.contours.iter().filter_map(|c| c.path.bbox()).reduce(|a, b| a.union(b));
     let part = bbox.ok_or_else(nothing_to_cut)?;

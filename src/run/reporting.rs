@@ -75,8 +75,8 @@ fn setup(job: &Job, plan: &Plan) -> Setup {
     Setup {
         machine: job.machine.name.clone(),
         unit: job.machine.unit.symbol().into(),
-        zero: job.zero,
-        origin: job.origin,
+        zero: job.stock.zero,
+        origin: job.stock.origin(),
         extents_mm: extents(&plan.program.toolpath),
         cutter_mm: job.cutter_mm,
         side: "on".into(),
@@ -121,7 +121,7 @@ fn program_of(plan: &Plan, file: &str) -> Program {
     }
 }
 
-fn check_of(verdict: &Verdict) -> Check {
+pub(super) fn check_of(verdict: &Verdict) -> Check {
     Check {
         holds: verdict.holds,
         deviation_mm: verdict.deviation.map(|deviation| deviation.mm),

@@ -4,7 +4,7 @@ mod bad;
 mod demo;
 mod formats;
 mod lengths;
-//mod outlines;
+mod outlines;
 mod outputs;
 mod posting;
 mod reading;

@@ -2,8 +2,8 @@
 
 use kurbo::Point;
 
-/// How finely arcs are sampled, in mm of chord error.
-const SAGITTA: f64 = 1e-4;
+/// How finely arcs are sampled, in mm of chord error: what a sampled deviation may be off by.
+pub(crate) const SAGITTA: f64 = 1e-5;
 
 /// What a program cuts: chains of points at its lowest height, each from where the cutter goes down to where it
 /// leaves, arcs sampled.
@@ -85,9 +85,10 @@ pub(crate) struct Chain {
 }
 
 impl Chain {
-    pub(crate) fn new(points: Vec<Point>) -> Self {
+    /// A chain that will be asked for distances up to `reach`.
+    pub(crate) fn new(points: Vec<Point>, reach: f64) -> Self {
         let length: f64 = points.windows(2).map(|p| p[0].distance(p[1])).sum();
-        let cell = (4.0 * length / points.len() as f64).max(0.5);
+        let cell = (2.0 * length / points.len() as f64).max(2.0 * reach);
         let mut cells: std::collections::HashMap<_, Vec<usize>> = std::collections::HashMap::new();
         for (i, ends) in points.windows(2).enumerate() {
             let steps = (ends[0].distance(ends[1]) / (cell / 2.0)).ceil().max(1.0);
@@ -102,7 +103,7 @@ impl Chain {
         Self { points, cells, cell }
     }
 
-    /// The distance from `p` to the chain, exact where it is below half a cell; else an upper bound.
+    /// The distance from `p` to the chain, exact where it is within reach; else an upper bound.
     pub(crate) fn distance(&self, p: Point) -> f64 {
         let (x, y) = key(p, self.cell);
         let near = (-1..=1).flat_map(|dx| (-1..=1).map(move |dy| (x + dx, y + dy)));

@@ -1,0 +1,44 @@
+//! `ribband check`: any program against a drawing.
+
+use super::args::Check;
+use super::{print, report_to, tell};
+use crate::check::Verdict;
+use crate::error::{Error, Kind};
+use crate::files::{self, Target};
+use crate::job::CheckJob;
+use crate::report;
+use crate::run::{self, Source};
+use crate::summary;
+
+/// Carries out `ribband check`; a claim that fails is an error after everything was told.
+pub(super) fn check(typed: &Check) -> Result<(), Error> {
+    let job = CheckJob::new(&typed.settings)?;
+    let report = report_to(typed.report.as_deref(), typed.overwrite, &[&typed.program, &typed.against])?;
+    let (program, drawing) = (typed.program.display().to_string(), typed.against.display().to_string());
+    let program_bytes = files::read(&typed.program)?;
+    let drawing_bytes = files::read(&typed.against)?;
+    let verdict = run::check(
+        &job,
+        Source { name: &program, bytes: &program_bytes },
+        Source { name: &drawing, bytes: &drawing_bytes },
+    )?;
+    let told = run::check_report(&verdict);
+    if let Some(report) = &report {
+        report.write(report::check_json(&told).as_bytes(), typed.overwrite)?;
+    }
+    let text = summary::check_list(&told);
+    if report == Some(Target::Stdout) {
+        tell(&text);
+    } else {
+        print(&text)?;
+    }
+    holds(&verdict, &program)
+}
+
+fn holds(verdict: &Verdict, program: &str) -> Result<(), Error> {
+    if verdict.holds {
+        return Ok(());
+    }
+    let error = Error::new(Kind::Refused, "the program does not hold against the drawing").in_file(program);
+    Err(error.remedy("the claims that fail are listed above, with the lines of the program"))
+}

@@ -1,0 +1,68 @@
+//! What a program that exists already is to be checked for.
+
+use clap::Args;
+
+use super::{DrawingArgs, DrawingSettings, SettingUpArgs, Stock, Units, bounds, machine, stock};
+use crate::error::Error;
+use crate::machine::Machine;
+use crate::num::{Length, Tolerance};
+
+/// What a program is checked for, as typed.
+#[derive(Args, Clone, Debug, Default)]
+pub struct CheckArgs {
+    /// Machine profile: a built-in name, or a TOML file [default: shop-router]
+    #[arg(long, value_name = "NAME or FILE", help_heading = "Machine")]
+    pub machine: Option<String>,
+    /// How the drawing is read.
+    #[command(flatten)]
+    pub drawing: DrawingArgs,
+    /// Largest distance allowed between cut path and drawing [default: 0.1mm]
+    #[arg(long, value_name = "LEN", help_heading = "Accuracy")]
+    pub tolerance: Option<Length>,
+    /// How deep every contour must be cut, below the top of the stock
+    #[arg(long, value_name = "LEN", help_heading = "Cut")]
+    pub depth: Option<Length>,
+    /// Deepest single pass allowed
+    #[arg(long, value_name = "LEN", help_heading = "Cut")]
+    pub pass: Option<Length>,
+    /// Zero and stock.
+    #[command(flatten)]
+    pub setting_up: SettingUpArgs,
+}
+
+/// A check whose settings are inside their bounds. Lengths in mm.
+#[derive(Clone, Debug)]
+pub struct CheckJob {
+    /// The machine that the program is for.
+    pub machine: Machine,
+    /// How the drawing is read.
+    pub drawing: DrawingSettings,
+    /// The tolerance that must hold.
+    pub tolerance: Tolerance,
+    /// How deep every contour must be cut, where that was said.
+    pub depth_mm: Option<f64>,
+    /// The deepest single pass allowed, where that was said.
+    pub pass_mm: Option<f64>,
+    /// Zero, stock and the height of travel.
+    pub stock: Stock,
+}
+
+impl CheckJob {
+    /// The check that `typed` asks for.
+    ///
+    /// # Errors
+    /// [`Kind::Settings`](crate::error::Kind) for a setting out of its bounds.
+    pub fn new(typed: &CheckArgs) -> Result<Self, Error> {
+        let machine = machine(typed.machine.as_deref())?;
+        let mm = Units { machine: machine.unit };
+        let tolerance = mm.length(&bounds::TOLERANCE, typed.tolerance)?.and_then(Tolerance::new);
+        Ok(Self {
+            drawing: DrawingSettings::new(&typed.drawing, &machine)?,
+            tolerance: tolerance.unwrap_or(Tolerance::DEFAULT),
+            depth_mm: mm.length(&bounds::DEPTH, typed.depth)?,
+            pass_mm: mm.length(&bounds::PASS, typed.pass)?,
+            stock: stock(&typed.setting_up, mm)?,
+            machine,
+        })
+    }
+}
