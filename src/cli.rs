@@ -2,6 +2,7 @@
 
 mod args;
 mod check;
+mod generate;
 mod machines;
 mod measure;
 mod post;
@@ -47,6 +48,8 @@ fn carry_out(command: Command) -> Result<(), Error> {
             machines::machines(name.as_deref(), report.as_deref(), overwrite)
         }
         Command::Cautions => print(&cautions::list()),
+        Command::Completions { shell } => generate::completions(shell),
+        Command::Manual => generate::manual(),
     }
 }
 

@@ -123,7 +123,9 @@ pub fn check_list(check: &Check) -> String {
 fn figures(claim: &Claim) -> String {
     let unit = if claim.unit.is_empty() { String::new() } else { format!(" {}", claim.unit) };
     let mut told = match (claim.value, claim.limit) {
-        (Some(value), Some(limit)) if !claim.unit.is_empty() => format!(": {value:.4} of {limit:.4}{unit}"),
+        (Some(value), Some(limit)) if !claim.unit.is_empty() => {
+            format!(": {} found, {}{unit} allowed", four_places(value), four_places(limit))
+        }
         _ => String::new(),
     };
     if let (State::Fails, Some(at)) = (claim.state, &claim.at) {
@@ -133,6 +135,11 @@ fn figures(claim: &Claim) -> String {
         let _ = write!(told, " ({})", claim.note);
     }
     told
+}
+
+/// `value` to four places, without the noughts at the end.
+fn four_places(value: f64) -> String {
+    format!("{value:.4}").trim_end_matches('0').trim_end_matches('.').to_owned()
 }
 
 /// What a side means for the part's size.

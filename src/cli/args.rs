@@ -3,6 +3,7 @@
 use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand};
+use clap_complete::Shell;
 
 use crate::job::{CheckArgs, DrawingArgs, Outputs, Settings};
 
@@ -45,6 +46,13 @@ pub(super) enum Command {
     },
     /// Print the safety cautions
     Cautions,
+    /// Print a shell's completion script
+    Completions {
+        /// The shell
+        shell: Shell,
+    },
+    /// Print the manual page
+    Manual,
 }
 
 /// `ribband post` as typed.

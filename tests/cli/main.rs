@@ -4,6 +4,7 @@ mod bad;
 mod demo;
 mod formats;
 mod lengths;
+mod other;
 mod outlines;
 mod outputs;
 mod posting;

@@ -5,11 +5,20 @@ use kurbo::Point;
 /// How finely arcs are sampled, in mm of chord error: what a sampled deviation may be off by.
 pub(crate) const SAGITTA: f64 = 1e-5;
 
-/// What a program cuts: chains of points at its lowest height, each from where the cutter goes down to where it
-/// leaves, arcs sampled.
-pub(crate) fn cuts(program: &str) -> Vec<Vec<Point>> {
+/// What a program cuts.
+pub(crate) struct Cuts {
+    /// Chains of points at its lowest height, each from where the cutter goes down to where it leaves, arcs sampled.
+    pub(crate) chains: Vec<Vec<Point>>,
+    /// The largest difference between an arc's radius at its start and at its end: numbers that are rounded describe
+    /// no exact arc, and two readings of them may be that far apart.
+    pub(crate) mismatch: f64,
+}
+
+/// Reads what `program` cuts.
+pub(crate) fn cuts(program: &str) -> Cuts {
     let mut at = Point::ORIGIN;
     let (mut z, mut motion) = (f64::INFINITY, 0);
+    let mut mismatch = 0.0;
     let mut moves: Vec<(f64, i32, Vec<Point>)> = Vec::new();
     for line in program.lines() {
         let words = words(line);
@@ -24,7 +33,11 @@ pub(crate) fn cuts(program: &str) -> Vec<Vec<Point>> {
         let to = Point::new(of('X').unwrap_or(at.x), of('Y').unwrap_or(at.y));
         z = of('Z').unwrap_or(z);
         let centre = Point::new(at.x + of('I').unwrap_or(0.0), at.y + of('J').unwrap_or(0.0));
-        let points = if motion >= 2 { arc(at, to, centre, motion == 3) } else { vec![at, to] };
+        let is_arc = motion >= 2 && (of('I').is_some() || of('J').is_some());
+        if is_arc {
+            mismatch = f64::max(mismatch, (at.distance(centre) - to.distance(centre)).abs());
+        }
+        let points = if is_arc { arc(at, to, centre, motion == 3) } else { vec![at, to] };
         moves.push((z, motion, points));
         at = to;
     }
@@ -40,7 +53,7 @@ pub(crate) fn cuts(program: &str) -> Vec<Vec<Point>> {
         }
         cutting = cuts;
     }
-    chains
+    Cuts { chains, mismatch }
 }
 
 /// The words of a line outside its comments.

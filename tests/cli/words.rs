@@ -14,6 +14,18 @@ fn the_cautions_are_numbered_and_folded() {
 }
 
 #[test]
+fn completions_and_the_manual_name_every_command() {
+    for typed in [&["completions", "bash"][..], &["completions", "fish"], &["manual"]] {
+        let out = ribband().args(typed).output().expect("it runs");
+        assert!(out.status.success(), "{typed:?}");
+        let text = String::from_utf8_lossy(&out.stdout);
+        for word in ["post", "measure", "check", "machines", "cautions", "tolerance"] {
+            assert!(text.contains(word), "{typed:?} does not name {word}");
+        }
+    }
+}
+
+#[test]
 fn a_wrong_command_line_is_status_2_and_help_is_status_0() {
     for typed in [&[][..], &["cut"], &["cautions", "--loud"]] {
         let out = ribband().args(typed).output().expect("it runs");
