@@ -5,7 +5,7 @@ use kurbo::{Point, Rect};
 use super::Asked;
 use super::claim::{Claim, Spot, State, Worst};
 use super::cuts::{Cuts, Pass};
-use crate::geom::{Along, ArcSpline, SpanIndex, Vertex, frechet};
+use crate::geom::{Along, ArcSpline, SpanIndex, Vertex, frechet_within};
 use crate::machine::Machine;
 use crate::num::Deviation;
 
@@ -89,7 +89,7 @@ impl Comparison {
     fn take(&mut self, pass: &Pass, chain: &ArcSpline) -> bool {
         let mut follows = false;
         for target in chain.bbox().map_or_else(Vec::new, |bbox| self.fitting(bbox)) {
-            let deviation = frechet(chain, &self.targets[target].path);
+            let deviation = frechet_within(chain, &self.targets[target].path, self.tolerance);
             follows |= self.note(target, deviation, pass);
         }
         follows
@@ -140,7 +140,7 @@ impl Comparison {
             let candidate = &self.targets[target];
             let inside = bbox.inflate(self.tolerance, self.tolerance).contains_rect(candidate.bbox);
             if inside && !candidate.path.closed && !candidate.path.is_empty() {
-                let deviation = part_deviation(chain, &places, &candidate.path);
+                let deviation = part_deviation(chain, &places, &candidate.path, self.tolerance);
                 follows |= self.note(target, deviation, pass);
             }
         }
@@ -160,7 +160,7 @@ impl Comparison {
         else {
             return;
         };
-        let deviation = frechet(chain, &self.targets[target].path);
+        let deviation = frechet_within(chain, &self.targets[target].path, self.tolerance);
         self.note(target, deviation, pass);
         self.note_worst(deviation, Spot::on(pass.move_near(deviation.at), deviation.at));
     }
@@ -277,19 +277,19 @@ pub(super) fn misfit(a: Rect, b: Rect) -> f64 {
 }
 
 /// The distance of an open contour from the part of the chain between the feet of its ends.
-fn part_deviation(chain: &ArcSpline, places: &SpanIndex, contour: &ArcSpline) -> Deviation {
+fn part_deviation(chain: &ArcSpline, places: &SpanIndex, contour: &ArcSpline, tolerance: f64) -> Deviation {
     let foot = |end: Point| {
         let (span, near) = places.nearest(end)?;
         Some(Along { span, t: near.nearest(end).t })
     };
     let ends = contour.vertices.first().zip(contour.vertices.last());
     let feet = ends.and_then(|(first, last)| foot(first.at).zip(foot(last.at)));
-    let Some((a, b)) = feet else { return frechet(chain, contour) };
+    let Some((a, b)) = feet else { return frechet_within(chain, contour, tolerance) };
     let (first, last) = if a <= b { (a, b) } else { (b, a) };
-    let direct = frechet(&chain.part(first, last), contour);
+    let direct = frechet_within(&chain.part(first, last), contour, tolerance);
     if !chain.closed {
         return direct;
     }
-    let around = frechet(&chain.part(last, first), contour);
+    let around = frechet_within(&chain.part(last, first), contour, tolerance);
     if around.mm < direct.mm { around } else { direct }
 }

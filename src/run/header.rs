@@ -5,6 +5,7 @@ use std::path::Path;
 use crate::cautions;
 use crate::gcode::Header;
 use crate::job::Job;
+use crate::machine::{ArcStyle, Machine};
 use crate::num::Tolerance;
 use crate::route::Setup;
 
@@ -31,10 +32,16 @@ pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup,
         z_zero: job.stock.zero.words().into(),
         cutter: cutter(job),
         clearance: setup.heights().clearance,
-        chord_error: tolerance.mm() / 4.0,
+        chord_error: chord_error(&job.machine, tolerance),
         notes,
         marks: Vec::new(),
     }
+}
+
+/// What of the tolerance is kept for arcs that become straight blocks, in mm: a quarter on a machine without arcs. On
+/// others only arcs that are straight within half a unit of the last place become blocks.
+pub(super) fn chord_error(machine: &Machine, tolerance: Tolerance) -> f64 {
+    if machine.arcs.style == ArcStyle::None { tolerance.mm() / 4.0 } else { 0.0 }
 }
 
 /// The cutter in words.

@@ -5,6 +5,7 @@ use rayon::prelude::*;
 
 use super::Source;
 use super::clock::Clock;
+use super::header::chord_error;
 use crate::clean::{self, Cleaned, Roughness};
 use crate::error::{Error, Kind};
 use crate::job::{DrawingSettings, DrawingUnit, Job};
@@ -62,10 +63,12 @@ pub(super) fn roughness(contours: &[Contour]) -> Vec<Roughness> {
     contours.par_iter().map(|contour| clean::roughness(&contour.path)).collect()
 }
 
-/// What is left of the tolerance for fitting: rounding the program's numbers takes 1.5 units of their last place, and
-/// sampling the drawing's free curves what the reader says.
+/// What is left of the tolerance for fitting: rounding the program's numbers takes 1.5 units of their last place
+/// (and blocks for arcs their share, on a machine without arcs), sampling the drawing's free curves what the reader says, and the check settles no more than a five-hundredth.
 pub(super) fn left_for_fitting(job: &Job, prepared: &Prepared) -> Result<Tolerance, Error> {
-    let spent = 1.5 * job.machine.last_place() + prepared.sketch.sampling_mm;
+    let unsettled = prepared.tolerance.mm() / 500.0;
+    let written = 1.5 * job.machine.last_place() + chord_error(&job.machine, prepared.tolerance);
+    let spent = written + prepared.sketch.sampling_mm + unsettled;
     prepared.tolerance.less(spent).ok_or_else(|| {
         let what = format!("rounding and the drawing's free curves take {spent:.4} mm, the whole tolerance");
         Error::new(Kind::Refused, what).remedy("ask for a wider --tolerance")
