@@ -104,7 +104,7 @@ impl Span {
 
     /// The point at the fraction `t` of the length.
     pub fn at(&self, t: f64) -> Point {
-        if t == 1.0 {
+        if t - 1.0 == 0.0 {
             return self.end;
         }
         let half = self.sweep() / 2.0;

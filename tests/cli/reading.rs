@@ -27,7 +27,7 @@ pub(crate) fn cuts(program: &str) -> Cuts {
             motion = code.1 as i32;
         }
         let coordinate = words.iter().any(|w| "XYZ".contains(w.0));
-        if !coordinate || words.iter().any(|w| *w == ('G', 53.0)) {
+        if !coordinate || words.contains(&('G', 53.0)) {
             continue;
         }
         let to = Point::new(of('X').unwrap_or(at.x), of('Y').unwrap_or(at.y));
@@ -45,7 +45,7 @@ pub(crate) fn cuts(program: &str) -> Cuts {
     let mut chains: Vec<Vec<Point>> = Vec::new();
     let mut cutting = false;
     for (z, motion, points) in moves {
-        let cuts = motion > 0 && z == lowest;
+        let cuts = motion > 0 && z <= lowest;
         match (cutting, cuts) {
             (true, true) => chains.last_mut().expect("one is begun").extend(&points[1..]),
             (false, true) => chains.push(points),
