@@ -14,6 +14,7 @@ mod profile;
 mod relief;
 mod resume;
 mod setup;
+mod shorten;
 mod sides;
 mod start;
 mod tabs;

@@ -4,6 +4,7 @@ use kurbo::{Point, Rect};
 use rstar::RTree;
 use rstar::primitives::GeomWithData;
 
+use super::shorten::{Leg, shortened};
 use super::{Routed, Setup, Work};
 
 /// One stop of the tour: a contour, and the vertex at which it is entered.
@@ -15,11 +16,25 @@ pub(super) struct Stop {
 
 type Entrance = GeomWithData<[f64; 2], Stop>;
 
-/// A tour from the park position, always on to the nearest entrance that is free: all that lies within a contour is
-/// done before it, and a part is finished before the next is begun.
+/// A short tour from the park position and back: all that lies within a contour is done before it, and a part is
+/// finished before the next is begun.
 pub(super) fn tour(contours: &[Routed], setup: &Setup) -> Vec<Stop> {
     let parents = parents(contours);
-    let part = |i: usize| outermost(&parents, i);
+    let stops = nearest_first(contours, &parents, setup);
+    let same_part = |a: &Stop, b: &Stop| outermost(&parents, a.contour) == outermost(&parents, b.contour);
+    let parts: Vec<&[Stop]> = stops.chunk_by(same_part).collect();
+    let out = |stop: &Stop| leaves_at(&contours[stop.contour], stop.entry);
+    let leg = |(number, part): (usize, &&[Stop])| {
+        let (first, last) = (part[0], part[part.len() - 1]);
+        Leg { number, into: contours[first.contour].entrance(first.entry), out: out(&last) }
+    };
+    let legs = shortened(parts.iter().enumerate().map(leg).collect(), setup.park);
+    legs.iter().flat_map(|leg| parts[leg.number].iter().copied()).collect()
+}
+
+/// A tour that always goes on to the nearest entrance that is free.
+fn nearest_first(contours: &[Routed], parents: &[Option<usize>], setup: &Setup) -> Vec<Stop> {
+    let part = |i: usize| outermost(parents, i);
     let mut waiting = vec![0_usize; contours.len()];
     parents.iter().flatten().for_each(|&parent| waiting[parent] += 1);
     let entrances: Vec<Vec<Entrance>> =

@@ -18,7 +18,7 @@ use ribband::read::{Scale, Unit, read};
 const LARGEST: u64 = 1200;
 
 /// The same for fitted outlines, which the reference is given as chords.
-const LARGEST_FITTED: u64 = 250;
+const LARGEST_FITTED: u64 = 600;
 
 const CUTTERS: [f64; 4] = [1.0, 3.175, 6.0, 12.0];
 

@@ -3,7 +3,7 @@
 use kurbo::Point;
 use proptest::prelude::*;
 use ribband::geom::{ArcSpline, Vertex};
-use ribband::route::{Cut, Routed, Setup, Thickness, Zero, route};
+use ribband::route::{Cut, Routed, Setup, Thickness, Work, Zero, route};
 
 use crate::{assert_safe, contour, cut, rectangle};
 
@@ -77,6 +77,15 @@ fn the_tour_goes_on_to_the_nearest_contour() {
     assert_eq!(route(&row, &Setup::default()).expect("a row routes").order, [2, 3, 1]);
 }
 
+/// The shortest way from the origin through all points and back, by trying all orders.
+fn shortest(at: Point, left: &[Point]) -> f64 {
+    let on = |i: usize| {
+        let rest: Vec<Point> = left.iter().enumerate().filter(|&(j, _)| j != i).map(|(_, p)| *p).collect();
+        at.distance(left[i]) + shortest(left[i], &rest)
+    };
+    (0..left.len()).map(on).reduce(f64::min).unwrap_or(at.distance(Point::ORIGIN))
+}
+
 #[test]
 fn settings_out_of_bounds_are_named() {
     let square = rectangle(1, (0.0, 0.0), (9.0, 9.0));
@@ -93,6 +102,19 @@ fn settings_out_of_bounds_are_named() {
 }
 
 proptest! {
+    /// Reversals alone leave a tour of few places close to the shortest.
+    #[test]
+    fn the_tour_is_short(places in prop::collection::vec((0.0..300.0_f64, 0.0..300.0_f64), 2..7)) {
+        let holes: Vec<Routed> = places.iter().zip(1..).map(|(&(x, y), id)| Routed {
+            work: Work::Drill,
+            ..rectangle(id, (x - 0.5, y - 0.5), (1.0, 1.0))
+        }).collect();
+        let toolpath = route(&holes, &Setup::default()).expect("holes route").toolpath;
+        let travelled: f64 = toolpath.moves.iter().map(|m| m.span().length()).sum();
+        let best = shortest(Point::ORIGIN, &places.iter().map(|&p| p.into()).collect::<Vec<Point>>());
+        prop_assert!(travelled >= best - 1e-6 && travelled <= 1.2 * best, "{} for {}", travelled, best);
+    }
+
     #[test]
     fn every_toolpath_is_safe(places in prop::collection::vec((0.0..300.0, 0.0..300.0, any::<bool>()), 1..20)) {
         let contours: Vec<Routed> = places.iter().zip(1..).map(|(&(x, y, closed), id)| {

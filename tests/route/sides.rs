@@ -62,7 +62,10 @@ fn nested_contours_are_cut_on_the_waste_side_inner_ones_first() {
         let routing = route(&lines.routed, &setup).expect("a nested part routes");
         assert_safe(&routing.toolpath, &setup);
         assert_clear(&routing.toolpath, &outlines, 3.0);
-        assert_eq!(routing.order, [3, 2, 1, 4], "the island, its hole, the plate, the other plate");
+        let inner_first: Vec<usize> = routing.order.iter().copied().filter(|&id| id != 4).collect();
+        assert_eq!(inner_first, [3, 2, 1], "the island, its hole, the plate");
+        let apart = routing.order[0] == 4 || routing.order[3] == 4;
+        assert!(apart, "the other plate before or after: {:?}", routing.order);
     }
 }
 
