@@ -173,17 +173,12 @@ pub fn measure(settings: &DrawingSettings, drawing: Source) -> Result<Measuremen
 /// # Errors
 /// Those of reading the drawing and the program; [`Kind::Refused`](crate::error::Kind::Refused) for a program with
 /// words that are not known. That a claim fails is no error here.
-pub fn check(job: &CheckJob, program: Source, drawing: Source) -> Result<Verdict, Error> {
+pub fn check(job: &CheckJob, program: Source, drawing: Source) -> Result<report::Check, Error> {
     let sketch = read::read(drawing.name, drawing.bytes, &prepare::scale(&job.drawing))?;
     // Comments may be in any encoding; what a controller executes is ASCII.
     let text = String::from_utf8_lossy(program.bytes);
     let read = read_back(&text, &job.machine).map_err(|error| error.in_file(program.name))?;
-    Ok(checking::check_existing(job, &read, &sketch))
-}
-
-/// A verdict as the report shows it.
-pub fn check_report(verdict: &Verdict) -> report::Check {
-    reporting::check_of(verdict)
+    Ok(reporting::check_of(&checking::check_existing(job, &read, &sketch)))
 }
 
 /// The report of a plan; `drawing` and `program` are the files' names as typed.

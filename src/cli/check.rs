@@ -2,7 +2,6 @@
 
 use super::args::Check;
 use super::{print, report_to, tell};
-use crate::check::Verdict;
 use crate::error::{Error, Kind};
 use crate::files::{self, Target};
 use crate::job::CheckJob;
@@ -17,12 +16,11 @@ pub(super) fn check(typed: &Check) -> Result<(), Error> {
     let (program, drawing) = (typed.program.display().to_string(), typed.against.display().to_string());
     let program_bytes = files::read(&typed.program)?;
     let drawing_bytes = files::read(&typed.against)?;
-    let verdict = run::check(
+    let told = run::check(
         &job,
         Source { name: &program, bytes: &program_bytes },
         Source { name: &drawing, bytes: &drawing_bytes },
     )?;
-    let told = run::check_report(&verdict);
     if let Some(report) = &report {
         report.write(report::check_json(&told).as_bytes(), typed.overwrite)?;
     }
@@ -32,10 +30,10 @@ pub(super) fn check(typed: &Check) -> Result<(), Error> {
     } else {
         print(&text)?;
     }
-    holds(&verdict, &program)
+    holds(&told, &program)
 }
 
-fn holds(verdict: &Verdict, program: &str) -> Result<(), Error> {
+fn holds(verdict: &report::Check, program: &str) -> Result<(), Error> {
     if verdict.holds {
         return Ok(());
     }
