@@ -137,6 +137,13 @@ pub struct Program {
     pub cut_time_s: f64,
     /// Blocks whose predecessor ends with the controller's queue empty.
     pub starved_blocks: usize,
+    /// The mean speed along the contours.
+    pub mean_mm_min: f64,
+    /// The mean speed on the slowest move along a contour.
+    pub slowest_mm_min: f64,
+    /// The highest feed override at which no block starves, in percent, of those up to 200; 0 where some starve at 100
+    /// already.
+    pub highest_override: u32,
     /// The same job with every vertex of the drawing as a straight block.
     pub as_drawn: AsDrawn,
 }

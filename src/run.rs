@@ -3,6 +3,7 @@
 mod checking;
 mod clock;
 mod cutting;
+mod feeding;
 mod header;
 mod placing;
 mod prepare;
@@ -73,6 +74,8 @@ pub struct Plan {
     pub verdict: Verdict,
     /// Its planned times.
     pub times: Times,
+    /// The highest feed override at which no block starves, in percent; 0 where some starve at 100 % already.
+    pub highest_override: u32,
     /// The same job with the drawing cut as it is.
     pub as_drawn: AsDrawn,
     /// SHA-256 of the drawing's bytes, in hexadecimal.
@@ -113,10 +116,11 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let shift = placing::shift(job.stock.origin(), prepared.part);
     let setup = cutting::setup(job, prepared.part, shift);
     let routed = cutting::routed(job, contours, fitted.iter().map(|fitted| &fitted.path), shift);
-    let routing = clock.time("route", || route::route(&routed, &setup))?;
+    let mut routing = clock.time("route", || route::route(&routed, &setup))?;
 
     let sha256 = digest(source.bytes);
     let header = header::header(job, source.name, prepared.tolerance, &setup, &sha256);
+    let feeds = clock.time("feed", || feeding::suit(&mut routing.toolpath, &header, job));
     let text = clock.time("write", || gcode::write(&routing.toolpath, &header, &job.machine))?;
     let program = clock.time("read back", || read_back(&text, &job.machine))?;
     let verdict = clock.time("check", || {
@@ -126,6 +130,7 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
 
     let limits = Limits::of(&job.machine);
     let times = clock.time("time", || feed::time(&program.toolpath, &limits));
+    let highest_override = clock.time("override", || feed::highest_override(&program.toolpath, &limits));
     let as_drawn = clock.time("as drawn", || {
         let paths = contours.iter().map(|contour| &contour.path);
         let toolpath = route::route(&cutting::routed(job, contours, paths, shift), &setup)?.toolpath;
@@ -138,6 +143,7 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let roughness = clock.time("measure", || prepare::roughness(contours));
     let mut warnings = prepared.warnings;
     warnings.extend(routing.notes.iter().cloned());
+    warnings.extend(feeds);
     Ok(Plan {
         sketch: prepared.sketch,
         cleaned: prepared.cleaned,
@@ -152,6 +158,7 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
         program,
         verdict,
         times,
+        highest_override,
         as_drawn,
         sha256,
         warnings,

@@ -18,6 +18,7 @@ pub fn summary(report: &Report) -> String {
         ("Blocks", blocks(report)),
         ("Deviation", deviation(report, show)),
         ("Time", time(report)),
+        ("Feeding", feeding(report)),
         ("Check", check(report)),
         ("Program", program(report)),
     ];
@@ -192,6 +193,19 @@ fn time(report: &Report) -> String {
         duration(program.as_drawn.time_s),
         duration(program.as_drawn.cut_time_s)
     )
+}
+
+/// Whether the controller keeps up with the reading, and up to which override.
+fn feeding(report: &Report) -> String {
+    let program = &report.program;
+    let drawn = counted(program.as_drawn.starved_blocks, "starved block");
+    match (program.starved_blocks, program.highest_override) {
+        (0, 100..) => {
+            format!("no starved block up to {} % feed override; as drawn {drawn}", program.highest_override)
+        }
+        (0, _) => format!("no starved block at 100 % feed, with nothing to spare; as drawn {drawn}"),
+        (starved, _) => format!("{} at 100 % feed; as drawn {drawn}", counted(starved, "starved block")),
+    }
 }
 
 fn check(report: &Report) -> String {

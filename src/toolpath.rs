@@ -43,6 +43,23 @@ impl Move {
         Span::arc(self.from.xy, self.to.xy, self.bulge)
     }
 
+    /// The move in `n` parts of equal length, at least one.
+    pub fn in_parts(&self, n: usize) -> impl Iterator<Item = Self> + '_ {
+        let n = n.max(1);
+        let span = self.span();
+        let place = move |k: usize| {
+            let t = k as f64 / n as f64;
+            Position { xy: span.at(t), z: self.from.z + (self.to.z - self.from.z) * t }
+        };
+        let ends = move |k: usize| match k {
+            0 => self.from,
+            k if k == n => self.to,
+            k => place(k),
+        };
+        let bulge = (self.bulge.atan() / n as f64).tan();
+        (0..n).map(move |k| Self { from: ends(k), to: ends(k + 1), bulge, ..*self })
+    }
+
     /// True for a rapid.
     pub fn is_rapid(&self) -> bool {
         self.feed.is_none()

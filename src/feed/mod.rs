@@ -18,5 +18,5 @@ pub use chip::{ChipLoad, hold_chip_load};
 pub use limits::Limits;
 pub use motion::{Phase, motion};
 pub use queue::Queue;
-pub use schedule::{MOST_OVERRIDE, Schedule, schedule};
+pub use schedule::{MOST_OVERRIDE, Schedule, highest_override, schedule, schedule_blocks};
 pub use time::{Crawl, Times, time};

@@ -27,6 +27,12 @@ const STEP: f64 = 0.98;
 /// The queue is taken to run dry no later than on the real machine: every block at its feed from end to end, and one
 /// place of the queue left unused. A second schedule lowers nothing more.
 pub fn schedule(toolpath: &mut Toolpath, limits: &Limits) -> Schedule {
+    let lowered = lower(toolpath, limits);
+    Schedule { lowered, highest_override: highest_override(toolpath, limits) }
+}
+
+/// Lowers the feeds of the moves that need it; returns how many.
+fn lower(toolpath: &mut Toolpath, limits: &Limits) -> usize {
     let mut times: Vec<f64> = toolpath.moves.iter().map(|m| least_time(m, limits)).collect();
     sustain(&toolpath.moves, &mut times, limits);
     let mut lowered = 0;
@@ -36,7 +42,24 @@ pub fn schedule(toolpath: &mut Toolpath, limits: &Limits) -> Schedule {
         lowered += usize::from(programmed < feed);
         m.feed = Some(programmed);
     }
-    Schedule { lowered, highest_override: highest_override(toolpath, limits) }
+    lowered
+}
+
+/// Lowers feeds like [`schedule`] for moves of which the controller gets so many `blocks` each: none of one that
+/// rounding leaves out, many of an arc that becomes chords. Returns how many moves it lowered.
+pub fn schedule_blocks(toolpath: &mut Toolpath, blocks: &[usize], limits: &Limits) -> usize {
+    let taken = toolpath.moves.iter().zip(blocks).filter(|(_, n)| **n > 0);
+    let mut pieces = Toolpath { moves: taken.flat_map(|(m, &n)| m.in_parts(n)).collect() };
+    lower(&mut pieces, limits);
+    let mut rest = pieces.moves.iter();
+    let mut lowered = 0;
+    for (m, &n) in toolpath.moves.iter_mut().zip(blocks) {
+        // A move has one feed: the least that its blocks need.
+        let least = rest.by_ref().take(n).filter_map(|piece| piece.feed).reduce(f64::min);
+        lowered += usize::from(least.is_some() && least < m.feed);
+        m.feed = least.or(m.feed);
+    }
+    lowered
 }
 
 /// The largest feed of the slowest axis that a move uses, in mm/min: a feed word above it would be above the profile,
@@ -92,8 +115,8 @@ fn sustain(moves: &[Move], times: &mut [f64], limits: &Limits) {
 }
 
 /// The highest feed override, in whole percent, at which no block starves when every one runs from end to end at the
-/// feed that the override and the machine allow.
-fn highest_override(toolpath: &Toolpath, limits: &Limits) -> u32 {
+/// feed that the override and the machine allow; see [`Schedule::highest_override`].
+pub fn highest_override(toolpath: &Toolpath, limits: &Limits) -> u32 {
     let starves = |percent: u32| {
         let mut queue = Queue::full(limits.queue, limits.interval());
         let mut now = 0.0;

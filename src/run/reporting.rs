@@ -3,6 +3,7 @@
 use kurbo::Rect;
 
 use super::Plan;
+use super::feeding::spindle_rpm;
 use crate::check::{self, Verdict};
 use crate::clean::Roughness;
 use crate::fit::Fitted;
@@ -83,10 +84,16 @@ fn setup(job: &Job, plan: &Plan) -> Setup {
         direction: None,
         depth_mm: most(|cut| cut.depth_mm),
         passes: cuts().map(|cut| cut.passes().len()).max().unwrap_or(0),
-        feed_mm_min: most(|cut| cut.feed),
+        feed_mm_min: fastest_along(&plan.routing.toolpath),
         plunge_mm_min: most(|cut| cut.plunge),
-        spindle_rpm: most(|cut| cut.spindle_rpm),
+        spindle_rpm: spindle_rpm(&plan.routing.toolpath),
     }
+}
+
+/// The largest feed of the moves that go along, in mm/min.
+fn fastest_along(toolpath: &Toolpath) -> f64 {
+    let along = toolpath.moves.iter().filter(|m| m.from.xy != m.to.xy);
+    along.filter_map(|m| m.feed).fold(0.0, f64::max)
 }
 
 /// Least x, y, z and largest x, y, z of the moves.
@@ -112,6 +119,9 @@ fn program_of(plan: &Plan, file: &str) -> Program {
         time_s: plan.times.time_s,
         cut_time_s: plan.times.cut_time_s,
         starved_blocks: plan.times.starved_blocks,
+        mean_mm_min: plan.times.mean_mm_min,
+        slowest_mm_min: plan.times.slowest_mm_min,
+        highest_override: plan.highest_override,
         as_drawn: AsDrawn {
             motion_blocks: plan.as_drawn.motion_blocks,
             time_s: plan.as_drawn.times.time_s,

@@ -1,6 +1,7 @@
 //! Toolpath to program text, in the form that the machine's controller takes.
 
 mod arc;
+mod count;
 mod decimal;
 mod header;
 mod motion;
@@ -11,6 +12,7 @@ use crate::error::{Error, Kind};
 use crate::machine::{Dwell, Machine, RetractBy};
 use crate::toolpath::Toolpath;
 
+pub use count::blocks_of;
 pub use header::{Header, Mark};
 pub use parts::{Part, write_parts};
 
