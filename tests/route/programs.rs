@@ -6,8 +6,9 @@ use ribband::gcode::{Header, write};
 use ribband::geom::ArcSpline;
 use ribband::machine::Machine;
 use ribband::route::{
-    Cut, Entry, Held, Outline, Routed, Setup, Side, TabNumber, Tabs, Thickness, beside, route,
+    Cut, Entry, Held, Outline, Routed, Setup, Side, TabNumber, Tabs, Thickness, air_cut, beside, frame, route,
 };
+use ribband::toolpath::Toolpath;
 
 use crate::sides::{circle, outline};
 use crate::{assert_safe, cut};
@@ -21,18 +22,22 @@ fn program(title: &str, routed: &[Routed]) -> String {
     let setup = setup();
     let routing = route(routed, &setup).expect("it routes");
     assert_safe(&routing.toolpath, &setup);
+    written(title, &routing.toolpath, setup.heights().clearance, routing.notes)
+}
+
+fn written(title: &str, toolpath: &Toolpath, clearance: f64, notes: Vec<String>) -> String {
     let header = Header {
         title: title.into(),
         xy_zero: "lower left of the finished parts".into(),
         z_zero: "top of the stock".into(),
         cutter: "6 mm".into(),
-        clearance: setup.heights().clearance,
+        clearance,
         chord_error: 0.0,
-        notes: routing.notes,
+        notes,
         marks: Vec::new(),
     };
     let machine = Machine::named("shop-router").expect("it is built in");
-    write(&routing.toolpath, &header, &machine).expect("it writes")
+    write(toolpath, &header, &machine).expect("it writes")
 }
 
 fn box_of(x: f64, y: f64, w: f64, h: f64) -> ArcSpline {
@@ -75,4 +80,18 @@ fn a_drilled_plate() {
     outlines.push(outline(1, box_of(0.0, 0.0, 60.0, 40.0), Side::Auto));
     outlines.iter_mut().for_each(|o| o.cut = through(Side::Auto));
     assert_snapshot!(program("drilled plate", &beside(&outlines, 0.01).expect("it has sides").routed));
+}
+
+#[test]
+fn dry_runs_are_programs_whose_spindle_never_turns() {
+    let path = ArcSpline::polyline([(0.0, 0.0), (60.0, 0.0), (60.0, 25.0)].map(Point::from), false);
+    let slot = Routed { id: 1, path, cut: Cut { depth_mm: 4.0, ..cut() }, ..Routed::default() };
+    let setup = setup();
+    let routing = route(std::slice::from_ref(&slot), &setup).expect("it routes");
+    let air = air_cut(&routing.toolpath, &setup);
+    let text = written("air cut", &air.toolpath, setup.heights().clearance + air.lift_mm, Vec::new());
+    assert!(!text.contains(" M3"), "{text}");
+    let framed = frame(&routing.toolpath, &slot.cut, &setup).expect("a frame is traced");
+    let text = written("frame", &framed, setup.heights().clearance, Vec::new());
+    assert!(!text.contains(" M3") && !text.contains("Z-"), "{text}");
 }
