@@ -6,6 +6,7 @@ mod generate;
 mod machines;
 mod measure;
 mod post;
+mod preview;
 mod progress;
 
 use std::ffi::OsString;
@@ -44,6 +45,7 @@ fn carry_out(command: Command) -> Result<(), Error> {
         Command::Post(typed) => post::post(&typed),
         Command::Measure(typed) => measure::measure(&typed),
         Command::Check(typed) => check::check(&typed),
+        Command::Preview(typed) => preview::preview(&typed),
         Command::Machines { name, report, overwrite } => {
             machines::machines(name.as_deref(), report.as_deref(), overwrite)
         }

@@ -9,6 +9,7 @@ mod placing;
 mod prepare;
 mod progress;
 mod reporting;
+mod showing;
 
 use std::collections::BTreeMap;
 
@@ -26,6 +27,7 @@ use crate::job::{CheckJob, DrawingSettings, Job};
 use crate::machine::Machine;
 use crate::measure::{self, Measurement};
 use crate::num::Tolerance;
+use crate::preview::Scene;
 use crate::read;
 use crate::report::{self, Report};
 use crate::route::{self, Routed, Routing};
@@ -191,6 +193,11 @@ pub fn check(job: &CheckJob, program: Source, drawing: Source) -> Result<report:
 /// The report of a plan; `drawing` and `program` are the files' names as typed.
 pub fn report(job: &Job, plan: &Plan, drawing: &str, program: &str) -> Report {
     reporting::report(job, plan, drawing, program)
+}
+
+/// What the pictures of a plan show, with the plan's `report`.
+pub fn scene<'a>(job: &Job, plan: &'a Plan, report: &'a Report) -> Scene<'a> {
+    showing::scene(job, plan, report)
 }
 
 /// Every contour replaced by its path, in the contours' order however many cores work on them.

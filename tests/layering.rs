@@ -26,14 +26,20 @@ const ROOMS: &[(&str, &[&str])] = &[
     ("gcode::read", &["error", "geom", "machine", "num", "toolpath"]),
     ("gcode::write", &["error", "geom", "machine", "num", "toolpath"]),
     ("check", &["gcode", "geom", "machine", "num", "sketch", "toolpath"]),
-    ("preview", &["check", "error", "feed", "gcode", "geom", "machine", "num", "sketch", "toolpath"]),
+    (
+        "preview",
+        &[
+            "cautions", "check", "error", "feed", "gcode", "geom", "machine", "num", "report", "sketch",
+            "summary", "toolpath",
+        ],
+    ),
     ("summary", &["num", "report"]),
     ("report", &["check", "error", "job", "machine"]),
     (
         "cli",
         &[
-            "cautions", "error", "files", "job", "machine", "measure", "num", "read", "report", "run",
-            "summary",
+            "cautions", "error", "files", "job", "machine", "measure", "num", "preview", "read", "report",
+            "run", "summary",
         ],
     ),
 ];

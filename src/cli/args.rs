@@ -32,6 +32,8 @@ pub(super) enum Command {
     Measure(Measure),
     /// Check any program against a drawing and a machine
     Check(Check),
+    /// Draw the chord error of the program that `post` would write
+    Preview(Preview),
     /// List the machine profiles, or check and explain one of them
     Machines {
         /// A built-in profile, or a TOML file
@@ -54,6 +56,21 @@ pub(super) enum Command {
     /// Print the manual page
     Manual,
 }
+
+/// `ribband preview` as typed: all that `post` takes, the picture in the program's place.
+#[derive(Args, Debug)]
+#[command(after_help = PREVIEW_EXAMPLES)]
+pub(super) struct Preview {
+    #[command(flatten)]
+    pub(super) post: Post,
+}
+
+const PREVIEW_EXAMPLES: &str =
+    "The picture is a page to look around in, or, where its name ends in .svg, a still in real size.
+
+Examples:
+  ribband preview sign.dxf --depth 3mm
+  ribband preview blade.svg --depth 6 -o blade-picture.svg";
 
 /// `ribband post` as typed.
 #[derive(Args, Debug)]

@@ -1,1 +1,65 @@
-//! preview: not built yet.
+//! Pictures of a program before it runs: a still in real size, a page to look around in, a sheet for the machine.
+//!
+//! Everything shown is what the text says that was written and checked, beside the drawing it is for. Coordinates are
+//! the program's own, in mm; y points up in them and down on the page.
+
+mod chord;
+mod curvature;
+mod figures;
+mod layers;
+mod markup;
+mod palette;
+mod still;
+mod tour;
+
+use kurbo::{Point, Rect, Vec2};
+
+use crate::check::Verdict;
+use crate::feed::Limits;
+use crate::gcode::read::Program;
+use crate::report::Report;
+use crate::sketch::Sketch;
+
+pub use chord::{Chord, Lap, Station};
+pub use still::still;
+pub use tour::{Kind, Stage};
+
+/// What a picture shows.
+#[derive(Clone, Debug)]
+pub struct Scene<'a> {
+    /// The job's figures.
+    pub report: &'a Report,
+    /// The program's text.
+    pub text: &'a str,
+    /// What it says, read back.
+    pub program: &'a Program,
+    /// The drawing as it was read.
+    pub sketch: &'a Sketch,
+    /// Where the drawing's zero lies in the program's coordinates.
+    pub drawing_at: Vec2,
+    /// What the program was checked for.
+    pub verdict: &'a Verdict,
+    /// The machine's limits.
+    pub limits: Limits,
+    /// The height of the stock's top.
+    pub stock_top: f64,
+}
+
+impl Scene<'_> {
+    /// The box around the finished parts as they are drawn.
+    pub fn part(&self) -> Rect {
+        self.sketch.bbox().unwrap_or(Rect::ZERO) + self.drawing_at
+    }
+
+    /// The box around all that is drawn and all that the cutter sweeps, zero included.
+    fn extent(&self) -> Rect {
+        let radius = self.report.setup.cutter_mm / 2.0;
+        let moves = self.program.toolpath.moves.iter().map(|m| m.span().bbox().inflate(radius, radius));
+        moves.fold(self.part().union_pt(Point::ORIGIN), |all, one| all.union(one))
+    }
+
+    /// Where the deviation is largest, in the program's coordinates.
+    fn worst(&self) -> Option<Point> {
+        self.verdict.deviation.map(|deviation| deviation.at + self.drawing_at)
+    }
+}

@@ -1,0 +1,38 @@
+//! Pictures of a program: what they show, held against the program and the report.
+
+mod still;
+
+use std::path::Path;
+
+use ribband::job::{Job, JobFile, Settings};
+use ribband::report::Report;
+use ribband::run::{self, Plan, Source, Unwatched};
+
+/// A planned job.
+pub(crate) struct Made {
+    pub(crate) job: Job,
+    pub(crate) plan: Plan,
+    pub(crate) report: Report,
+}
+
+impl Made {
+    /// The job that cuts a drawing of the demo 6 mm deep.
+    pub(crate) fn demo(file: &str) -> Self {
+        let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures/demo").join(file);
+        Self::of(file, &std::fs::read(path).expect("a demo drawing"))
+    }
+
+    /// The job that cuts a drawing 6 mm deep.
+    pub(crate) fn of(name: &str, drawing: &[u8]) -> Self {
+        let file = JobFile::parse("job.toml", "depth = \"6mm\"\ndrawing-unit = \"mm\"\nheld = \"vacuum\"\n");
+        let job = Job::new(&Settings::default(), &file.expect("a job file")).expect("a job");
+        let plan = run::plan(&job, Source { name, bytes: drawing }, &Unwatched).expect("a plan");
+        let report = run::report(&job, &plan, name, "part.nc");
+        Self { job, plan, report }
+    }
+
+    /// What its pictures show.
+    pub(crate) fn scene(&self) -> ribband::preview::Scene<'_> {
+        run::scene(&self.job, &self.plan, &self.report)
+    }
+}
