@@ -19,6 +19,7 @@ pub use curve::{Chain, Curve, Drawing, Element, EllipseArc, Nurbs};
 pub use scale::{FileUnit, MM_PER_INCH, Scale, Unit};
 
 use crate::error::{Error, Kind};
+use crate::geom::Vertex;
 use crate::sketch::{Contour, Place, Sketch};
 use sample::{Sampled, sample, sampling_tolerance};
 use text::Content;
@@ -76,6 +77,7 @@ pub fn to_sketch(mut drawing: Drawing, scale: &Scale) -> Result<Sketch, Error> {
         Sketch { mm_per_unit: settled.mm_per_unit, scale_from: settled.from, ..Sketch::default() };
     sketch.notes.extend(settled.note.into_iter().chain(notes));
     fill(&mut sketch, elements, sampling_tolerance(bbox, settled.mm_per_unit));
+    sketch.contours.iter().try_for_each(within_reason)?;
     if sketch.contours.is_empty() { Err(nothing_drawn(&sketch.notes)) } else { Ok(sketch) }
 }
 
@@ -132,9 +134,20 @@ fn left_out(places: &[Place]) -> Option<String> {
     ))
 }
 
+/// A curve whose numbers cancel can have a small box and yet go astray: what it became is looked at, point by point.
+fn within_reason(contour: &Contour) -> Result<(), Error> {
+    let sound = |v: &Vertex| v.at.x.abs() <= LARGEST_MM && v.at.y.abs() <= LARGEST_MM && v.bulge.is_finite();
+    if contour.path.vertices.iter().all(sound) {
+        return Ok(());
+    }
+    let what = format!("contour {} leaves every reasonable size, which cannot be meant", contour.id);
+    Err(Error::new(Kind::Input, what).on_line(contour.place.line).remedy("look for a stray number in it"))
+}
+
 /// Coordinates beyond 10 km are a wrong scale or a damaged file, and would leave the grid that coordinates keep to.
+const LARGEST_MM: f64 = 1e7;
+
 fn check_extent(bbox: Rect, mm_per_unit: f64) -> Result<(), Error> {
-    const LARGEST_MM: f64 = 1e7;
     let largest = [bbox.x0, bbox.y0, bbox.x1, bbox.y1].iter().fold(0.0_f64, |most, c| most.max(c.abs()));
     let largest_mm = largest * mm_per_unit;
     if largest_mm <= LARGEST_MM {

@@ -89,6 +89,15 @@ fn bad_drawings() -> Vec<(&'static str, Vec<u8>, i32, &'static [&'static str])> 
         ("nan.csv", b"0,0\n1,0\nnan,1\n".to_vec(), 3, &["nan.csv, line 3"]),
         ("huge.csv", b"0,0\n1,0\n1e400,1\n".to_vec(), 3, &["huge.csv, line 3"]),
         ("point.csv", b"5,5\n".to_vec(), 3, &["point.csv"]),
+        // Found by fuzzing: the box of the curve is small, its points are not.
+        (
+            "astray.svg",
+            b"<svg width=\"100mm\" height=\"80mm\" viewBox=\"0 0 100 80\" xmlns=\"http://www.w3.org/2000/svg\">\
+              <path transform=\"rotate(30) scale(2 -1)\" d=\"M70 10Q-1e308 20 90 10\"/></svg>"
+                .to_vec(),
+            3,
+            &["astray.svg"],
+        ),
         ("large.csv", b"0,0\n2000,0\n2000,10\n0,0\n".to_vec(), 1, &["large.csv", "1300 x 1300", "--machine"]),
     ]
 }
