@@ -6,7 +6,8 @@ use std::path::Path;
 
 use geo::algorithm::buffer::{BufferStyle, LineJoin};
 use geo::{Area, Buffer, MultiPolygon};
-use kurbo::Point;
+use kurbo::{Point, Vec2};
+use proptest::prelude::*;
 use rayon::prelude::*;
 use ribband::fit::fit;
 use ribband::geom::{ArcSpline, Span, SpanIndex};
@@ -156,5 +157,22 @@ fn the_index_finds_the_nearest_span_of_real_outlines() {
             let least = spans.iter().map(|span| span.nearest(at).distance).fold(f64::INFINITY, f64::min);
             assert!(nearest.nearest(at).distance <= least, "{name} at {at}");
         }
+    }
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(96))]
+
+    /// Jagged stars of all sorts, spikes and slits included.
+    #[test]
+    fn random_stars_agree_with_an_independent_buffer(
+        radii in prop::collection::vec(2.0..60.0_f64, 3..48), cutter in 0.2..20.0_f64, inside in any::<bool>(),
+    ) {
+        let step = std::f64::consts::TAU / radii.len() as f64;
+        let corner = |(k, r): (usize, &f64)| Point::new(70.0, 70.0) + Vec2::from_angle(k as f64 * step) * *r;
+        let star = ArcSpline::polyline(radii.iter().enumerate().map(corner), true);
+        let side = if inside { Side::Inside } else { Side::Outside };
+        let wrong = compare("star", &[star], cutter, side);
+        prop_assert!(wrong.is_none(), "{}", wrong.unwrap_or_default());
     }
 }
