@@ -56,7 +56,7 @@ fn drawing(input: &[u8]) -> Result<bool, String> {
     }
     for contour in &sketch.contours {
         let sound =
-            |v: &ribband::geom::Vertex| v.at.x.abs() <= 1e7 && v.at.y.abs() <= 1e7 && v.bulge.abs() <= 1.0;
+            |v: &ribband::geom::Vertex| v.at.x.abs() <= 1e7 && v.at.y.abs() <= 1e7 && v.bulge.is_finite();
         if !contour.path.vertices.iter().all(sound) {
             return Err(format!("contour {} has a vertex beyond reason", contour.id));
         }
