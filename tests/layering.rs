@@ -25,6 +25,7 @@ const ROOMS: &[(&str, &[&str])] = &[
     ("feed", &["error", "geom", "machine", "num", "toolpath"]),
     ("gcode::read", &["error", "geom", "machine", "num", "toolpath"]),
     ("gcode::write", &["error", "geom", "machine", "num", "toolpath"]),
+    ("condense", &["error", "feed", "fit", "gcode", "geom", "machine", "num", "toolpath"]),
     ("check", &["gcode", "geom", "machine", "num", "sketch", "toolpath"]),
     (
         "preview",
@@ -38,8 +39,8 @@ const ROOMS: &[(&str, &[&str])] = &[
     (
         "cli",
         &[
-            "cautions", "error", "files", "job", "machine", "measure", "num", "preview", "read", "report",
-            "run", "summary",
+            "cautions", "condense", "error", "files", "job", "machine", "measure", "num", "preview", "read",
+            "report", "run", "summary",
         ],
     ),
 ];

@@ -1,4 +1,5 @@
-//! Closed contours: a run that comes back to the place, and where it can the heading, that it started from.
+//! Runs that end at a given place: closed ones come back to the place, and where they can the heading, that they started
+//! from; pinned ones keep the ends of an open trace.
 
 use kurbo::{Point, Vec2};
 
@@ -34,6 +35,17 @@ pub(super) fn closed(trace: &Trace) -> Run {
     around(&goal, starts).unwrap_or_else(|| Run::straight(trace.beads(), 0, trace.lap()))
 }
 
+/// The path of least cost along an open trace from its first bead exactly to its last.
+pub(super) fn pinned(trace: &Trace) -> Run {
+    let beads = trace.beads();
+    let last = beads.len() - 1;
+    let first =
+        State { at: beads[0].at, heading: trace.direction(0), bead: 0, bulge: 0.0, parent: 0, corner: false };
+    let starts = seeds::turned(&first, beads, &mut Vec::new()).into_iter().map(|(_, s)| s).collect();
+    let goal = Goal { at: beads[last].at, heading: None, beads, trace: beads };
+    around(&goal, starts).unwrap_or_else(|| Run::straight(beads, 0, last))
+}
+
 /// A place on a good path, and whether the path turns a corner there.
 struct Start {
     state: State,
@@ -66,7 +78,7 @@ fn furthest(beam: &Beam) -> Option<usize> {
     beam.level(level).max_by_key(|&id| beam.states[id].bead)
 }
 
-/// Where a closed run ends: the place it started from.
+/// Where a run ends: a closed one where it started from.
 struct Goal<'a> {
     at: Point,
     /// The heading to arrive with; `None` at a corner.
@@ -77,7 +89,7 @@ struct Goal<'a> {
     trace: &'a [Bead],
 }
 
-/// The cheapest lap from the starts back to the goal.
+/// The cheapest way from the starts to the goal, for a closed run back to it.
 fn around(goal: &Goal, starts: Vec<State>) -> Option<Run> {
     let mut beam = Beam::new(goal.beads, starts);
     let mut best: Option<(usize, usize, Run)> = None;

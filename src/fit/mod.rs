@@ -9,6 +9,7 @@ mod circle;
 mod closing;
 mod keeping;
 mod narrowing;
+mod pinned;
 mod reach;
 mod refine;
 mod seeds;
@@ -20,6 +21,7 @@ use crate::geom::{ArcSpline, frechet_within};
 use crate::num::{Deviation, Tolerance};
 use trace::Trace;
 
+pub use pinned::fit_pinned;
 pub use simplify::simplify;
 
 /// A contour replaced by tangent arcs and lines.
@@ -48,12 +50,23 @@ impl Fitted {
 /// The result does not depend on the vertex a closed contour starts at, nor on the direction. A contour without
 /// length comes back as it is. The deviation returned is at most `tolerance`.
 pub fn fit(contour: &ArcSpline, tolerance: Tolerance) -> Fitted {
-    let as_drawn = Fitted::new(contour.clone(), contour, tolerance);
-    let Some(trace) = Trace::new(contour, tolerance) else { return as_drawn };
+    let Some(trace) = Trace::new(contour, tolerance) else {
+        return Fitted::new(contour.clone(), contour, tolerance);
+    };
     let ways = match circle::whole(&trace) {
         Some(circle) => vec![circle],
-        None => vec![narrowing::within(trace, tolerance), simplify(contour, tolerance)],
+        None => vec![narrowing::within(trace, tolerance, searched), simplify(contour, tolerance)],
     };
+    least(ways, contour, tolerance)
+}
+
+fn searched(trace: &Trace) -> beam::Run {
+    if trace.closed() { closing::closed(trace) } else { beam::open(trace) }
+}
+
+/// The way of least cost that holds the tolerance; the contour itself where none does.
+fn least(ways: Vec<ArcSpline>, contour: &ArcSpline, tolerance: Tolerance) -> Fitted {
+    let as_drawn = Fitted::new(contour.clone(), contour, tolerance);
     let fitted = ways.into_iter().map(|path| Fitted::new(path, contour, tolerance));
     let held = fitted.filter(|f| f.deviation.mm <= tolerance.mm());
     held.fold(as_drawn, |best, other| if other.cost() < best.cost() { other } else { best })

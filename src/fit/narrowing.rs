@@ -5,19 +5,18 @@ use kurbo::Point;
 use crate::geom::{ArcSpline, Span, frechet_within};
 use crate::num::Tolerance;
 
-use super::beam::{self, Run};
-use super::closing;
+use super::beam::Run;
 use super::keeping::beside;
 use super::trace::{Bead, Trace};
 
 /// How often the search is repeated before spans that stray are given up.
 const ATTEMPTS: usize = 4;
 
-/// The path of least cost found that stays within `tolerance` of the trace.
+/// The path of least cost that `search` finds and that stays within `tolerance` of the trace.
 ///
 /// A span that strays still after the last attempt gives way to the trace's own vertices.
-pub(super) fn within(mut trace: Trace, tolerance: Tolerance) -> ArcSpline {
-    let mut run = searched(&trace);
+pub(super) fn within(mut trace: Trace, tolerance: Tolerance, search: fn(&Trace) -> Run) -> ArcSpline {
+    let mut run = search(&trace);
     for _ in 1..ATTEMPTS {
         let strayed = strayed(&run, &trace, tolerance);
         if strayed.is_empty() {
@@ -26,7 +25,7 @@ pub(super) fn within(mut trace: Trace, tolerance: Tolerance) -> ArcSpline {
         for s in strayed {
             trace.narrow(s.bead, s.excess);
         }
-        run = searched(&trace);
+        run = search(&trace);
     }
     let strayed: Vec<usize> = strayed(&run, &trace, tolerance).iter().map(|s| s.span).collect();
     let stretches = run.spans.iter().zip(run.passed.windows(2)).enumerate();
@@ -37,10 +36,6 @@ pub(super) fn within(mut trace: Trace, tolerance: Tolerance) -> ArcSpline {
         })
         .collect();
     trace.restored(ArcSpline::from_spans(&spans, trace.closed()))
-}
-
-fn searched(trace: &Trace) -> Run {
-    if trace.closed() { closing::closed(trace) } else { beam::open(trace) }
 }
 
 /// Where a run strays from the trace.

@@ -7,6 +7,7 @@ mod header;
 mod motion;
 mod parts;
 mod pen;
+mod run;
 
 use crate::error::{Error, Kind};
 use crate::machine::{Dwell, Machine, RetractBy};
@@ -15,6 +16,7 @@ use crate::toolpath::Toolpath;
 pub use count::blocks_of;
 pub use header::{Header, Mark};
 pub use parts::{Part, write_parts};
+pub use run::{Amid, run};
 
 use motion::Motion;
 use pen::Pen;
