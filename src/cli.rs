@@ -2,6 +2,7 @@
 
 mod args;
 mod check;
+mod condense;
 mod generate;
 mod machines;
 mod measure;
@@ -46,6 +47,7 @@ fn carry_out(command: Command) -> Result<(), Error> {
         Command::Measure(typed) => measure::measure(&typed),
         Command::Check(typed) => check::check(&typed),
         Command::Preview(typed) => preview::preview(&typed),
+        Command::Condense(typed) => condense::condense(&typed),
         Command::Machines { name, report, overwrite } => {
             machines::machines(name.as_deref(), report.as_deref(), overwrite)
         }

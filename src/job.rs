@@ -2,6 +2,7 @@
 
 mod bounds;
 mod checking;
+mod condensing;
 mod cutting;
 mod file;
 mod settings;
@@ -15,6 +16,7 @@ use crate::machine::{Cutter, Machine};
 use crate::num::{Length, LengthUnit, Tolerance};
 
 pub use checking::{CheckArgs, CheckJob};
+pub use condensing::{CondenseArgs, CondenseJob};
 pub use cutting::Cutting;
 pub use file::{JobFile, LayerSettings};
 pub use settings::{DrawingArgs, DrawingUnit, Entry, Held, Origin, Outputs, SettingUpArgs, Settings, Zero};

@@ -208,6 +208,53 @@ pub enum State {
     NotChecked,
 }
 
+/// What came of condensing a program.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Condensed {
+    /// The version that wrote it.
+    pub ribband: String,
+    /// How far the new cuts may be from the old ones.
+    pub tolerance_mm: f64,
+    /// The machine profile's name.
+    pub machine: String,
+    /// The program as it was.
+    pub before: Size,
+    /// The program as it is.
+    pub after: Size,
+    /// Runs of straight cuts.
+    pub runs: usize,
+    /// Those that are cut in fewer blocks now.
+    pub bettered: usize,
+    /// The largest certified distance between a run as it was and as it is; none where nothing was bettered.
+    pub deviation_mm: Option<f64>,
+    /// Why the program is returned as it was; none where it was bettered.
+    pub unchanged: Option<String>,
+    /// What the person at the machine should know, one sentence each.
+    pub warnings: Vec<String>,
+}
+
+/// How large a program is.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Size {
+    /// The file's name as typed; `-` for standard output.
+    pub file: String,
+    /// Lines that a controller must execute.
+    pub blocks: usize,
+    /// Those that move an axis.
+    pub motion_blocks: usize,
+    /// The size of the text.
+    pub bytes: usize,
+    /// Its planned time; none where it holds words that are not known.
+    pub time_s: Option<f64>,
+}
+
+impl Condensed {
+    /// The figures as JSON, with a line end.
+    pub fn json(&self) -> String {
+        pretty(self)
+    }
+}
+
 impl Report {
     /// The report as JSON, with a line end.
     pub fn json(&self) -> String {

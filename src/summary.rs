@@ -3,7 +3,7 @@
 use std::fmt::Write;
 
 use crate::num::LengthUnit;
-use crate::report::{Check, Claim, Report, Setup, State};
+use crate::report::{Check, Claim, Condensed, Report, Setup, State};
 
 /// The summary of `report`, in the machine's own unit, with a line end.
 pub fn summary(report: &Report) -> String {
@@ -100,6 +100,34 @@ fn cut(setup: &Setup, show: Show) -> String {
     let depth = show.size(setup.depth_mm);
     let side = side_words(&setup.side);
     format!("{depth} {} deep in {passes}, {side}", show.unit())
+}
+
+/// What came of condensing a program, with a line end.
+pub fn condensed(told: &Condensed) -> String {
+    let (before, after) = (&told.before, &told.after);
+    let times = match (before.time_s, after.time_s) {
+        (Some(before), Some(after)) => format!("{}, {} before", duration(after), duration(before)),
+        _ => "not planned: the program holds words that are not known".into(),
+    };
+    let mut rows = vec![
+        ("Machine", told.machine.clone()),
+        ("Blocks", format!("{} motion blocks, {} before", after.motion_blocks, before.motion_blocks)),
+        ("Bytes", format!("{}, {} before", after.bytes, before.bytes)),
+        ("Time", times),
+    ];
+    match (&told.unchanged, told.deviation_mm) {
+        (Some(why), _) => rows.push(("Unchanged", format!("the program is as it was: {why}"))),
+        (None, deviation) => {
+            let runs = counted(told.runs, "run");
+            rows.push(("Runs", format!("{} of {runs} of straight cuts in fewer blocks", told.bettered)));
+            let certified = deviation.map_or(String::new(), |mm| format!(" ({mm:.4} mm certified)"));
+            rows.push(("Deviation", format!("within {} mm, as allowed{certified}", told.tolerance_mm)));
+            rows.push(("Check", "read back and checked against the program it was made from".into()));
+        }
+    }
+    rows.push(("Program", format!("{}, {} blocks", after.file, after.blocks)));
+    rows.extend(told.warnings.iter().map(|warning| ("Note", warning.clone())));
+    rows.iter().map(|(name, told)| format!("{name:10} {told}\n")).collect()
 }
 
 /// A check claim by claim, with what it leaves to the person at the machine.

@@ -5,7 +5,7 @@ use std::path::PathBuf;
 use clap::{Args, Parser, Subcommand};
 use clap_complete::Shell;
 
-use crate::job::{CheckArgs, DrawingArgs, Outputs, Settings};
+use crate::job::{CheckArgs, CondenseArgs, DrawingArgs, Outputs, Settings};
 
 /// Traced outlines to smooth router programs.
 #[derive(Parser, Debug)]
@@ -34,6 +34,8 @@ pub(super) enum Command {
     Check(Check),
     /// Draw the chord error of the program that `post` would write
     Preview(Preview),
+    /// Fewer blocks for an existing program, within a tolerance
+    Condense(Condense),
     /// List the machine profiles, or check and explain one of them
     Machines {
         /// A built-in profile, or a TOML file
@@ -120,6 +122,34 @@ pub(super) struct Check {
     pub(super) report: Option<PathBuf>,
     /// Replace the report if it exists already
     #[arg(long, requires = "report", help_heading = "Files")]
+    pub(super) overwrite: bool,
+}
+
+/// `ribband condense` as typed.
+#[derive(Args, Debug)]
+pub(super) struct Condense {
+    /// The program
+    pub(super) program: PathBuf,
+    #[command(flatten)]
+    pub(super) settings: CondenseArgs,
+    #[command(flatten)]
+    pub(super) outputs: CondenseOutputs,
+    /// Print errors only
+    #[arg(long, help_heading = "Files")]
+    pub(super) quiet: bool,
+}
+
+/// Where the outputs of `ribband condense` go.
+#[derive(Args, Debug)]
+pub(super) struct CondenseOutputs {
+    /// Where the new program goes; - is standard output [default: beside the old one]
+    #[arg(short, long, value_name = "FILE", help_heading = "Files")]
+    pub(super) output: Option<PathBuf>,
+    /// Write the figures in JSON
+    #[arg(long, value_name = "FILE", help_heading = "Files")]
+    pub(super) report: Option<PathBuf>,
+    /// Replace outputs that exist already
+    #[arg(long, help_heading = "Files")]
     pub(super) overwrite: bool,
 }
 

@@ -63,7 +63,7 @@ fn targets(typed: &Post, machine: &Machine) -> Result<(Target, Option<Target>), 
 }
 
 /// Refuses a file name that the controller does not take.
-fn named_for(program: &Target, machine: &Machine) -> Result<(), Error> {
+pub(super) fn named_for(program: &Target, machine: &Machine) -> Result<(), Error> {
     let Target::File(path) = program else { return Ok(()) };
     let stem = path.file_stem().unwrap_or_default().to_string_lossy();
     let Some(flaw) = machine.files.flaw_in(&stem) else { return Ok(()) };
