@@ -4,7 +4,7 @@ use std::collections::HashMap;
 
 use rayon::prelude::*;
 
-use super::follow::{Followed, Seen};
+use super::follow::{Followed, Seen, decimals};
 use super::judge;
 use super::runs::Run;
 use crate::fit;
@@ -133,7 +133,7 @@ impl Fitter<'_> {
         let before = self.first(run).before;
         let mut machine = self.machine.clone();
         machine.unit = before.unit;
-        machine.program.decimals = decimals(self.text, before.unit);
+        machine.program.decimals = decimals(self.text).max(least_decimals(before.unit));
         let first_line = self.lines[self.first(run).line - 1];
         machine.program.spaces = first_line.trim().contains([' ', '\t']);
         machine.arcs.style = match machine.arcs.style {
@@ -163,21 +163,12 @@ fn moves(path: &ArcSpline, run: &Run) -> Vec<Move> {
     path.spans().enumerate().map(cut).collect()
 }
 
-/// How many decimals the text needs: those of its own places, and what arcs need (NISTIR 6556, 3.5.3.2).
-pub(super) fn decimals(text: &Text, unit: Unit) -> u32 {
-    const MOST: u32 = 8;
-    let least = if unit == Unit::Mm { 3 } else { 4 };
-    let places = text.blocks.iter().flat_map(|block| text.words(block));
-    let places = places.filter(|word| matches!(word.letter, b'X' | b'Y' | b'Z')).map(|word| word.value);
-    places.fold(least, |most, value| {
-        if most < MOST { (most..MOST).find(|&d| has_decimals(value, d)).unwrap_or(MOST) } else { most }
-    })
-}
-
-/// True when `value` is a number of `decimals` decimals.
-fn has_decimals(value: f64, decimals: u32) -> bool {
-    let counts = value * 10_f64.powi(decimals as i32);
-    (counts - counts.round()).abs() <= 8.0 * f64::EPSILON * counts.abs()
+/// How many decimals the centres of arcs need (NISTIR 6556, 3.5.3.2).
+fn least_decimals(unit: Unit) -> u32 {
+    match unit {
+        Unit::Mm => 3,
+        Unit::Inch => 4,
+    }
 }
 
 /// The motion word of a line without line number, times ten.

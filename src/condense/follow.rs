@@ -21,6 +21,8 @@ pub(super) struct State {
     pub(super) unit: Unit,
     pub(super) incremental: bool,
     pub(super) centre_from_zero: bool,
+    /// One unit of the last place of the text's numbers, in mm or inches.
+    step: f64,
     /// The F word in force, as it stands.
     pub(super) feed: Option<f64>,
     /// Whether arcs are in the XY plane, feeds a minute, and the controller compensates for no cutter.
@@ -83,6 +85,7 @@ pub(super) fn follow(text: &Text, dialect: &Dialect) -> Result<Followed, Error> 
         unit: dialect.unit,
         incremental: false,
         centre_from_zero: dialect.centre_from_zero,
+        step: 10_f64.powi(-(decimals(text) as i32)),
         feed: None,
         plain: [true; 3],
     };
@@ -161,6 +164,11 @@ impl State {
         }
     }
 
+    fn on_grid(&self, mm: f64) -> f64 {
+        let step = self.step * self.unit.mm();
+        (mm / step).round() * step
+    }
+
     /// Where the axis words lead.
     fn go(&mut self, words: &Words) {
         let unit = self.unit.mm();
@@ -169,7 +177,8 @@ impl State {
             let value = value * unit;
             self.at[axis] = match (self.motion, self.incremental) {
                 (Some(0 | 10 | 20 | 30), false) => Some(value),
-                (Some(0 | 10 | 20 | 30), true) => self.at[axis].map(|at| at + value),
+                // Sums stay on the grid of the text's numbers, whatever rounding does.
+                (Some(0 | 10 | 20 | 30), true) => self.at[axis].map(|at| self.on_grid(at + value)),
                 // A cycle goes to the hole, and ends at a height of its own; one that repeats ends elsewhere.
                 (Some(_), false) if axis < 2 && !words.has(b'L') && !words.has(b'K') => Some(value),
                 _ => None,
@@ -179,4 +188,18 @@ impl State {
             self.at[2] = None;
         }
     }
+}
+
+/// How many decimals the places of the text have, at most.
+pub(super) fn decimals(text: &Text) -> u32 {
+    const MOST: u32 = 8;
+    let words = text.blocks.iter().flat_map(|block| text.words(block));
+    let places = words.filter(|word| matches!(word.letter, b'X' | b'Y' | b'Z')).map(|word| word.value);
+    places.fold(0, |most, value| (most..MOST).find(|&d| has_decimals(value, d)).unwrap_or(MOST))
+}
+
+/// True when `value` is a number of `decimals` decimals.
+fn has_decimals(value: f64, decimals: u32) -> bool {
+    let counts = value * 10_f64.powi(decimals as i32);
+    (counts - counts.round()).abs() <= 8.0 * f64::EPSILON * counts.abs()
 }

@@ -16,6 +16,8 @@ use super::trace::{Bead, Trace};
 const WARM_UP: usize = 24;
 /// The least that the last spans of a lap cost.
 const CLOSING: usize = 2;
+/// How many headings a pinned run starts with.
+const STARTS: usize = 24;
 /// Shares of the longest possible first tangent that are tried for the last two arcs.
 const SHARES: [f64; 9] = [0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9];
 
@@ -41,7 +43,8 @@ pub(super) fn pinned(trace: &Trace) -> Run {
     let last = beads.len() - 1;
     let first =
         State { at: beads[0].at, heading: trace.direction(0), bead: 0, bulge: 0.0, parent: 0, corner: false };
-    let starts = seeds::turned(&first, beads, &mut Vec::new()).into_iter().map(|(_, s)| s).collect();
+    let starts = seeds::aimed(&first, beads, &mut Vec::new()).into_iter().map(|(_, s)| s);
+    let starts = starts.take(STARTS).collect();
     let goal = Goal { at: beads[last].at, heading: None, beads, trace: beads };
     around(&goal, starts).unwrap_or_else(|| Run::straight(beads, 0, last))
 }

@@ -15,6 +15,13 @@ const AIMS: [f64; 5] = [-0.9, -0.45, 0.0, 0.45, 0.9];
 ///
 /// The headings tried aim at beads ahead, at growing distances and to either side of them.
 pub(super) fn turned(state: &State, beads: &[Bead], fans: &mut Vec<Fan>) -> Vec<(f64, State)> {
+    let mut found = aimed(state, beads, fans);
+    found.truncate(KEPT);
+    found
+}
+
+/// The state turned to all headings tried, best first, each with its reach in mm.
+pub(super) fn aimed(state: &State, beads: &[Bead], fans: &mut Vec<Fan>) -> Vec<(f64, State)> {
     let mut found: Vec<(f64, State)> = Vec::new();
     let mut ahead = 1;
     let mut best = f64::NEG_INFINITY;
@@ -35,6 +42,5 @@ pub(super) fn turned(state: &State, beads: &[Bead], fans: &mut Vec<Fan>) -> Vec<
         ahead += 1 + ahead / 2;
     }
     found.sort_by(|a, b| b.0.total_cmp(&a.0));
-    found.truncate(KEPT);
     found
 }
