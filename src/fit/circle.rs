@@ -22,7 +22,7 @@ pub(super) fn whole(trace: &Trace) -> Option<ArcSpline> {
         let miss = |b: &Bead| (b.at.distance(centre) - radius).abs() / b.band;
         let worst = lap.iter().map(miss).fold(0.0, f64::max);
         if worst <= 1.0 {
-            return winds_once(lap, centre).then(|| trace.restored(halves(lap[0].at, centre, radius)));
+            return winds_once(lap, centre).then(|| halves(lap[0].at, centre, radius));
         }
         if worst > 3.0 {
             return None;

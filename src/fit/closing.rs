@@ -21,20 +21,27 @@ const STARTS: usize = 24;
 /// Shares of the longest possible first tangent that are tried for the last two arcs.
 const SHARES: [f64; 9] = [0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9];
 
+/// How many places to start from are tried where the run that warms up comes all the way round.
+const TRIES: usize = 3;
+
 /// The path of least cost around a closed trace.
 pub(super) fn closed(trace: &Trace) -> Run {
-    let start = well_placed_start(trace);
-    let last = start.state.bead + trace.lap();
-    let beads = &trace.beads()[..=last];
+    let laps = starts_on_a_run(trace).into_iter().filter_map(|start| lap_from(trace, start));
+    let best = laps.reduce(|best, other| if other.0 < best.0 { other } else { best });
+    best.map_or_else(|| Run::straight(trace.beads(), 0, trace.lap()), |(_, run)| run)
+}
+
+/// The cheapest lap from a start, with its cost.
+fn lap_from(trace: &Trace, start: Start) -> Option<(usize, Run)> {
+    let beads = &trace.beads()[..=start.state.bead + trace.lap()];
     let first = State { bulge: 0.0, parent: 0, corner: false, ..start.state };
     let starts = if start.corner {
         seeds::turned(&first, beads, &mut Vec::new()).into_iter().map(|(_, s)| s).collect()
     } else {
         vec![first]
     };
-    let goal =
-        Goal { at: first.at, heading: (!start.corner).then_some(first.heading), beads, trace: trace.beads() };
-    around(&goal, starts).unwrap_or_else(|| Run::straight(trace.beads(), 0, trace.lap()))
+    let heading = (!start.corner).then_some(first.heading);
+    around(&Goal { at: first.at, heading, beads, trace: trace.beads() }, starts)
 }
 
 /// The path of least cost along an open trace from its first bead exactly to its last.
@@ -46,7 +53,7 @@ pub(super) fn pinned(trace: &Trace) -> Run {
     let starts = seeds::aimed(&first, beads, &mut Vec::new()).into_iter().map(|(_, s)| s);
     let starts = starts.take(STARTS).collect();
     let goal = Goal { at: beads[last].at, heading: None, beads, trace: beads };
-    around(&goal, starts).unwrap_or_else(|| Run::straight(beads, 0, last))
+    around(&goal, starts).map_or_else(|| Run::straight(beads, 0, last), |(_, run)| run)
 }
 
 /// A place on a good path, and whether the path turns a corner there.
@@ -55,8 +62,9 @@ struct Start {
     corner: bool,
 }
 
-/// A joint in the middle of a run that has warmed up: a corner where the run has one, else the middle joint.
-fn well_placed_start(trace: &Trace) -> Start {
+/// Joints of a run that has warmed up: the corner nearest to its middle where it has one, the middle joint, and where
+/// the run comes all the way round, others at a distance from it.
+fn starts_on_a_run(trace: &Trace) -> Vec<Start> {
     let mut beam = Beam::new(trace.beads(), starts(trace, 0));
     for _ in 0..WARM_UP {
         if !beam.step() || furthest(&beam).is_some_and(|id| beam.states[id].bead + 1 >= trace.beads().len()) {
@@ -65,14 +73,21 @@ fn well_placed_start(trace: &Trace) -> Start {
     }
     let end = (0..beam.states.len()).max_by_key(|&id| beam.states[id].bead).unwrap_or(0);
     let chain = beam.chain(end);
+    let comes_round = beam.states[end].bead >= trace.lap();
     let middle = chain.len() / 2;
     let is_corner = |k: usize| chain.get(k + 1).is_some_and(|&next| beam.states[next].corner);
     let corner = (1..chain.len()).filter(|&k| is_corner(k)).min_by_key(|k| k.abs_diff(middle));
-    let mut state = beam.states[chain[corner.unwrap_or(middle)]];
-    if state.bead >= trace.lap() {
-        state.bead -= trace.lap();
-    }
-    Start { state, corner: corner.is_some() }
+    let mut joints: Vec<usize> =
+        corner.into_iter().chain([middle, middle / 2 + 1, middle + middle / 2]).collect();
+    joints.dedup();
+    joints.retain(|&k| k < chain.len());
+    joints.truncate(if comes_round { TRIES } else { 1 });
+    let start = |k: usize| {
+        let mut state = beam.states[chain[k]];
+        state.bead %= trace.lap();
+        Start { state, corner: is_corner(k) }
+    };
+    joints.into_iter().map(start).collect()
 }
 
 /// The state of the last level that has come furthest.
@@ -92,8 +107,8 @@ struct Goal<'a> {
     trace: &'a [Bead],
 }
 
-/// The cheapest way from the starts to the goal, for a closed run back to it.
-fn around(goal: &Goal, starts: Vec<State>) -> Option<Run> {
+/// The cheapest way from the starts to the goal, for a closed run back to it, with its cost.
+fn around(goal: &Goal, starts: Vec<State>) -> Option<(usize, Run)> {
     let mut beam = Beam::new(goal.beads, starts);
     let mut best: Option<(usize, usize, Run)> = None;
     for level in 0.. {
@@ -109,11 +124,11 @@ fn around(goal: &Goal, starts: Vec<State>) -> Option<Run> {
             break;
         }
     }
-    best.map(|(_, id, last)| {
+    best.map(|(cost, id, last)| {
         let mut run = beam.run(id);
         run.spans.extend(last.spans);
         run.passed.extend(last.passed);
-        run
+        (cost, run)
     })
 }
 

@@ -35,7 +35,7 @@ pub(super) fn within(mut trace: Trace, tolerance: Tolerance, search: fn(&Trace) 
             Err(_) => vec![*span],
         })
         .collect();
-    trace.restored(ArcSpline::from_spans(&spans, trace.closed()))
+    ArcSpline::from_spans(&spans, trace.closed())
 }
 
 /// Where a run strays from the trace.

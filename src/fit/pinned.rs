@@ -4,15 +4,14 @@ use crate::geom::ArcSpline;
 use crate::num::Tolerance;
 
 use super::trace::Trace;
-use super::{Fitted, closing, least, narrowing, simplify};
+use super::{Fitted, closing, least};
 
 /// Replaces the open `contour` as [`fit`](super::fit) does, but from its very first point to its very last.
 ///
 /// For a stretch of something longer, which must go on where it went on before.
 pub fn fit_pinned(contour: &ArcSpline, tolerance: Tolerance) -> Fitted {
     let Some(trace) = Trace::new(contour, tolerance).filter(|trace| !trace.closed()) else {
-        return Fitted::new(contour.clone(), contour, tolerance);
+        return Fitted::as_drawn(contour);
     };
-    let ways = vec![narrowing::within(trace, tolerance, closing::pinned), simplify(contour, tolerance)];
-    least(ways, contour, tolerance)
+    least(&trace, contour, tolerance, closing::pinned)
 }

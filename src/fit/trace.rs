@@ -15,15 +15,12 @@ pub(super) struct Bead {
     pub(super) along: f64,
 }
 
-/// The beads of one contour, in canonical order: a closed contour runs counter-clockwise from its lowest vertex, an
-/// open one from its lower end, so that the result depends on neither. A closed trace repeats its beads for a
-/// second lap, so that a run may start anywhere.
+/// The beads of one contour. A closed trace repeats its beads for a second lap, so that a run may start anywhere.
 pub(super) struct Trace {
     beads: Vec<Bead>,
     /// Beads in one lap of a closed trace, 0 for an open one.
     lap: usize,
     tolerance: f64,
-    reversed: bool,
 }
 
 impl Trace {
@@ -37,24 +34,19 @@ impl Trace {
         if points.len() < 2 {
             return None;
         }
-        let reversed = if contour.closed { turn_to_canonical(&mut points) } else { runs_down(&points) };
-        if reversed {
-            points.reverse();
-        }
-        if contour.closed && reversed {
-            points.rotate_right(1);
-        }
         let lap = if contour.closed { points.len() } else { 0 };
         if contour.closed {
             points.extend_from_within(..);
             points.push(points[0]);
         }
-        Some(Self {
-            beads: strung(&points, tolerance.mm() * SHARE),
-            lap,
-            tolerance: tolerance.mm(),
-            reversed,
-        })
+        Some(Self { beads: strung(&points, tolerance.mm()), lap, tolerance: tolerance.mm() })
+    }
+
+    /// The same trace with a band of `share` of the tolerance.
+    pub(super) fn narrowed(&self, share: f64) -> Self {
+        let band = self.tolerance * share;
+        let beads = self.beads.iter().map(|bead| Bead { band, ..*bead }).collect();
+        Self { beads, ..*self }
     }
 
     /// Narrows the band about bead `i` by a little more than `excess`, in both laps of a closed trace.
@@ -82,11 +74,6 @@ impl Trace {
 
     pub(super) fn closed(&self) -> bool {
         self.lap > 0
-    }
-
-    /// A fitted path turned back to the contour's own direction.
-    pub(super) fn restored(&self, path: ArcSpline) -> ArcSpline {
-        if self.reversed { path.reversed() } else { path }
     }
 
     /// The unit direction of the trace about bead `i`, measured over at least the tolerance on either side.
@@ -124,32 +111,12 @@ fn pieces(span: Span, tolerance: f64) -> u32 {
     by_length.max(by_sagitta).ceil().clamp(1.0, MOST_PIECES) as u32
 }
 
-/// The share of the tolerance that the search may use; the rest is what certifying costs.
-const SHARE: f64 = 0.993;
 /// How much the band narrows, in excesses.
 const NARROWING: f64 = 2.0;
 /// Longest stretch between two points of the trace, in tolerances.
 const LONGEST: f64 = 10.0;
 /// Most points put on one span.
 const MOST_PIECES: f64 = 2000.0;
-
-/// Rotates a closed trace to its lowest vertex and tells whether it must be reversed to run counter-clockwise.
-fn turn_to_canonical(points: &mut [Point]) -> bool {
-    let lowest = (0..points.len()).min_by(|&a, &b| ordered(points[a], points[b])).unwrap_or(0);
-    points.rotate_left(lowest);
-    let origin = points[0];
-    let double_area: f64 = points.windows(2).map(|w| (w[0] - origin).cross(w[1] - origin)).sum();
-    double_area < 0.0
-}
-
-/// True when an open trace ends lower than it starts.
-fn runs_down(points: &[Point]) -> bool {
-    ordered(points[points.len() - 1], points[0]).is_lt()
-}
-
-fn ordered(a: Point, b: Point) -> std::cmp::Ordering {
-    a.x.total_cmp(&b.x).then(a.y.total_cmp(&b.y))
-}
 
 fn strung(points: &[Point], band: f64) -> Vec<Bead> {
     let mut along = 0.0;
