@@ -8,7 +8,7 @@ use super::{job_file, tell};
 use crate::error::{Error, Kind};
 use crate::files::{self, Target};
 use crate::job::{Job, Outputs};
-use crate::preview::{Scene, still};
+use crate::preview::{Scene, page, still};
 use crate::run::{self, Source};
 
 /// Carries out `ribband preview`.
@@ -56,6 +56,6 @@ fn draw(target: &Target, scene: &Scene) -> Result<String, Error> {
     let ends_in_svg = |path: &Path| path.extension().is_some_and(|e| e.eq_ignore_ascii_case("svg"));
     match target {
         Target::File(path) if ends_in_svg(path) => Ok(still(scene)),
-        _ => Err(Error::new(Kind::Settings, "pages are not written yet").remedy("name an .svg file with -o")),
+        _ => page(scene),
     }
 }

@@ -19,4 +19,4 @@ pub use limits::Limits;
 pub use motion::{Phase, motion};
 pub use queue::Queue;
 pub use schedule::{MOST_OVERRIDE, Schedule, highest_override, schedule, schedule_blocks};
-pub use time::{Crawl, Times, time};
+pub use time::{Crawl, Times, spent, time};

@@ -39,8 +39,13 @@ pub struct Crawl {
 /// How many crawls are listed.
 const CRAWLS: usize = 5;
 
-/// How long a toolpath takes on a machine within `limits`.
-pub fn time(toolpath: &Toolpath, limits: &Limits) -> Times {
+/// The time that each move of a toolpath takes on a machine within `limits`, in s. Waiting for a block that starves
+/// counts for its move.
+pub fn spent(toolpath: &Toolpath, limits: &Limits) -> Vec<f64> {
+    spent_and_starved(toolpath, limits).0
+}
+
+fn spent_and_starved(toolpath: &Toolpath, limits: &Limits) -> (Vec<f64>, usize) {
     let mut spent = vec![0.0; toolpath.moves.len()];
     let (mut wait, mut starved_blocks) = (0.0, 0);
     run(toolpath, limits, |happening| match happening {
@@ -49,11 +54,16 @@ pub fn time(toolpath: &Toolpath, limits: &Limits) -> Times {
             wait = time;
         }
         Happening::Runs(phase) => {
-            // The wait counts for the move that was waited for.
             spent[phase.of] += phase.time() + wait;
             wait = 0.0;
         }
     });
+    (spent, starved_blocks)
+}
+
+/// How long a toolpath takes on a machine within `limits`.
+pub fn time(toolpath: &Toolpath, limits: &Limits) -> Times {
+    let (spent, starved_blocks) = spent_and_starved(toolpath, limits);
     let contour = |m: &Move| !m.is_rapid() && m.span().length() > 0.0;
     let cutting = || toolpath.moves.iter().zip(&spent).filter(|(m, _)| contour(m));
     let cut_time_s: f64 = cutting().map(|(_, time)| time).sum();

@@ -5,9 +5,11 @@
 
 mod chord;
 mod curvature;
+mod data;
 mod figures;
 mod layers;
 mod markup;
+mod page;
 mod palette;
 mod still;
 mod tour;
@@ -21,6 +23,7 @@ use crate::report::Report;
 use crate::sketch::Sketch;
 
 pub use chord::{Chord, Lap, Station};
+pub use page::{MOST_MOVES, page};
 pub use still::still;
 pub use tour::{Kind, Stage};
 

@@ -39,7 +39,7 @@ const INKS: &[Ink] = &[
     ink("span", "#14406f", "#9cc7f5"),
     ink("other", "#2a9089", "#3f9f98"),
     ink("rapid", "#8a4fa0", "#c79ad2"),
-    ink("entry", "#a3195b", "#ff8fc0"),
+    ink("entry", "#00625a", "#5fd8c8"),
     ink("mark", "#1c2430", "#ece7da"),
     ink("over", "#c2007a", "#ff5cc0"),
 ];

@@ -39,11 +39,6 @@ impl Kind {
     pub(super) const ALL: [Self; 7] =
         [Self::Rapid, Self::Above, Self::Plunge, Self::Ramp, Self::Cut, Self::Tab, Self::Lift];
 
-    /// True for a way down into the stock.
-    pub(super) fn is_entry(self) -> bool {
-        matches!(self, Self::Plunge | Self::Ramp)
-    }
-
     /// True for a move along a pass.
     pub(super) fn is_pass(self) -> bool {
         matches!(self, Self::Cut | Self::Tab)

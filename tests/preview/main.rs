@@ -1,5 +1,6 @@
 //! Pictures of a program: what they show, held against the program and the report.
 
+mod page;
 mod still;
 
 use std::path::Path;
