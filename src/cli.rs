@@ -6,6 +6,7 @@ mod condense;
 mod generate;
 mod machines;
 mod measure;
+mod outputs;
 mod post;
 mod preview;
 mod progress;

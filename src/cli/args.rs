@@ -84,6 +84,9 @@ pub(super) struct Post {
     pub(super) settings: Settings,
     #[command(flatten)]
     pub(super) outputs: Outputs,
+    /// Write a setup sheet to print and take along
+    #[arg(long, value_name = "FILE.html", help_heading = "Files")]
+    pub(super) setup_sheet: Option<PathBuf>,
     /// Take settings from this file; what is typed wins
     #[arg(long, value_name = "FILE", help_heading = "Files")]
     pub(super) job: Option<PathBuf>,

@@ -11,6 +11,7 @@ mod layers;
 mod markup;
 mod page;
 mod palette;
+mod sheet;
 mod still;
 mod tour;
 
@@ -24,6 +25,7 @@ use crate::sketch::Sketch;
 
 pub use chord::{Chord, Lap, Station};
 pub use page::{MOST_MOVES, page};
+pub use sheet::setup_sheet;
 pub use still::still;
 pub use tour::{Kind, Stage};
 
@@ -46,6 +48,8 @@ pub struct Scene<'a> {
     pub limits: Limits,
     /// The height of the stock's top.
     pub stock_top: f64,
+    /// The stock's thickness, where it is given.
+    pub thickness_mm: Option<f64>,
 }
 
 impl Scene<'_> {

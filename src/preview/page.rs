@@ -6,7 +6,7 @@ use sha2::{Digest, Sha256};
 use super::layers::{Drawn, Group, draw};
 use super::markup::{escaped, mm};
 use super::palette::{Medium, STEPS, style, variables};
-use super::{Scene, data, figures};
+use super::{Scene, data, figures, sheet};
 use crate::error::{Error, Kind};
 
 /// A page shows programs of up to so many moves. It then takes some 300 bytes a move, the program's own text and 2 MB.
@@ -31,7 +31,7 @@ pub fn page(scene: &Scene) -> Result<String, Error> {
     let drawn = draw(scene);
     let magnification = figures::round(TOOTH * figures::diagonal(scene.part()) / scene.report.tolerance_mm);
     Ok(format!(
-        "<!doctype html>\n<html lang=\"en\">\n{head}<body>\n{header}<main>\n{view}{side}{plot}{time}</main>\n\
+        "<!doctype html>\n<html lang=\"en\">\n{head}<body>\n{header}<main>\n{view}{side}{plot}{time}</main>\n{sheet}\
          <script type=\"application/json\" id=\"data\">{data}</script>\n<script>{SCRIPT}</script>\n</body>\n</html>\n",
         head = head(scene),
         header = header(scene),
@@ -39,6 +39,7 @@ pub fn page(scene: &Scene) -> Result<String, Error> {
         side = side(scene, &drawn),
         plot = PLOT,
         time = TIME,
+        sheet = sheet::leaves(scene, &drawn.stages, &drawn.chord),
         data = data::data(scene, &drawn, magnification),
     ))
 }
@@ -52,12 +53,13 @@ fn head(scene: &Scene) -> String {
          <link rel=\"icon\" href=\"data:,\">\n<title>{name}: chord error</title>\n<style>\n\
          :root{{color-scheme:light;{light}}}\n\
          @media screen and (prefers-color-scheme:dark){{:root:not([data-theme=light]){{color-scheme:dark;{dark}}}}}\n\
-         @media screen{{:root[data-theme=dark]{{color-scheme:dark;{dark}}}}}\n{lines}{LOOKS}</style>\n</head>\n",
+         @media screen{{:root[data-theme=dark]{{color-scheme:dark;{dark}}}}}\n{lines}{sheet}{LOOKS}</style>\n</head>\n",
         hash = base64(&Sha256::digest(SCRIPT.as_bytes())),
         name = escaped(&scene.report.drawing.file),
         light = variables(false),
         dark = variables(true),
         lines = style(Medium::Screen),
+        sheet = sheet::looks(),
     )
 }
 

@@ -17,5 +17,6 @@ pub(super) fn scene<'a>(job: &Job, plan: &'a Plan, report: &'a Report) -> Scene<
         verdict: &plan.verdict,
         limits: Limits::of(&job.machine),
         stock_top: cutting::setup(job, plan.part, plan.shift).heights().top,
+        thickness_mm: job.stock.thickness_mm,
     }
 }
