@@ -7,6 +7,7 @@ use kurbo::Vec2;
 use crate::geom::Span;
 
 use super::keeping::keeps;
+use super::lines::Line;
 use super::reach::{Fan, reach};
 use super::refine::Refining;
 use super::seeds;
@@ -17,6 +18,10 @@ use super::trace::{Bead, Trace};
 const TANGENT: usize = 48;
 /// How many states of a level may turn a corner.
 const CORNER: usize = 6;
+/// How many states of a level are kept for the straight path behind them.
+const LINES: usize = 8;
+/// By which share of the best reach theirs may be less.
+const NEARLY: f64 = 0.3;
 /// How many ends of a level are refined.
 const REFINED: usize = 24;
 /// How many beads of a reach are tried as its end.
@@ -37,6 +42,7 @@ struct Candidate {
 /// All states of a run, level by level.
 pub(super) struct Beam<'a> {
     beads: &'a [Bead],
+    lines: &'a [Line],
     pub(super) states: Vec<State>,
     /// States of each cost that go on by a tangent arc.
     pub(super) tangent: Vec<Vec<usize>>,
@@ -48,11 +54,11 @@ pub(super) struct Beam<'a> {
 
 impl<'a> Beam<'a> {
     /// A run along `beads` from the given starts, all of cost 0.
-    pub(super) fn new(beads: &'a [Bead], starts: Vec<State>) -> Self {
+    pub(super) fn new(beads: &'a [Bead], lines: &'a [Line], starts: Vec<State>) -> Self {
         let all: Vec<usize> = (0..starts.len()).collect();
         let states = starts.into_iter().enumerate().map(|(i, s)| State { parent: i, ..s }).collect();
         let corner = vec![Vec::new()];
-        Self { beads, states, tangent: vec![all], corner, fans: Vec::new(), scratch: Vec::new() }
+        Self { beads, lines, states, tangent: vec![all], corner, fans: Vec::new(), scratch: Vec::new() }
     }
 
     /// The states of cost `level`.
@@ -99,6 +105,23 @@ impl<'a> Beam<'a> {
             }
             self.ends(&state, next, corner, candidates);
             next -= 1;
+        }
+        self.onto_lines(&state, corner, candidates);
+    }
+
+    /// The states on the straight runs ahead that one arc runs into.
+    fn onto_lines(&mut self, state: &State, corner: bool, candidates: &mut Vec<Candidate>) {
+        let reached = state.bead + self.fans.len();
+        let after = self.lines.partition_point(|line| line.last <= state.bead);
+        let refining = Refining { from: *state, beads: self.beads, fans: &self.fans };
+        for line in
+            self.lines[after..].iter().take_while(|line| line.first < reached.min(self.beads.len() - 1))
+        {
+            let end = line.joined_from(state).and_then(|(curvature, length)| {
+                refining.end(curvature, length, line.first.max(state.bead), &mut self.scratch)
+            });
+            candidates
+                .extend(end.map(|end| Candidate { state: State { corner, ..end.state }, reach: end.reach }));
         }
     }
 
@@ -147,11 +170,25 @@ impl<'a> Beam<'a> {
     fn keep(&mut self, mut candidates: Vec<Candidate>) {
         self.refine(&mut candidates);
         candidates.sort_by(|a, b| b.reach.total_cmp(&a.reach));
-        let tangent = self.chosen(&candidates, TANGENT);
-        candidates.sort_by(|a, b| b.state.bead.cmp(&a.state.bead).then(b.reach.total_cmp(&a.reach)));
+        let mut tangent = self.chosen(&candidates, TANGENT);
+        tangent.extend(self.straightest(&candidates));
+        candidates.sort_by(|a, b| {
+            b.state.bead.cmp(&a.state.bead).then(b.state.straight.total_cmp(&a.state.straight))
+        });
         let corner = self.chosen(&candidates, CORNER);
         self.tangent.push(tangent);
         self.corner.push(corner);
+    }
+
+    /// Of the candidates that promise nearly as much as the first, those with most straight path behind them.
+    fn straightest(&mut self, candidates: &[Candidate]) -> Vec<usize> {
+        let Some(first) = candidates.first() else { return Vec::new() };
+        let from = self.beads[self.states[first.state.parent].bead].along;
+        let enough = first.reach - NEARLY * (first.reach - from);
+        let near = candidates.iter().take_while(|c| c.reach >= enough).filter(|c| c.state.straight > 0.0);
+        let mut near: Vec<Candidate> = near.copied().collect();
+        near.sort_by(|a, b| b.state.straight.total_cmp(&a.state.straight).then(b.reach.total_cmp(&a.reach)));
+        self.chosen(&near, LINES)
     }
 
     /// The first `most` candidates that hold their beads in order and differ from those before.
@@ -237,6 +274,7 @@ pub(super) fn starts(trace: &Trace, at: usize) -> Vec<State> {
         bulge: 0.0,
         parent: 0,
         corner: false,
+        straight: 0.0,
     };
     (-3..=3).flat_map(|k| seeds::turned(&place(k), trace.beads(), &mut fans)).map(|(_, s)| s).collect()
 }
@@ -244,11 +282,13 @@ pub(super) fn starts(trace: &Trace, at: usize) -> Vec<State> {
 /// The path of least cost along an open trace.
 pub(super) fn open(trace: &Trace) -> Run {
     let last = trace.beads().len() - 1;
-    let mut beam = Beam::new(trace.beads(), starts(trace, 0));
+    let mut beam = Beam::new(trace.beads(), trace.lines(), starts(trace, 0));
     loop {
         let goes_on = beam.step();
         let level = beam.tangent.len() - 1;
-        if let Some(end) = beam.level(level).find(|&id| beam.states[id].bead == last) {
+        let straight = |id: &usize| beam.states[*id].straight;
+        let ends = beam.level(level).filter(|&id| beam.states[id].bead == last);
+        if let Some(end) = ends.max_by(|a, b| straight(a).total_cmp(&straight(b))) {
             return beam.run(end);
         }
         if !goes_on {

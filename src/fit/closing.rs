@@ -7,6 +7,7 @@ use crate::geom::Span;
 
 use super::beam::{Beam, Run, starts};
 use super::keeping::keeps;
+use super::lines::Line;
 use super::reach::reach;
 use super::seeds;
 use super::state::{SHORTEST, State};
@@ -15,7 +16,7 @@ use super::trace::{Bead, Trace};
 /// How many levels a run warms up before the place to start from is chosen on it.
 const WARM_UP: usize = 24;
 /// The least that the last spans of a lap cost.
-const CLOSING: usize = 2;
+const CLOSING: usize = 1;
 /// How many headings a pinned run starts with.
 const STARTS: usize = 24;
 /// Shares of the longest possible first tangent that are tried for the last two arcs.
@@ -34,25 +35,32 @@ pub(super) fn closed(trace: &Trace) -> Run {
 /// The cheapest lap from a start, with its cost.
 fn lap_from(trace: &Trace, start: Start) -> Option<(usize, Run)> {
     let beads = &trace.beads()[..=start.state.bead + trace.lap()];
-    let first = State { bulge: 0.0, parent: 0, corner: false, ..start.state };
+    let first = State { bulge: 0.0, parent: 0, corner: false, straight: 0.0, ..start.state };
     let starts = if start.corner {
         seeds::turned(&first, beads, &mut Vec::new()).into_iter().map(|(_, s)| s).collect()
     } else {
         vec![first]
     };
     let heading = (!start.corner).then_some(first.heading);
-    around(&Goal { at: first.at, heading, beads, trace: trace.beads() }, starts)
+    around(&Goal { at: first.at, heading, beads, trace: trace.beads(), lines: trace.lines() }, starts)
 }
 
 /// The path of least cost along an open trace from its first bead exactly to its last.
 pub(super) fn pinned(trace: &Trace) -> Run {
     let beads = trace.beads();
     let last = beads.len() - 1;
-    let first =
-        State { at: beads[0].at, heading: trace.direction(0), bead: 0, bulge: 0.0, parent: 0, corner: false };
+    let first = State {
+        at: beads[0].at,
+        heading: trace.direction(0),
+        bead: 0,
+        bulge: 0.0,
+        parent: 0,
+        corner: false,
+        straight: 0.0,
+    };
     let starts = seeds::aimed(&first, beads, &mut Vec::new()).into_iter().map(|(_, s)| s);
     let starts = starts.take(STARTS).collect();
-    let goal = Goal { at: beads[last].at, heading: None, beads, trace: beads };
+    let goal = Goal { at: beads[last].at, heading: None, beads, trace: beads, lines: trace.lines() };
     around(&goal, starts).map_or_else(|| Run::straight(beads, 0, last), |(_, run)| run)
 }
 
@@ -62,10 +70,10 @@ struct Start {
     corner: bool,
 }
 
-/// Joints of a run that has warmed up: the corner nearest to its middle where it has one, the middle joint, and where
-/// the run comes all the way round, others at a distance from it.
+/// Joints of a run that has warmed up: the corner nearest to its middle where it has one, else the end of a line, then
+/// the middle joint, and where the run comes all the way round, others at a distance from it.
 fn starts_on_a_run(trace: &Trace) -> Vec<Start> {
-    let mut beam = Beam::new(trace.beads(), starts(trace, 0));
+    let mut beam = Beam::new(trace.beads(), trace.lines(), starts(trace, 0));
     for _ in 0..WARM_UP {
         if !beam.step() || furthest(&beam).is_some_and(|id| beam.states[id].bead + 1 >= trace.beads().len()) {
             break;
@@ -77,8 +85,10 @@ fn starts_on_a_run(trace: &Trace) -> Vec<Start> {
     let middle = chain.len() / 2;
     let is_corner = |k: usize| chain.get(k + 1).is_some_and(|&next| beam.states[next].corner);
     let corner = (1..chain.len()).filter(|&k| is_corner(k)).min_by_key(|k| k.abs_diff(middle));
-    let mut joints: Vec<usize> =
-        corner.into_iter().chain([middle, middle / 2 + 1, middle + middle / 2]).collect();
+    let ends_line = |k: usize| beam.states[chain[k]].bulge == 0.0;
+    let line = (1..chain.len()).filter(|&k| ends_line(k)).min_by_key(|k| k.abs_diff(middle));
+    let others = [middle, middle / 2 + 1, middle + middle / 2];
+    let mut joints: Vec<usize> = corner.or(line).into_iter().chain(others).collect();
     joints.dedup();
     joints.retain(|&k| k < chain.len());
     joints.truncate(if comes_round { TRIES } else { 1 });
@@ -105,36 +115,56 @@ struct Goal<'a> {
     beads: &'a [Bead],
     /// The beads beyond it too: the goal may lie past the last bead of the lap.
     trace: &'a [Bead],
+    lines: &'a [Line],
 }
 
 /// The cheapest way from the starts to the goal, for a closed run back to it, with its cost.
 fn around(goal: &Goal, starts: Vec<State>) -> Option<(usize, Run)> {
-    let mut beam = Beam::new(goal.beads, starts);
-    let mut best: Option<(usize, usize, Run)> = None;
+    let mut beam = Beam::new(goal.beads, goal.lines, starts);
+    let mut best: Option<Closed> = None;
     for level in 0.. {
         for id in beam.level(level).collect::<Vec<_>>() {
             let state = beam.states[id];
-            if let Some((cost, last)) = goal.closed_from(&state)
-                && best.as_ref().is_none_or(|b| level + cost < b.0)
-            {
-                best = Some((level + cost, id, last));
+            if let Some((cost, last)) = goal.closed_from(&state) {
+                let lines = last.spans.iter().filter(|s| s.is_line()).map(|s| s.length());
+                let straight = state.straight + lines.sum::<f64>();
+                let closed = Closed { cost: level + cost, straight, id, last };
+                if best.as_ref().is_none_or(|b| closed.betters(b)) {
+                    best = Some(closed);
+                }
             }
         }
-        if best.as_ref().is_some_and(|b| level + 1 + CLOSING >= b.0) || !beam.step() {
+        if best.as_ref().is_some_and(|b| level + CLOSING >= b.cost) || !beam.step() {
             break;
         }
     }
-    best.map(|(cost, id, last)| {
-        let mut run = beam.run(id);
-        run.spans.extend(last.spans);
-        run.passed.extend(last.passed);
-        (cost, run)
+    best.map(|closed| {
+        let mut run = beam.run(closed.id);
+        run.spans.extend(closed.last.spans);
+        run.passed.extend(closed.last.passed);
+        (closed.cost, run)
     })
 }
 
+/// A way home.
+struct Closed {
+    cost: usize,
+    /// How much of the whole path is straight, in mm.
+    straight: f64,
+    /// The state it leaves from.
+    id: usize,
+    last: Run,
+}
+
+impl Closed {
+    fn betters(&self, other: &Self) -> bool {
+        self.cost < other.cost || self.cost == other.cost && self.straight > other.straight
+    }
+}
+
 impl Goal<'_> {
-    /// The cheapest last spans from `state` to the goal, with their cost: two arcs that arrive with its heading, or one
-    /// and a corner, which costs the same; else a line between two corners.
+    /// The cheapest last spans from `state` to the goal, with their cost: one that arrives with its heading; two arcs
+    /// that do, or one and a corner, which costs the same; else a line between two corners.
     fn closed_from(&self, state: &State) -> Option<(usize, Run)> {
         let last = self.beads.len() - 1;
         let from = self.beads[state.bead].along;
@@ -145,10 +175,15 @@ impl Goal<'_> {
         let one = |span: Span| {
             passes(&span, self.trace, state.bead, last).then(|| Run { spans: vec![span], passed: vec![last] })
         };
+        let arc = Span::leaving(state.at, state.heading, self.at);
+        let line = Span::line(state.at, self.at);
+        if self.heading.is_some_and(|heading| arrives(&arc, heading)) {
+            let tangent = if arrives(&line, state.heading) { line } else { arc };
+            return one(tangent).map(|run| (1, run));
+        }
         let two_arcs = || self.heading.and_then(|heading| self.two_arcs(state, heading));
-        let arc = || one(Span::leaving(state.at, state.heading, self.at));
-        let cheap = two_arcs().or_else(arc).map(|run| (CLOSING, run));
-        cheap.or_else(|| one(Span::line(state.at, self.at)).map(|run| (CLOSING + 1, run)))
+        let cheap = two_arcs().or_else(|| one(arc)).map(|run| (2, run));
+        cheap.or_else(|| one(line).map(|run| (3, run)))
     }
 
     /// Two tangent arcs from `state` to the goal and its heading.
@@ -179,6 +214,12 @@ impl Goal<'_> {
             holds.then_some(Run { spans, passed })
         })
     }
+}
+
+/// True when `span` ends along `heading`, as nearly as places rounded for the program can tell.
+fn arrives(span: &Span, heading: Vec2) -> bool {
+    let turn = span.tangent(1.0).cross(heading);
+    turn.abs() * span.chord().hypot() <= super::LAST_PLACE / 2.0 && span.tangent(1.0).dot(heading) > 0.0
 }
 
 /// True when `span` may be cut and keeps to the trace past the beads after `first` up to `last`.

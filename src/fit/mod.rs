@@ -9,6 +9,7 @@ mod canonical;
 mod circle;
 mod closing;
 mod keeping;
+mod lines;
 mod narrowing;
 mod pinned;
 mod reach;

@@ -1,12 +1,15 @@
 //! The search again and again, in a band that is narrower where the path strayed between the vertices.
 
+use std::collections::HashSet;
+
 use kurbo::Point;
 
 use crate::geom::{ArcSpline, Span, frechet_within};
 use crate::num::Tolerance;
 
+use super::LAST_PLACE;
 use super::beam::Run;
-use super::keeping::beside;
+use super::keeping::{beside, keeps};
 use super::trace::{Bead, Trace};
 
 /// How often the search is repeated before spans that stray are given up.
@@ -27,6 +30,7 @@ pub(super) fn within(mut trace: Trace, tolerance: Tolerance, search: fn(&Trace) 
         }
         run = search(&trace);
     }
+    straighten(&mut run, &trace);
     let strayed: Vec<usize> = strayed(&run, &trace, tolerance).iter().map(|s| s.span).collect();
     let stretches = run.spans.iter().zip(run.passed.windows(2)).enumerate();
     let spans: Vec<Span> = stretches
@@ -36,6 +40,23 @@ pub(super) fn within(mut trace: Trace, tolerance: Tolerance, search: fn(&Trace) 
         })
         .collect();
     ArcSpline::from_spans(&spans, trace.closed())
+}
+
+/// Replaces arcs that run from corner to corner by lines where those keep to the trace too.
+fn straighten(run: &mut Run, trace: &Trace) {
+    let path = ArcSpline::from_spans(&run.spans, trace.closed());
+    let ends = (0..=path.len()).filter(|&k| !trace.closed() && (k == 0 || k == path.len()));
+    let mut free: HashSet<usize> = path.corners(LAST_PLACE).chain(ends).collect();
+    if free.contains(&0) && trace.closed() {
+        free.insert(path.len());
+    }
+    for (i, span) in run.spans.iter_mut().enumerate() {
+        let line = Span::line(span.start, span.end);
+        let is_free = free.contains(&i) && free.contains(&(i + 1));
+        if is_free && keeps(&line, trace.beads(), run.passed[i], run.passed[i + 1]) {
+            *span = line;
+        }
+    }
 }
 
 /// Where a run strays from the trace.

@@ -49,6 +49,11 @@ impl Fan {
         })
     }
 
+    /// True when an arc of the curvature passes every bead.
+    pub(super) fn allows(self, curvature: f64) -> bool {
+        (self.low..=self.high).contains(&curvature)
+    }
+
     /// True while some curvature passes every bead.
     pub(super) fn is_open(self) -> bool {
         self.low <= self.high

@@ -54,13 +54,19 @@ impl Refining<'_> {
     }
 
     /// The end of the arc with this curvature and length; `None` where the beads passed do not allow it.
-    fn end(&self, curvature: f64, length: f64, near: usize, scratch: &mut Vec<Fan>) -> Option<End> {
+    pub(super) fn end(
+        &self,
+        curvature: f64,
+        length: f64,
+        near: usize,
+        scratch: &mut Vec<Fan>,
+    ) -> Option<End> {
         if length <= 0.0 {
             return None;
         }
         let bead = self.last_passed(curvature, length, near);
         let fan = self.fans.get(bead.checked_sub(self.from.bead + 1)?)?;
-        if !(fan.low..=fan.high).contains(&curvature) {
+        if !fan.allows(curvature) {
             return None;
         }
         let state = self.from.moved(curvature, length, bead)?;
@@ -69,7 +75,7 @@ impl Refining<'_> {
     }
 
     /// The last bead whose foot on the arc lies before its end, looked for from `near`.
-    fn last_passed(&self, curvature: f64, length: f64, near: usize) -> usize {
+    pub(super) fn last_passed(&self, curvature: f64, length: f64, near: usize) -> usize {
         let passed = |i: usize| self.from.foot(curvature, self.beads[i].at) <= length;
         let mut bead = near;
         while bead + 1 < self.beads.len() && bead < self.from.bead + self.fans.len() && passed(bead + 1) {

@@ -24,13 +24,15 @@ pub(super) struct State {
     pub(super) parent: usize,
     /// True when the span that led here left its start with a new heading.
     pub(super) corner: bool,
+    /// How much of the path so far is straight, in mm.
+    pub(super) straight: f64,
 }
 
 impl State {
     /// The start of `span`, with no bead behind it.
     pub(super) fn leaving(span: &Span) -> Self {
         let heading = span.tangent(0.0);
-        Self { at: span.start, heading, bead: 0, bulge: 0.0, parent: 0, corner: false }
+        Self { at: span.start, heading, bead: 0, bulge: 0.0, parent: 0, corner: false, straight: 0.0 }
     }
 
     /// A start of the path, or a turn on the spot, with a heading.
@@ -66,6 +68,7 @@ impl State {
             bulge: (half / 2.0).tan(),
             parent: self.parent,
             corner: false,
+            straight: self.straight + if curvature == 0.0 { length } else { 0.0 },
         })
     }
 

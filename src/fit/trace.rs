@@ -5,6 +5,8 @@ use kurbo::{Point, Vec2};
 use crate::geom::{ArcSpline, Span};
 use crate::num::Tolerance;
 
+use super::lines::{Line, lines};
+
 /// A vertex of the trace and how far from it the path may pass.
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Bead {
@@ -18,6 +20,7 @@ pub(super) struct Bead {
 /// The beads of one contour. A closed trace repeats its beads for a second lap, so that a run may start anywhere.
 pub(super) struct Trace {
     beads: Vec<Bead>,
+    lines: Vec<Line>,
     /// Beads in one lap of a closed trace, 0 for an open one.
     lap: usize,
     tolerance: f64,
@@ -39,14 +42,16 @@ impl Trace {
             points.extend_from_within(..);
             points.push(points[0]);
         }
-        Some(Self { beads: strung(&points, tolerance.mm()), lap, tolerance: tolerance.mm() })
+        let beads = strung(&points, tolerance.mm());
+        let lines = lines(&beads);
+        Some(Self { beads, lines, lap, tolerance: tolerance.mm() })
     }
 
     /// The same trace with a band of `share` of the tolerance.
     pub(super) fn narrowed(&self, share: f64) -> Self {
         let band = self.tolerance * share;
         let beads = self.beads.iter().map(|bead| Bead { band, ..*bead }).collect();
-        Self { beads, ..*self }
+        Self { beads, lines: self.lines.clone(), ..*self }
     }
 
     /// Narrows the band about bead `i` by a little more than `excess`, in both laps of a closed trace.
@@ -65,6 +70,11 @@ impl Trace {
     /// Beads of the trace; of a closed one, two laps and the first bead again.
     pub(super) fn beads(&self) -> &[Bead] {
         &self.beads
+    }
+
+    /// The straight runs among the beads.
+    pub(super) fn lines(&self) -> &[Line] {
+        &self.lines
     }
 
     /// Beads in one lap of a closed trace, 0 for an open one.
