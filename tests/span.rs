@@ -1,7 +1,7 @@
 //! One span: exact places, also where an arc is nearly straight.
 
 use kurbo::{Point, Vec2};
-use ribband::geom::{ArcSpline, Span};
+use ribband::geom::{ArcSpline, Span, frechet};
 
 /// Bulges from a half turn down to what rounding leaves of a line.
 const BULGES: [f64; 8] = [1.0, 0.3, 1e-3, 1e-6, 1e-9, 1e-13, 1e-17, 1e-300];
@@ -56,5 +56,47 @@ fn a_box_holds_every_place_of_the_arc_and_touches_it() {
             (low, high) = (low.min(p.x), high.max(p.x));
         }
         assert!((low - bbox.x0).abs() < 1e-4 && (high - bbox.x1).abs() < 1e-4, "{bbox:?} is too wide");
+    }
+}
+
+/// Sagitta R - sqrt(R2 - c2/4) of a chord c: the versed sine that handbooks of machining table (closed form, computed
+/// apart from this project with independent libraries).
+#[test]
+fn sagittas_are_those_of_the_chord_table() {
+    for (radius, chord, sagitta) in [
+        (10.0, 1.0, 0.012507822),
+        (10.0, 5.0, 0.317541634),
+        (25.0, 1.0, 0.005000500),
+        (100.0, 5.0, 0.031254884),
+    ] {
+        let half = f64::asin(chord / (2.0 * radius));
+        let span = Span::arc(Point::new(2.0, 3.0), Point::new(2.0 + chord, 3.0), (half / 2.0).tan());
+        assert!((span.sagitta() - sagitta).abs() < 5e-10, "R {radius} c {chord}: {}", span.sagitta());
+        assert!((span.radius() - radius).abs() < 1e-9 * radius, "R {radius} c {chord}: {}", span.radius());
+    }
+}
+
+/// How many chords a circle takes at a chord error, N = ceil(pi / acos(1 - e/R)): rows of the same table.
+#[test]
+fn circles_take_as_many_chords_as_the_table_says() {
+    let rows = [
+        (1.0, [(0.001, 71), (0.01, 23), (0.1, 7)]),
+        (10.0, [(0.001, 223), (0.01, 71), (0.1, 23)]),
+        (25.0, [(0.005, 158), (0.02, 79), (0.1, 36)]),
+        (100.0, [(0.001, 703), (0.02, 158), (0.1, 71)]),
+    ];
+    for (radius, columns) in rows {
+        let at = |k: usize, n: usize| {
+            (Vec2::from_angle(std::f64::consts::TAU * k as f64 / n as f64) * radius).to_point()
+        };
+        let circle = ArcSpline::from_spans(
+            &[Span::arc(at(0, 2), at(1, 2), 1.0), Span::arc(at(1, 2), at(0, 2), 1.0)],
+            true,
+        );
+        let error = |n: usize| frechet(&ArcSpline::polyline((0..n).map(|k| at(k, n)), true), &circle).mm;
+        for (e, n) in columns {
+            assert!(error(n) <= 1.03 * e, "R {radius} e {e}: {n} chords err by {}", error(n));
+            assert!(error(n - 1) > e, "R {radius} e {e}: {} chords err by {}", n - 1, error(n - 1));
+        }
     }
 }
