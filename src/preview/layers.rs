@@ -1,5 +1,7 @@
 //! What is drawn, layer by layer, in the order of the work.
 
+use std::collections::HashSet;
+
 use kurbo::{Affine, Point, Rect, Vec2};
 
 use super::chord::{Chord, Lap};
@@ -93,17 +95,29 @@ fn of<'a>(
     moves.filter(move |(_, stage)| wanted(stage.kind)).map(|(m, _)| m.span())
 }
 
+/// The spans without those that lie exactly below an earlier one, as passes one above another do.
+fn distinct(spans: impl Iterator<Item = Span>) -> Vec<Span> {
+    let mut seen = HashSet::new();
+    let micrometres = |mm: f64| (mm * 1e3).round() as i64;
+    let key = |span: &Span| {
+        let place = |p: Point| (micrometres(p.x), micrometres(p.y));
+        (place(span.start), place(span.end), micrometres(span.bulge * span.chord().hypot()))
+    };
+    spans.filter(|span| seen.insert(key(span))).collect()
+}
+
 /// What everything else lies on.
 fn ground(scene: &Scene, stages: &[Stage]) -> Vec<Layer> {
     let inside = |kind: Kind| !matches!(kind, Kind::Rapid | Kind::Above);
+    let seen_from_above = distinct(of(scene, stages, inside));
     let swept = format!(
         "<g style=\"stroke-width:{}\">{}</g>",
         mm(scene.report.setup.cutter_mm),
-        paths(of(scene, stages, inside), "swept")
+        paths(seen_from_above.iter().copied(), "swept")
     );
     let part = paths(frame(scene.part()), "part");
     let extents = paths(frame(path_box(&scene.program.toolpath.moves)), "extents");
-    let cutter = paths(of(scene, stages, inside), "cutter");
+    let cutter = paths(seen_from_above, "cutter");
     vec![
         layer("swept", "Width that the cutter sweeps", Group::Cut, true, swept),
         layer("part", "Box around the finished parts", Group::Zero, true, part),

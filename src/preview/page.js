@@ -84,10 +84,13 @@ for (const lap of data.laps) {
 
 // What is in sight: a box in mm, y down, kept in the shape of the window.
 const [x0, y0, x1, y1] = data.extent;
-let sight;
-let asked = false;
+let sight, painted;
+let asked = false, settling = 0;
+// More moves than this are not painted anew for every step of the hand: the picture is shifted until it rests.
+const MANY = 4000;
+const frame = () => get("view").getBoundingClientRect();
 function look(x, y, w, h) {
-  const box = picture.getBoundingClientRect();
+  const box = frame();
   const ratio = box.width && box.height ? box.width / box.height : 1;
   const width = Math.max(w, h * ratio), height = width / ratio;
   sight = {x: x - (width - w) / 2, y: y - (height - h) / 2, w: width, h: height};
@@ -95,9 +98,20 @@ function look(x, y, w, h) {
   asked = true;
   requestAnimationFrame(() => {
     asked = false;
-    picture.setAttribute("viewBox", `${sight.x} ${sight.y} ${sight.w} ${sight.h}`);
+    if (count <= MANY || !painted) { paint(); return; }
+    const scale = frame().width / sight.w;
+    picture.style.transform =
+      `translate(${(painted.x - sight.x) * scale}px,${(painted.y - sight.y) * scale}px) scale(${painted.w / sight.w})`;
+    clearTimeout(settling);
+    settling = setTimeout(paint, 150);
   });
 }
+function paint() {
+  painted = sight;
+  picture.style.transform = "";
+  picture.setAttribute("viewBox", `${sight.x} ${sight.y} ${sight.w} ${sight.h}`);
+}
+if (count > MANY) picture.style.willChange = "transform";
 function whole() {
   const room = Math.max(x1 - x0, y1 - y0) * 0.06;
   look(x0 - room, -y1 - room, x1 - x0 + 2 * room, y1 - y0 + 2 * room);
@@ -110,9 +124,9 @@ function zoom(factor, x = sight.x + sight.w / 2, y = sight.y + sight.h / 2) {
 const pan = (dx, dy) => look(sight.x + dx, sight.y + dy, sight.w, sight.h);
 const centre = (p, w) => look(p.x - w / 2, -p.y - w / 2, w, w);
 const near = () => Math.min(sight.w, Math.max(40 * data.tolerance, 10));
-const pixel = () => sight.w / (picture.getBoundingClientRect().width || 1);
+const pixel = () => sight.w / (frame().width || 1);
 function under(event) {
-  const box = picture.getBoundingClientRect();
+  const box = frame();
   return {x: sight.x + (event.clientX - box.left) * pixel(), y: -(sight.y + (event.clientY - box.top) * pixel())};
 }
 
@@ -152,15 +166,25 @@ function moveAt(p, reach) {
   return best;
 }
 
-// Telling of a span.
+// Telling of a span. An arc over more than half a turn is two moves of one block.
 let chosen = -1;
+const same = (i, j) => j >= 0 && j < count && block[i] === block[j] && kind(i) === kind(j);
+function spanOf(i) {
+  const moves = [i];
+  while (same(i, moves[0] - 1)) moves.unshift(moves[0] - 1);
+  while (same(i, moves.at(-1) + 1)) moves.push(moves.at(-1) + 1);
+  return moves;
+}
 function words(i) {
-  const s = shape(i), long = Math.hypot(s.flat, s.b.z - s.a.z);
-  const took = data.ended[i] - (i ? data.ended[i - 1] : 0);
-  const form = !s.flat ? "straight up or down" : s.sweep ? (s.sweep > 0 ? "arc to the left" : "arc to the right") : "line";
+  const moves = spanOf(i), s = shape(i), shapes = moves.map(shape);
+  const flat = shapes.reduce((sum, part) => sum + part.flat, 0);
+  const long = Math.hypot(flat, shapes.at(-1).b.z - shapes[0].a.z);
+  const took = data.ended[moves.at(-1)] - (moves[0] ? data.ended[moves[0] - 1] : 0);
+  const form = !s.flat ? "straight up or down" : !s.sweep ? "line" : s.sweep > 0 ? "arc to the left" : "arc to the right";
   const parts = [data.names[kind(i)] + ", " + form, "length " + length(long, 3)];
   if (s.sweep) parts.push("radius " + length(s.radius, 3));
-  if (worstOf.has(i)) parts.push("deviation " + length(worstOf.get(i), 4));
+  const errors = moves.filter(j => worstOf.has(j)).map(j => worstOf.get(j));
+  if (errors.length) parts.push("deviation " + length(Math.max(...errors), 4));
   if (data.feed[i]) parts.push("feed " + speed(data.feed[i]));
   if (took > 0) parts.push("mean speed " + speed(long / took * 60));
   const line = data.line[i];
@@ -169,12 +193,12 @@ function words(i) {
 function choose(i) {
   if (i === chosen || i < 0) return;
   chosen = i;
-  get("chosen").setAttribute("d", pathOf(i));
+  get("chosen").setAttribute("d", spanOf(i).map(pathOf).join(""));
   get("told").textContent = words(i);
 }
 function stepBy(by) {
   let i = chosen;
-  do i += by; while (i >= 0 && i < count && data.kinds[i] < 2);
+  do i += by; while (i >= 0 && i < count && (kind(i) < 2 || (chosen >= 0 && same(i, chosen))));
   if (i < 0 || i >= count) return;
   choose(i);
   const m = at(shape(i), 0.5);

@@ -128,7 +128,7 @@ fn side(scene: &Scene, drawn: &Drawn) -> String {
          <section><h2>Chord error</h2>\n<div class=\"scale\" role=\"img\" aria-label=\"Colours of the chord error, a tenth \
          of the tolerance a step\">{}<i style=\"background:var(--over)\"></i></div>\n\
          <p class=\"ends\"><span>0</span><span>{} mm, the tolerance</span><span>over</span></p>\n\
-         <label>Comb, enlarged <output id=\"enlarged\"></output> times\
+         <label for=\"enlarge\">Comb, enlarged <span id=\"enlarged\"></span> times\
          <input type=\"range\" id=\"enlarge\" min=\"0\" max=\"3.5\" step=\"0.05\"></label>\n{bends}</section>\n\
          <section><h2>Layers</h2>\n{}</section>\n<section><h2>Figures</h2>\n{}</section>\n\
          <section><h2>Notes</h2>\n<ul>{}</ul></section>\n<section><h2>Keys</h2>\n{KEYS}</section>\n</aside>\n",
@@ -169,8 +169,8 @@ const PLOT: &str = "<section id=\"along\"><h2>Chord error along the path</h2>\n\
 const TIME: &str = "<section id=\"time\"><h2>Planned time</h2>\n<button type=\"button\" id=\"run\" \
     aria-pressed=\"false\">Run</button>\n<label>at <select id=\"pace\"><option value=\"1\">planned speed</option>\
     <option value=\"4\">4 times</option><option value=\"16\">16 times</option></select></label>\n\
-    <input type=\"range\" id=\"now\" min=\"0\" value=\"0\" step=\"0.01\" aria-label=\"Time\">\n\
-    <output id=\"clock\"></output></section>\n";
+    <input type=\"range\" id=\"now\" min=\"0\" value=\"0\" step=\"any\" aria-label=\"Time\">\n\
+    <span id=\"clock\"></span></section>\n";
 
 /// Base 64 (RFC 4648, section 4).
 fn base64(bytes: &[u8]) -> String {

@@ -222,11 +222,13 @@ fn restart_list(scene: &Scene, stages: &[Stage]) -> String {
     let moves = &scene.program.toolpath.moves;
     let points = restarts(moves, stages);
     let show = |mm: f64| length(mm, scene.report.setup.unit == "in");
-    let told = |&i: &usize| {
+    // The way to the first cut starts where the program does not say, so that it is no place of its own.
+    let told = |(n, &i): (usize, &usize)| {
         let to = moves[i].to.xy;
-        format!("<li>line {}, which travels to X {}, Y {}</li>\n", moves[i].line, show(to.x), show(to.y))
+        let from = format!("line {}, which travels to X {}, Y {}", moves[i].line, show(to.x), show(to.y));
+        format!("<li>cut {}: {}</li>\n", n + 1, if n == 0 { "the program's start".into() } else { from })
     };
-    let listed: String = points.iter().take(RESTARTS).map(told).collect();
+    let listed: String = points.iter().enumerate().take(RESTARTS).map(told).collect();
     let more = match points.len().saturating_sub(RESTARTS) {
         0 => String::new(),
         more => format!("<li>and {more} more in the program</li>\n"),

@@ -1,0 +1,86 @@
+// The setup sheet and the page's print view, printed from headless Chromium.
+import assert from "node:assert/strict";
+import { execFileSync } from "node:child_process";
+import { writeFileSync } from "node:fs";
+import { join } from "node:path";
+import { after, before, test } from "node:test";
+import { demo, drawing, folder, launch, make, open, read } from "./making.js";
+
+let browser, template, crowded;
+before(async () => {
+  browser = await launch();
+  template = make("sheet", demo("template.csv"));
+  // Forty contours with long names: every list that can grow is full.
+  const squares = Array.from({ length: 40 }, (_, i) => {
+    const [x, y] = [i % 8 * 30, Math.floor(i / 8) * 30];
+    return `<polyline points="${x},${y} ${x + 20},${y} ${x + 20},${y + 20} ${x},${y + 20} ${x},${y}"/><text>no</text>`;
+  });
+  const svg = `<svg xmlns="http://www.w3.org/2000/svg" width="240mm" height="150mm" viewBox="0 0 240 150">${squares.join("")}</svg>`;
+  crowded = make("crowded", drawing(`${"long-name-".repeat(20)}.svg`, svg));
+});
+after(() => browser.close());
+
+/** The text of each page of a printed PDF, read by an independent reader (poppler's). */
+async function printed(page, name, format) {
+  const path = join(folder, `${name}-${format}.pdf`);
+  writeFileSync(path, await page.pdf({ format, printBackground: false }));
+  const text = execFileSync("pdftotext", ["-layout", path, "-"], { encoding: "utf8" });
+  return text.split("\f").slice(0, -1);
+}
+
+const flat = text => text.replace(/\s+/g, " ");
+
+for (const format of ["A4", "Letter"]) {
+  test(`sheet and print view take two pages of ${format} with nothing cut off`, async () => {
+    for (const [name, made] of [["template", template], ["crowded", crowded]]) {
+      for (const url of [made.sheet, made.url]) {
+        const { page, heard, close } = await open(browser, url);
+        const pages = await printed(page, name, format);
+        assert.equal(pages.length, 2, `${name}: ${pages.length} pages`);
+        assert.match(pages[0], /Setup sheet/);
+        assert.match(pages[1], /Know what you cut/, "the last caution stands on the last page");
+        await page.emulateMedia({ media: "print" });
+        const over = await page.$$eval(".sheet", ([sheet]) => {
+          const edge = sheet.getBoundingClientRect().right + 0.5;
+          return [...sheet.querySelectorAll("*")].filter(e => e.getBoundingClientRect().right > edge).map(e => e.outerHTML.slice(0, 80));
+        });
+        assert.deepEqual(over, []);
+        assert.deepEqual(heard, []);
+        await close();
+      }
+    }
+  });
+}
+
+test("the sheet says what the report and the program say", async () => {
+  const { page, close } = await open(browser, template.sheet);
+  const text = flat((await printed(page, "said", "A4")).join(" "));
+  const { setup, program, check } = template.report;
+  for (const said of [
+    `Machine ${setup.machine}`, `${program.blocks}, of which ${program.motion_blocks} move`, `${program.bytes} bytes`,
+    `Lowest Z ${setup.extents_mm[2]} mm`, `${setup.spindle_rpm} rev/min`, `6 mm in ${setup.passes} passes`,
+    "the top of the stock", "Spindle warmed up", "Air cut run through", "thickness not given",
+  ]) assert.ok(text.includes(said), `${said} in ${text}`);
+  for (const { name, state } of check.claims) if (state === "holds") assert.ok(text.includes(name), name);
+  const all = flat(await page.textContent(".sheet"));
+  for (const open of check.not_checked) assert.ok(all.includes(open), open);
+  // Places to take it up again are lines that travel to where they say.
+  const lines = [...all.matchAll(/line (\d+), which travels to X (-?[\d.]+) mm, Y (-?[\d.]+) mm/g)];
+  assert.equal(lines.length, template.report.contours.length - 1);
+  for (const [, line, x, y] of lines) {
+    const move = read(template.program).find(m => m.line === Number(line));
+    assert.equal(move.mode, 0);
+    assert.ok(Math.hypot(move.to.X - x, move.to.Y - y) < 0.1);
+  }
+  await close();
+});
+
+test("the sheet is black on white whatever the screen is", async () => {
+  const { page, close } = await open(browser, template.url, { colorScheme: "dark" });
+  await page.emulateMedia({ media: "print", colorScheme: "dark" });
+  const looks = await page.$eval(".sheet", e => [getComputedStyle(e).color, getComputedStyle(e).backgroundColor]);
+  assert.deepEqual(looks, ["rgb(0, 0, 0)", "rgb(255, 255, 255)"]);
+  const inks = await page.$$eval(".sheet dt, .sheet li, .sheet h2, .sheet dd", all => [...new Set(all.map(e => getComputedStyle(e).color))]);
+  for (const ink of inks) assert.ok(ink.match(/\d+/g).every(c => Number(c) <= 0x33), ink);
+  await close();
+});
