@@ -17,7 +17,7 @@ use crate::summary::{duration, side_words};
 const LOOKS: &str = include_str!("sheet.css");
 
 /// The largest size of the picture on paper, in mm.
-const PICTURE: (f64, f64) = (186.0, 104.0);
+const PICTURE: (f64, f64) = (186.0, 98.0);
 /// Lists that could run over the paper end after so many items, and say so.
 const RESTARTS: usize = 14;
 const NOTES: usize = 6;
@@ -65,10 +65,14 @@ pub(super) fn leaves(scene: &Scene, stages: &[Stage], chord: &Chord) -> String {
 
 /// `text` escaped, and cut off where it would run over the paper.
 fn short(text: &str) -> String {
-    if text.chars().count() <= LONGEST {
+    shorter(text, LONGEST)
+}
+
+fn shorter(text: &str, longest: usize) -> String {
+    if text.chars().count() <= longest {
         return escaped(text);
     }
-    let kept: String = text.chars().take(LONGEST).collect();
+    let kept: String = text.chars().take(longest).collect();
     format!("{}&hellip;", escaped(&kept))
 }
 
@@ -180,7 +184,7 @@ fn ticks(scene: &Scene) -> String {
     };
     let list = [
         "Spindle warmed up as its maker says".to_owned(),
-        format!("Program {} loaded, {} bytes", short(&program.file), program.bytes),
+        format!("Program {} loaded, {} bytes", shorter(&program.file, 60), program.bytes),
         format!("Cutter {} fitted: sharp, clean collet, tight", show(setup.cutter_mm)),
         "Stock flat and held: it can neither lift nor slide, to the end of the last pass".to_owned(),
         format!("X and Y zero set at {}, checked a second time", setup.origin.words()),
