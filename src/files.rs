@@ -47,6 +47,19 @@ impl Target {
         }
     }
 
+    /// The place of part `k` of several: `sign.nc` becomes `sign-1.nc`. Standard output stays what it is.
+    #[must_use]
+    pub fn part(&self, k: usize) -> Self {
+        let Self::File(path) = self else { return Self::Stdout };
+        let mut name = path.file_stem().unwrap_or_default().to_owned();
+        name.push(format!("-{k}"));
+        if let Some(ending) = path.extension() {
+            name.push(".");
+            name.push(ending);
+        }
+        Self::File(path.with_file_name(name))
+    }
+
     /// The name to show, for a file.
     pub fn name(&self) -> String {
         match self {

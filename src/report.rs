@@ -121,7 +121,10 @@ pub struct Setup {
 pub struct Program {
     /// The file's name as typed; `-` for standard output.
     pub file: String,
-    /// Lines that a controller must execute.
+    /// The files that stand instead, one to be run after the other, where the controller's memory is too small for one;
+    /// else none.
+    pub parts: Vec<Part>,
+    /// Lines that a controller must execute, of all parts.
     pub blocks: usize,
     /// Those that move an axis.
     pub motion_blocks: usize,
@@ -146,6 +149,17 @@ pub struct Program {
     pub highest_override: u32,
     /// The same job with every vertex of the drawing as a straight block.
     pub as_drawn: AsDrawn,
+}
+
+/// One of the files of a program that is too long for the controller's memory.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Part {
+    /// Its name.
+    pub file: String,
+    /// Lines that a controller must execute.
+    pub blocks: usize,
+    /// The size of its text.
+    pub bytes: usize,
 }
 
 /// The same job, cut as the drawing has it: every vertex a straight block at the process feed.

@@ -10,6 +10,7 @@ mod prepare;
 mod progress;
 mod reporting;
 mod showing;
+mod splitting;
 
 use std::collections::BTreeMap;
 
@@ -68,10 +69,13 @@ pub struct Plan {
     pub routed: Vec<Routed>,
     /// The moves as meant.
     pub routing: Routing,
-    /// The program's text.
+    /// The program's text, as a whole.
     pub text: String,
     /// What that text says, read back.
     pub program: Program,
+    /// The same in parts, in the order in which they are run, where the controller's memory is too small for the whole;
+    /// else none.
+    pub parts: Vec<Part>,
     /// What it was checked for.
     pub verdict: Verdict,
     /// Its planned times.
@@ -86,6 +90,15 @@ pub struct Plan {
     pub warnings: Vec<String>,
     /// How long each stage took, in milliseconds.
     pub timings_ms: BTreeMap<String, f64>,
+}
+
+/// A part of a program, complete by itself.
+#[derive(Clone, Debug)]
+pub struct Part {
+    /// Its text.
+    pub text: String,
+    /// What that text says, read back.
+    pub program: Program,
 }
 
 /// The same job with every span of the drawing as a block of its own.
@@ -125,10 +138,11 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let feeds = clock.time("feed", || feeding::suit(&mut routing.toolpath, &header, job));
     let text = clock.time("write", || gcode::write(&routing.toolpath, &header, &job.machine))?;
     let program = clock.time("read back", || read_back(&text, &job.machine))?;
-    let verdict = clock.time("check", || {
-        checking::check(job, &program, &prepared, &Intended { routed: &routed, setup: &setup, shift })
-    });
-    checking::hold(&verdict)?;
+    let intended = Intended { routed: &routed, setup: &setup, shift };
+    let verdict = clock.time("check", || checking::check(job, &program, &prepared, &intended));
+    checking::hold(&verdict.claims)?;
+    let check_part = |part: &Program| checking::check_part(job, part, &prepared, &intended);
+    let parts = splitting::parts(job, &routing.toolpath, &header, (&text, &program), check_part)?;
 
     let limits = Limits::of(&job.machine);
     let times = clock.time("time", || feed::time(&program.toolpath, &limits));
@@ -158,6 +172,7 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
         routing,
         text,
         program,
+        parts,
         verdict,
         times,
         highest_override,

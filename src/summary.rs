@@ -246,8 +246,18 @@ fn check(report: &Report) -> String {
 }
 
 fn program(report: &Report) -> String {
-    let file = if report.program.file == "-" { "to standard output" } else { &report.program.file };
-    format!("{file}, {} blocks, {} bytes", report.program.blocks, report.program.bytes)
+    let program = &report.program;
+    let sizes = format!("{} blocks, {} bytes", program.blocks, program.bytes);
+    match (program.parts.first(), program.parts.last()) {
+        (Some(first), Some(last)) => format!(
+            "{} to {}: {} parts, to be run one after the other, {sizes}",
+            first.file,
+            last.file,
+            program.parts.len()
+        ),
+        _ if program.file == "-" => format!("to standard output, {sizes}"),
+        _ => format!("{}, {sizes}", program.file),
+    }
 }
 
 /// `2 passes`, `1 line`.

@@ -158,8 +158,7 @@ pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Aske
         side => side::judge(&cuts, &placed, side, machine, asked),
     };
     let mut claims = shape.claims;
-    claims.extend(motion::judge(program, machine, asked));
-    claims.extend(start_end::judge(program, machine, asked));
+    claims.extend(check_moves(program, machine, asked));
     let holds = claims.iter().all(|claim| claim.state != State::Fails);
     let mut not_checked: Vec<String> = NEVER_CHECKED.iter().map(|&said| said.to_string()).collect();
     not_checked.extend(program.assumed.iter().map(|said| format!("taken for granted: {said}")));
@@ -172,6 +171,13 @@ pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Aske
     let deviation = shape.deviation.map(|d| Deviation { at: d.at - at, ..d });
     let uncut = uncut.into_iter().map(|u| Uncut { at: u.at - at, ..u }).collect();
     Verdict { holds, deviation, claims, uncut, not_checked }
+}
+
+/// Checks what holds of a program whatever it cuts: its moves, its start and its end. For a part of a longer program.
+pub fn check_moves(program: &Program, machine: &Machine, asked: &Asked) -> Vec<Claim> {
+    let mut claims = motion::judge(program, machine, asked);
+    claims.extend(start_end::judge(program, machine, asked));
+    claims
 }
 
 /// The drawing in the program's coordinates.

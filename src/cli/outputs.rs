@@ -4,7 +4,7 @@ use std::path::Path;
 
 use super::args::Post;
 use crate::error::{Error, Kind};
-use crate::files::Target;
+use crate::files::{Staged, Target};
 use crate::preview::{Scene, setup_sheet};
 
 /// Where everything goes.
@@ -46,14 +46,16 @@ impl Targets {
     /// Writes `main` and what was asked for beside it. All is ready before any of it appears, the main output last: it
     /// never stands without the others.
     pub(super) fn write(&self, main: &str, scene: &Scene) -> Result<(), Error> {
-        let staged_main = self.main.stage(main.as_bytes())?;
+        self.write_staged(vec![self.main.stage(main.as_bytes())?], scene)
+    }
+
+    /// Like [`write`](Self::write), for a main output of several files that are ready already.
+    pub(super) fn write_staged(&self, main: Vec<Staged>, scene: &Scene) -> Result<(), Error> {
         let stage = |target: &Target, text: String| target.stage(text.as_bytes());
         let report = self.report.as_ref().map(|target| stage(target, scene.report.json())).transpose()?;
         let sheet = self.sheet.as_ref().map(|target| stage(target, setup_sheet(scene))).transpose()?;
-        for staged in [report, sheet].into_iter().flatten() {
-            staged.appear(self.overwrite)?;
-        }
-        staged_main.appear(self.overwrite)
+        let all = [report, sheet].into_iter().flatten().chain(main);
+        all.into_iter().try_for_each(|staged| staged.appear(self.overwrite))
     }
 
     /// True when something goes to standard output.

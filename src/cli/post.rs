@@ -6,10 +6,10 @@ use super::progress::Bar;
 use super::{job_file, print, tell};
 use crate::cautions;
 use crate::error::{Error, Kind};
-use crate::files::{self, Target};
+use crate::files::{self, Staged, Target};
 use crate::job::Job;
 use crate::machine::Machine;
-use crate::run::{self, Source};
+use crate::run::{self, Part, Plan, Source};
 use crate::summary::summary;
 
 /// Carries out `ribband post`.
@@ -23,7 +23,8 @@ pub(super) fn post(typed: &Post) -> Result<(), Error> {
     let bytes = files::read(&typed.drawing)?;
     let plan = run::plan(&job, Source { name: &name, bytes: &bytes }, &Bar::new(typed.quiet))?;
     let told = run::report(&job, &plan, &name, &targets.main().name());
-    targets.write(&plan.text, &run::scene(&job, &plan, &told))?;
+    let staged = staged_programs(&plan, targets.main(), &job.machine, typed.outputs.overwrite)?;
+    targets.write_staged(staged, &run::scene(&job, &plan, &told))?;
 
     if typed.quiet {
         return Ok(());
@@ -34,6 +35,29 @@ pub(super) fn post(typed: &Post) -> Result<(), Error> {
         return Ok(());
     }
     print(&text)
+}
+
+/// The program's file, or those of its parts, ready to appear.
+fn staged_programs(
+    plan: &Plan,
+    to: &Target,
+    machine: &Machine,
+    overwrite: bool,
+) -> Result<Vec<Staged>, Error> {
+    if plan.parts.is_empty() {
+        return Ok(vec![to.stage(plan.text.as_bytes())?]);
+    }
+    if *to == Target::Stdout {
+        let what = format!("the program is {} parts for this controller's memory", plan.parts.len());
+        return Err(Error::new(Kind::Output, what).remedy("name a file with -o instead of standard output"));
+    }
+    let stage = |(k, part): (usize, &Part)| {
+        let target = to.part(k);
+        target.check(overwrite, &[])?;
+        named_for(&target, machine)?;
+        target.stage(part.text.as_bytes())
+    };
+    (1..).zip(&plan.parts).map(stage).collect()
 }
 
 /// Refuses a file name that the controller does not take.

@@ -16,6 +16,11 @@ pub(super) fn check(job: &Job, program: &Program, prepared: &Prepared, plan: &In
     check::check(program, &prepared.sketch, &job.machine, &asked(job, prepared, plan))
 }
 
+/// What holds of one part of the program by itself: all but what is about the drawing.
+pub(super) fn check_part(job: &Job, part: &Program, prepared: &Prepared, plan: &Intended) -> Vec<Claim> {
+    check::check_moves(part, &job.machine, &asked(job, prepared, plan))
+}
+
 /// What the program was meant to do, as far as the check may know it.
 pub(super) struct Intended<'a> {
     pub(super) routed: &'a [Routed],
@@ -60,12 +65,12 @@ pub(super) fn check_existing(job: &CheckJob, program: &Program, sketch: &Sketch)
 }
 
 /// Refuses a program for which a claim fails.
-pub(super) fn hold(verdict: &Verdict) -> Result<(), Error> {
-    if verdict.holds {
+pub(super) fn hold(claims: &[Claim]) -> Result<(), Error> {
+    let failed: Vec<String> =
+        claims.iter().filter(|claim| claim.state == State::Fails).map(in_words).collect();
+    if failed.is_empty() {
         return Ok(());
     }
-    let failed: Vec<String> =
-        verdict.claims.iter().filter(|claim| claim.state == State::Fails).map(in_words).collect();
     let what = format!(
         "the program fails its check against the drawing, so it was not written: {}",
         failed.join("; ")

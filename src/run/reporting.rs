@@ -1,14 +1,17 @@
 //! From a plan to its report.
 
+use std::path::Path;
+
 use kurbo::Rect;
 
 use super::Plan;
 use super::feeding::spindle_rpm;
 use crate::check::{self, Verdict};
 use crate::clean::Roughness;
+use crate::files::Target;
 use crate::fit::Fitted;
 use crate::job::Job;
-use crate::report::{AsDrawn, Check, Claim, Contour, Drawing, Program, Report, Setup, State};
+use crate::report::{AsDrawn, Check, Claim, Contour, Drawing, Part, Program, Report, Setup, State};
 use crate::sketch;
 use crate::toolpath::{Move, Toolpath};
 
@@ -109,11 +112,17 @@ fn program_of(plan: &Plan, file: &str) -> Program {
     let length = |wanted: fn(&Move) -> bool| {
         plan.program.toolpath.moves.iter().filter(|m| wanted(m)).map(Move::length).sum()
     };
+    let parts = parts_of(plan, file);
+    let blocks_of_parts = parts.iter().map(|part| part.blocks).sum();
+    let bytes_of_parts = parts.iter().map(|part| part.bytes).sum();
+    let motion_of_parts = plan.parts.iter().map(|part| part.program.motion_blocks).sum();
+    let of = |whole, parts| if plan.parts.is_empty() { whole } else { parts };
     Program {
         file: file.into(),
-        blocks: plan.program.blocks,
-        motion_blocks: plan.program.motion_blocks,
-        bytes: plan.text.len(),
+        blocks: of(plan.program.blocks, blocks_of_parts),
+        motion_blocks: of(plan.program.motion_blocks, motion_of_parts),
+        bytes: of(plan.text.len(), bytes_of_parts),
+        parts,
         cut_length_mm: length(|m| !m.is_rapid()),
         rapid_length_mm: length(Move::is_rapid),
         time_s: plan.times.time_s,
@@ -129,6 +138,17 @@ fn program_of(plan: &Plan, file: &str) -> Program {
             starved_blocks: plan.as_drawn.times.starved_blocks,
         },
     }
+}
+
+/// The files of a program in parts.
+fn parts_of(plan: &Plan, file: &str) -> Vec<Part> {
+    let target = Target::new(Some(Path::new(file)), Path::new(""), "");
+    let part = |(k, part): (usize, &super::Part)| Part {
+        file: target.part(k).name(),
+        blocks: part.program.blocks,
+        bytes: part.text.len(),
+    };
+    (1..).zip(&plan.parts).map(part).collect()
 }
 
 pub(super) fn check_of(verdict: &Verdict) -> Check {

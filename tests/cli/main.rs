@@ -7,6 +7,7 @@ mod lengths;
 mod other;
 mod outlines;
 mod outputs;
+mod parts;
 mod posting;
 mod reading;
 mod schema;

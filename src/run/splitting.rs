@@ -1,0 +1,43 @@
+//! Programs in parts, for a controller that holds little.
+
+use super::{Part, checking, read_back};
+use crate::error::{Error, Kind};
+use crate::gcode::{Header, Program, write_parts};
+use crate::job::Job;
+use crate::toolpath::{Move, Toolpath};
+
+/// The parts of a program whose `text` is longer than the controller's memory, each checked for what holds without the
+/// drawing, and all together for making the cuts of the whole `program`; none where the whole fits.
+pub(super) fn parts(
+    job: &Job,
+    toolpath: &Toolpath,
+    header: &Header,
+    whole: (&str, &Program),
+    check: impl Fn(&Program) -> Vec<crate::check::Claim>,
+) -> Result<Vec<Part>, Error> {
+    let (text, program) = whole;
+    let memory = job.machine.controller.memory_bytes.map_or(usize::MAX, |bytes| bytes as usize);
+    if text.len() <= memory {
+        return Ok(Vec::new());
+    }
+    let mut parts = Vec::new();
+    for written in write_parts(toolpath, header, &job.machine)? {
+        let program = read_back(&written.text, &job.machine)?;
+        checking::hold(&check(&program))?;
+        parts.push(Part { text: written.text, program });
+    }
+    let together = parts.iter().flat_map(|part| cuts(&part.program));
+    if cuts(program).eq(together) {
+        return Ok(parts);
+    }
+    Err(Error::new(
+        Kind::Refused,
+        "the parts of the program do not make the cuts of the whole, so none was written",
+    )
+    .remedy("please report it; a wider tolerance makes a shorter program"))
+}
+
+/// The moves at feed, wherever they stand in the text.
+fn cuts(program: &Program) -> impl Iterator<Item = Move> + '_ {
+    program.toolpath.moves.iter().filter(|m| !m.is_rapid()).map(|m| Move { line: 0, ..*m })
+}

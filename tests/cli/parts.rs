@@ -1,0 +1,97 @@
+//! Programs that are longer than the controller's memory: numbered parts, each complete, together the whole.
+
+use std::fmt::Write;
+
+use ribband::gcode::{Dialect, interpret, read};
+use ribband::machine::Machine;
+use serde_json::Value;
+
+use crate::bad::Shop;
+
+/// Rows of five-cornered flowers, 30 mm apart, as a list of points.
+fn flowers(rows: u32) -> String {
+    let mut text = String::new();
+    for (column, row) in (0..5).flat_map(|column| (0..rows).map(move |row| (column, row))) {
+        for i in 0..=120 {
+            let angle = std::f64::consts::TAU * f64::from(i % 120) / 120.0;
+            let radius = 11.0 + 2.0 * (5.0 * angle).sin();
+            let (x, y) = (radius * angle.cos(), radius * angle.sin());
+            let (x, y) = (x + 30.0 * f64::from(column), y + 30.0 * f64::from(row));
+            writeln!(text, "{x:.4},{y:.4}").expect("a string takes it");
+        }
+        text.push('\n');
+    }
+    text
+}
+
+fn shop() -> Shop {
+    let shop = Shop::new();
+    shop.put("FLOWERS.csv", flowers(6));
+    shop.put("ONE.csv", flowers(1));
+    shop
+}
+
+const TYPED: [&str; 7] =
+    ["--drawing-unit", "mm", "--depth", "3", "--machine", "old-controller", "--tolerance=0.05"];
+
+#[test]
+fn a_program_longer_than_the_memory_is_numbered_parts_that_make_every_cut() {
+    let shop = shop();
+    let ended =
+        shop.run(&[&["post", "FLOWERS.csv", "-o", "F.nc", "--report", "r.json"], &TYPED[..]].concat());
+    assert_eq!(ended.status, 0, "{}", ended.err);
+    let report: Value = serde_json::from_str(&shop.text("r.json")).expect("JSON");
+    let parts = report["program"]["parts"].as_array().expect("a list");
+    assert!(parts.len() >= 2, "{parts:?}");
+    assert!(
+        ended.out.contains(&format!("F-1.nc to F-{}.nc: {} parts", parts.len(), parts.len())),
+        "{}",
+        ended.out
+    );
+    let old = Machine::named("old-controller").expect("built in");
+    let (mut cut, mut bytes, mut blocks) = (0.0, 0, 0);
+    for (k, part) in (1..).zip(parts) {
+        assert_eq!(part["file"], format!("F-{k}.nc"));
+        let text = shop.text(&format!("F-{k}.nc"));
+        assert!(
+            text.len() <= 32768 && text.contains(&format!("part {k} of {}", parts.len())),
+            "{}",
+            text.len()
+        );
+        let program = interpret(&read(&text).expect("words"), &Dialect::of(&old)).expect("a program");
+        assert!(program.ended.is_some(), "complete by itself");
+        cut += program.toolpath.moves.iter().filter(|m| !m.is_rapid()).map(|m| m.length()).sum::<f64>();
+        (bytes, blocks) = (bytes + text.len(), blocks + program.blocks);
+    }
+    let of = |field: &str| report["program"][field].as_f64().expect("a number");
+    assert!((cut - of("cut_length_mm")).abs() < 1e-6, "{cut}");
+    assert_eq!((of("bytes"), of("blocks")), (bytes as f64, blocks as f64));
+    assert_eq!(of("starved_blocks"), 0.0);
+    assert!(!shop.path("F.nc").exists(), "the whole stands nowhere");
+}
+
+#[test]
+fn a_program_that_fits_is_one_file() {
+    let shop = shop();
+    let ended = shop.run(&[&["post", "ONE.csv", "-o", "ONE.nc", "--report", "r.json"], &TYPED[..]].concat());
+    assert_eq!(ended.status, 0, "{}", ended.err);
+    let report: Value = serde_json::from_str(&shop.text("r.json")).expect("JSON");
+    assert_eq!(report["program"]["parts"], serde_json::json!([]));
+    assert!(shop.text("ONE.nc").len() <= 32768);
+}
+
+#[test]
+fn parts_replace_nothing_and_need_names_that_the_controller_takes() {
+    let shop = shop();
+    shop.put("F-2.nc", "mine");
+    let post = |output: &str| shop.run(&[&["post", "FLOWERS.csv", "-o", output], &TYPED[..]].concat());
+    let taken = post("F.nc");
+    assert_eq!(taken.status, 4, "{}", taken.err);
+    assert!(taken.err.contains("F-2.nc") && shop.text("F-2.nc") == "mine", "{}", taken.err);
+    assert!(!shop.path("F-1.nc").exists(), "none without the others");
+    // Eight characters are fine for one file, and two too long for its parts.
+    let long = post("FLOWERS8.nc");
+    assert_eq!(long.status, 2, "{}", long.err);
+    let piped = post("-");
+    assert_eq!((piped.status, piped.out.as_str()), (4, ""), "{}", piped.err);
+}
