@@ -2,6 +2,7 @@
 
 mod args;
 mod check;
+mod compare;
 mod condense;
 mod generate;
 mod machines;
@@ -49,6 +50,7 @@ fn carry_out(command: Command) -> Result<(), Error> {
         Command::Check(typed) => check::check(&typed),
         Command::Preview(typed) => preview::preview(&typed),
         Command::Condense(typed) => condense::condense(&typed),
+        Command::Compare(typed) => compare::compare(&typed),
         Command::Machines { name, report, overwrite } => {
             machines::machines(name.as_deref(), report.as_deref(), overwrite)
         }

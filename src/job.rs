@@ -5,6 +5,7 @@ mod checking;
 mod condensing;
 mod cutting;
 mod file;
+mod ladder;
 mod settings;
 
 use std::collections::BTreeMap;
@@ -19,6 +20,7 @@ pub use checking::{CheckArgs, CheckJob};
 pub use condensing::{CondenseArgs, CondenseJob};
 pub use cutting::Cutting;
 pub use file::{JobFile, LayerSettings};
+pub use ladder::{Ladder, LadderArgs};
 pub use settings::{DrawingArgs, DrawingUnit, Entry, Held, Origin, Outputs, SettingUpArgs, Settings, Zero};
 
 /// A job whose settings are whole and inside their bounds. Lengths in mm, feeds in mm/min.

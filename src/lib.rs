@@ -9,6 +9,7 @@ pub mod cautions;
 pub mod check;
 pub mod clean;
 pub mod cli;
+pub mod compare;
 pub mod condense;
 pub mod error;
 pub mod fair;

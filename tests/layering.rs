@@ -36,11 +36,12 @@ const ROOMS: &[(&str, &[&str])] = &[
     ),
     ("summary", &["num", "report"]),
     ("report", &["check", "error", "job", "machine"]),
+    ("compare", &["clean", "error", "job", "num", "preview", "run", "summary"]),
     (
         "cli",
         &[
-            "cautions", "condense", "error", "files", "job", "machine", "measure", "num", "preview", "read",
-            "report", "run", "summary",
+            "cautions", "compare", "condense", "error", "files", "job", "machine", "measure", "num",
+            "preview", "read", "report", "run", "summary",
         ],
     ),
 ];

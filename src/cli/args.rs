@@ -5,7 +5,7 @@ use std::path::PathBuf;
 use clap::{Args, Parser, Subcommand};
 use clap_complete::Shell;
 
-use crate::job::{CheckArgs, CondenseArgs, DrawingArgs, Outputs, Settings};
+use crate::job::{CheckArgs, CondenseArgs, DrawingArgs, LadderArgs, Outputs, Settings};
 
 /// Traced outlines to smooth router programs.
 #[derive(Parser, Debug)]
@@ -36,6 +36,8 @@ pub(super) enum Command {
     Preview(Preview),
     /// Fewer blocks for an existing program, within a tolerance
     Condense(Condense),
+    /// Hold a range of tolerances against blocks, time, starved blocks and deviation
+    Compare(Compare),
     /// List the machine profiles, or check and explain one of them
     Machines {
         /// A built-in profile, or a TOML file
@@ -140,6 +142,43 @@ pub(super) struct Condense {
     /// Print errors only
     #[arg(long, help_heading = "Files")]
     pub(super) quiet: bool,
+}
+
+/// `ribband compare` as typed.
+#[derive(Args, Debug)]
+#[command(after_help = COMPARE_EXAMPLES)]
+pub(super) struct Compare {
+    /// The drawing: SVG, DXF or a list of points
+    pub(super) drawing: PathBuf,
+    #[command(flatten)]
+    pub(super) range: LadderArgs,
+    #[command(flatten)]
+    pub(super) settings: Settings,
+    #[command(flatten)]
+    pub(super) outputs: CompareOutputs,
+    /// Take settings from this file; what is typed wins
+    #[arg(long, value_name = "FILE", help_heading = "Files")]
+    pub(super) job: Option<PathBuf>,
+}
+
+const COMPARE_EXAMPLES: &str = "No program is written. Without --depth, 1 mm is compared.
+
+Examples:
+  ribband compare sign.dxf --machine old-controller
+  ribband compare blade.svg --from 0.05mm --to 0.5mm --steps 6 -o blade-cost.svg";
+
+/// Where the outputs of `ribband compare` go.
+#[derive(Args, Debug)]
+pub(super) struct CompareOutputs {
+    /// Draw the comparison as an SVG picture; - is standard output
+    #[arg(short, long, value_name = "FILE", help_heading = "Files")]
+    pub(super) output: Option<PathBuf>,
+    /// Write the figures in JSON
+    #[arg(long, value_name = "FILE", help_heading = "Files")]
+    pub(super) report: Option<PathBuf>,
+    /// Replace outputs that exist already
+    #[arg(long, help_heading = "Files")]
+    pub(super) overwrite: bool,
 }
 
 /// Where the outputs of `ribband condense` go.

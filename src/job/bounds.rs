@@ -18,6 +18,8 @@ pub(super) struct Bound {
 
 pub(super) const TOLERANCE: Bound =
     Bound { name: "tolerance", unit: "mm", least: 1e-5, most: 10.0, reason: "shapes are lost beyond it" };
+pub(super) const FROM: Bound = Bound { name: "from", ..TOLERANCE };
+pub(super) const TO: Bound = Bound { name: "to", ..TOLERANCE };
 pub(super) const JOIN: Bound = Bound {
     name: "join",
     unit: "mm",

@@ -6,7 +6,7 @@ use crate::geom::Span;
 
 /// `text` as it must stand in an element or in a quoted attribute, to be shown and not obeyed. Characters that
 /// XML 1.0 has no place for (its section 2.2) are shown as the replacement character.
-pub(super) fn escaped(text: &str) -> String {
+pub(crate) fn escaped(text: &str) -> String {
     let mut safe = String::with_capacity(text.len());
     for c in text.chars() {
         match c {

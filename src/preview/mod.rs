@@ -24,6 +24,7 @@ use crate::report::Report;
 use crate::sketch::Sketch;
 
 pub use chord::{Chord, Lap, Station};
+pub(crate) use markup::escaped;
 pub use page::{MOST_MOVES, page};
 pub use sheet::setup_sheet;
 pub use still::still;

@@ -39,12 +39,12 @@ pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup,
 }
 
 /// What of the tolerance is kept for arcs that become straight blocks, in mm: a quarter on a machine without arcs; a
-/// twentieth on one without helices, whose ramps along arcs become blocks, and many where the share is small. On others
+/// tenth on one without helices, whose ramps along arcs become blocks, and many where the share is small. On others
 /// only arcs that are straight within half a unit of the last place become blocks.
 pub(super) fn chord_error(machine: &Machine, tolerance: Tolerance) -> f64 {
     match (machine.arcs.style, machine.arcs.helices) {
         (ArcStyle::None, _) => tolerance.mm() / 4.0,
-        (_, false) => tolerance.mm() / 20.0,
+        (_, false) => tolerance.mm() / 10.0,
         (_, true) => 0.0,
     }
 }

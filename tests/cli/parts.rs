@@ -8,15 +8,14 @@ use serde_json::Value;
 
 use crate::bad::Shop;
 
-/// Rows of five-cornered flowers, 30 mm apart, as a list of points.
-fn flowers(rows: u32) -> String {
+/// Five-cornered flowers, 30 mm apart, as a list of points.
+fn flowers(count: u32) -> String {
     let mut text = String::new();
-    for (column, row) in (0..5).flat_map(|column| (0..rows).map(move |row| (column, row))) {
+    for column in 0..count {
         for i in 0..=120 {
             let angle = std::f64::consts::TAU * f64::from(i % 120) / 120.0;
             let radius = 11.0 + 2.0 * (5.0 * angle).sin();
-            let (x, y) = (radius * angle.cos(), radius * angle.sin());
-            let (x, y) = (x + 30.0 * f64::from(column), y + 30.0 * f64::from(row));
+            let (x, y) = (radius * angle.cos() + 30.0 * f64::from(column), radius * angle.sin());
             writeln!(text, "{x:.4},{y:.4}").expect("a string takes it");
         }
         text.push('\n');
@@ -26,13 +25,13 @@ fn flowers(rows: u32) -> String {
 
 fn shop() -> Shop {
     let shop = Shop::new();
-    shop.put("FLOWERS.csv", flowers(6));
+    shop.put("FLOWERS.csv", flowers(9));
     shop.put("ONE.csv", flowers(1));
     shop
 }
 
 const TYPED: [&str; 7] =
-    ["--drawing-unit", "mm", "--depth", "3", "--machine", "old-controller", "--tolerance=0.05"];
+    ["--drawing-unit", "mm", "--depth", "3", "--machine", "old-controller", "--pass=0.5"];
 
 #[test]
 fn a_program_longer_than_the_memory_is_numbered_parts_that_make_every_cut() {
