@@ -31,7 +31,7 @@ impl Knee {
             return None;
         }
         let reason = format!(
-            "below it, twice the tolerance {}; above it {}",
+            "below it, twice the tolerance {}; above it, it {}",
             effect(slope(knee[0], knee[1])),
             effect(slope(knee[1], knee[2]))
         );

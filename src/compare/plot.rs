@@ -1,18 +1,19 @@
 //! A comparison as a picture: blocks and time over the tolerance, the knee marked.
 
 use std::fmt::Write;
+use std::path::Path;
 
 use super::{Comparison, Figures};
 use crate::preview::escaped;
 
 const WIDTH: f64 = 720.0;
-const HEIGHT: f64 = 620.0;
+const HEIGHT: f64 = 640.0;
 /// The sides of both panels.
 const LEFT: f64 = 84.0;
 const RIGHT: f64 = 690.0;
 /// The tops and bottoms of the panels.
-const BLOCKS: (f64, f64) = (78.0, 292.0);
-const TIME: (f64, f64) = (352.0, 548.0);
+const BLOCKS: (f64, f64) = (102.0, 312.0);
+const TIME: (f64, f64) = (372.0, 568.0);
 
 const STYLE: &str = "text{font:13px sans-serif;fill:#1c2430}.head{font-size:17px}.soft{fill:#555046}\
 .grid{stroke:#cfc7b4;stroke-width:1}.curve{fill:none;stroke:#14406f;stroke-width:2.5}.dot{fill:#14406f}\
@@ -54,7 +55,9 @@ impl Comparison {
     /// The comparison as an SVG picture.
     pub fn plot(&self) -> String {
         let tolerances = Scale::holding(self.rows.iter().map(|row| row.tolerance_mm), (LEFT, RIGHT));
-        let title = escaped(&format!("{} on {}: what accuracy costs", self.drawing, self.machine));
+        let file =
+            Path::new(&self.drawing).file_name().map_or_else(|| "-".into(), |name| name.to_string_lossy());
+        let title = escaped(&format!("What accuracy costs: {file} on {}", self.machine));
         let mut svg = format!(
             "<svg xmlns=\"http://www.w3.org/2000/svg\" viewBox=\"0 0 {WIDTH} {HEIGHT}\" width=\"{WIDTH}\" \
              height=\"{HEIGHT}\" role=\"img\"><title>{title}</title><desc>{}</desc><style>{STYLE}</style>\
@@ -72,14 +75,6 @@ impl Comparison {
         svg.push_str(&self.foot(tolerances));
         svg.push_str("</svg>\n");
         svg
-    }
-
-    /// The knee in words.
-    fn reason(&self) -> String {
-        match &self.knee {
-            Some(knee) => format!("knee at {} mm: {}", knee.tolerance_mm, knee.reason),
-            None => "no knee: the blocks fall evenly with the tolerance".into(),
-        }
     }
 
     /// One figure over the tolerance, with a line for the drawing as it is.
@@ -153,11 +148,18 @@ impl Comparison {
         let _ = writeln!(
             svg,
             "<text x=\"{LEFT}\" y=\"{:.1}\">tolerance, mm; starved blocks: {starved} of ours in all, {} as \
-             drawn</text><text class=\"told\" x=\"{LEFT}\" y=\"50\">{}</text></g>",
+             drawn</text>",
             TIME.1 + 46.0,
             self.as_drawn.starved_blocks,
-            escaped(&self.reason())
         );
+        for (line, y) in self.reason().split_inclusive("; ").zip([50.0, 68.0]) {
+            let _ = writeln!(
+                svg,
+                "<text class=\"told\" x=\"{LEFT}\" y=\"{y}\">{}</text>",
+                escaped(line.trim_end())
+            );
+        }
+        svg.push_str("</g>");
         svg
     }
 }

@@ -2,7 +2,7 @@
 
 use comfy_table::{CellAlignment, Table, presets::NOTHING};
 
-use super::{Comparison, Figures, Row};
+use super::{Comparison, Figures, Knee, Row};
 use crate::num::LengthUnit;
 use crate::summary::duration;
 
@@ -41,8 +41,12 @@ impl Comparison {
         else {
             return vec![tolerance, "refused".into()];
         };
-        let knee =
-            self.knee.as_ref().is_some_and(|knee| knee.tolerance_mm.total_cmp(&row.tolerance_mm).is_eq());
+        let at_knee = |knee: &Knee| knee.tolerance_mm.total_cmp(&row.tolerance_mm).is_eq();
+        let marks = [
+            ("<- knee", self.knee.as_ref().is_some_and(at_knee)),
+            ("over the memory", self.memory_bytes.is_some_and(|memory| bytes > memory as usize)),
+        ];
+        let marks: Vec<&str> = marks.iter().filter(|(_, holds)| *holds).map(|(mark, _)| *mark).collect();
         vec![
             tolerance,
             motion_blocks.to_string(),
@@ -51,16 +55,21 @@ impl Comparison {
             duration(cut_time_s),
             starved_blocks.to_string(),
             deviation_mm.map_or("not found".into(), length),
-            if knee { "<- knee".into() } else { String::new() },
+            marks.join(", "),
         ]
+    }
+
+    /// The knee in words.
+    pub(super) fn reason(&self) -> String {
+        match &self.knee {
+            Some(knee) => format!("knee at {} mm: {}", knee.tolerance_mm, knee.reason),
+            None => "no knee: the blocks change evenly with the tolerance".into(),
+        }
     }
 
     /// The knee, the trace's own limit, and the refusals in words.
     fn told(&self) -> String {
-        let knee = match &self.knee {
-            Some(knee) => format!("knee at {} mm: {}", knee.tolerance_mm, knee.reason),
-            None => "no knee: the blocks fall evenly with the tolerance".into(),
-        };
+        let knee = self.reason();
         let support = match self.supports_mm {
             0.0 => String::new(),
             mm => format!("the trace supports a tolerance of {mm} mm: {}\n", self.supports_why),
