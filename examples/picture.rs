@@ -6,7 +6,7 @@
 use std::fmt::Write;
 
 use ribband::geom::Span;
-use ribband::job::{DrawingArgs, DrawingUnit, Job, JobFile, Settings};
+use ribband::job::{CutArgs, DrawingArgs, DrawingUnit, Job, JobFile, Settings};
 use ribband::num::Length;
 use ribband::run::{Plan, Source, Unwatched, plan};
 
@@ -16,7 +16,7 @@ const MARGIN: f64 = 6.0;
 fn main() -> Result<(), Box<dyn std::error::Error>> {
     let name = std::env::args().nth(1).ok_or("name a drawing")?;
     let settings = Settings {
-        depth: Some(Length::from_mm(3.0)),
+        cut: CutArgs { depth: Some(Length::from_mm(3.0)), ..CutArgs::default() },
         drawing: DrawingArgs { drawing_unit: Some(DrawingUnit::Mm), ..DrawingArgs::default() },
         ..Settings::default()
     };

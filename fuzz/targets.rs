@@ -3,7 +3,7 @@
 use ribband::error::{Error, Kind};
 use ribband::gcode::{self, Dialect};
 use ribband::geom::ArcSpline;
-use ribband::job::{DrawingArgs, DrawingUnit, Job, JobFile, Settings};
+use ribband::job::{CutArgs, DrawingArgs, DrawingUnit, Job, JobFile, Settings};
 use ribband::machine::Machine;
 use ribband::num::Length;
 use ribband::read::{self, Scale, Unit};
@@ -123,7 +123,7 @@ fn post(input: &[u8]) -> Result<bool, String> {
     let millimetres = |mm| Some(Length::from_mm(mm));
     let typed = Settings {
         drawing: DrawingArgs { drawing_unit: Some(DrawingUnit::Mm), ..DrawingArgs::default() },
-        depth: millimetres(3.0),
+        cut: CutArgs { depth: millimetres(3.0), ..CutArgs::default() },
         tolerance: millimetres(0.02 + f64::from(input.first().copied().unwrap_or(0)) / 256.0),
         ..Settings::default()
     };

@@ -7,6 +7,7 @@ mod cutting;
 mod file;
 mod ladder;
 mod settings;
+mod wishes;
 
 use std::collections::BTreeMap;
 use std::path::Path;
@@ -18,10 +19,11 @@ use crate::num::{Length, LengthUnit, Tolerance};
 
 pub use checking::{CheckArgs, CheckJob};
 pub use condensing::{CondenseArgs, CondenseJob};
-pub use cutting::Cutting;
+pub use cutting::{Cutting, TabNumber, Tabs};
 pub use file::{JobFile, LayerSettings};
 pub use ladder::{Ladder, LadderArgs};
-pub use settings::{DrawingArgs, DrawingUnit, Entry, Held, Origin, Outputs, SettingUpArgs, Settings, Zero};
+pub use settings::{DrawingArgs, DrawingUnit, Origin, Outputs, SettingUpArgs, Settings, Zero};
+pub use wishes::{Corners, CutArgs, Direction, Entry, Held, Side, TabsWanted};
 
 /// A job whose settings are whole and inside their bounds. Lengths in mm, feeds in mm/min.
 #[derive(Clone, Debug)]
@@ -36,6 +38,8 @@ pub struct Job {
     pub cutter_mm: f64,
     /// The cutter's entry in the profile, if it has one.
     pub cutter: Option<Cutter>,
+    /// Material left on the drawn edge, in mm; negative for a looser fit.
+    pub allowance_mm: f64,
     /// How contours are cut.
     pub cutting: Cutting,
     /// How the contours of single layers are cut instead; `None` where they are left out.
@@ -66,6 +70,8 @@ pub struct Stock {
     pub zero: Zero,
     /// The stock's thickness, where it is given.
     pub thickness_mm: Option<f64>,
+    /// The deepest cut into the bed that is allowed.
+    pub bed_cut_mm: f64,
     /// How far above the stock the cutter travels, where that was said.
     pub clearance_mm: Option<f64>,
     /// Where X and Y are zero; `None` where that was not said.
@@ -74,6 +80,8 @@ pub struct Stock {
 
 /// How far above the stock the cutter travels where nothing else is asked for, in mm.
 const DEFAULT_CLEARANCE_MM: f64 = 5.0;
+/// How far into the bed a cut may go where nothing else is asked for, in mm.
+const DEFAULT_BED_CUT_MM: f64 = 0.3;
 /// How many units of the last decimal a tolerance must span at least: fitting loses 1.5 of them to the rounding of the
 /// program's numbers.
 const LEAST_TOLERANCE_STEPS: f64 = 3.0;
@@ -123,24 +131,39 @@ impl Job {
             spans_decimals(tolerance, &machine)?;
         }
         let (cutter_mm, cutter) = cutter(all.cutter.as_deref(), &machine, mm)?;
-        let maker = cutting::Maker { machine: &machine, mm, cutter_mm, cutter: cutter.as_ref() };
+        let bed_cut = mm.length(&bounds::BED_CUT, all.bed_cut)?.unwrap_or(DEFAULT_BED_CUT_MM);
+        let stock = Stock { bed_cut_mm: bed_cut, ..stock(&all.setting_up, mm)? };
+        let maker =
+            cutting::Maker { machine: &machine, mm, cutter_mm, cutter: cutter.as_ref(), stock: &stock };
         let cutting = maker.cutting(&all)?;
         let entry = |(name, entry): (&String, &LayerSettings)| {
             let wanted = typed.clone().or(entry.settings()).or(file.settings.clone());
             let cutting = if entry.skip { None } else { Some(maker.cutting(&wanted)?) };
             Ok((name.clone(), cutting))
         };
-        let layers = file.layers.iter().map(entry).collect::<Result<_, Error>>()?;
+        let layers = file.layers.iter().map(entry).collect::<Result<BTreeMap<_, _>, Error>>()?;
+        let allowance_mm = mm.length(&bounds::ALLOWANCE, all.allowance)?.unwrap_or(0.0);
+        let beside = |cutting: &Cutting| cutting.side != Side::On;
+        if allowance_mm != 0.0 && !(beside(&cutting) || layers.values().flatten().any(beside)) {
+            let what = "--allowance moves the cutter off the drawn edge, and the cut is on the line";
+            return Err(Error::new(Kind::Settings, what).remedy("choose a --side, or leave --allowance out"));
+        }
         Ok(Self {
             drawing: drawing(&all.drawing, mm)?,
             tolerance: tolerance.and_then(Tolerance::new),
             cutter_mm,
             cutter,
+            allowance_mm,
             cutting,
             layers,
-            stock: stock(&all.setting_up, mm)?,
+            stock,
             machine,
         })
+    }
+
+    /// All ways in which contours may be cut.
+    pub fn cuttings(&self) -> impl Iterator<Item = &Cutting> {
+        std::iter::once(&self.cutting).chain(self.layers.values().flatten())
     }
 
     /// How the contours of a layer are cut; `None` where they are left out.
@@ -215,6 +238,7 @@ fn stock(typed: &SettingUpArgs, mm: Units) -> Result<Stock, Error> {
     Ok(Stock {
         zero: typed.zero.unwrap_or_default(),
         thickness_mm,
+        bed_cut_mm: DEFAULT_BED_CUT_MM,
         clearance_mm: mm.length(&bounds::CLEARANCE, typed.clearance)?,
         origin: typed.origin,
     })

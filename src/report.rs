@@ -200,6 +200,8 @@ pub struct Claim {
     pub value: Option<f64>,
     /// What is allowed, in `unit`.
     pub limit: Option<f64>,
+    /// True when the limit is the least that is allowed; else it is the most.
+    pub least: bool,
     /// The unit of both; empty for a count.
     pub unit: String,
     /// Where in the program the worst was found.

@@ -10,6 +10,7 @@ mod prepare;
 mod progress;
 mod reporting;
 mod showing;
+mod siding;
 mod splitting;
 
 use std::collections::BTreeMap;
@@ -23,7 +24,7 @@ use crate::clean::{Cleaned, Roughness};
 use crate::error::Error;
 use crate::feed::{self, Limits, Times};
 use crate::fit::{self, Fitted};
-use crate::gcode::{self, Dialect, Program};
+use crate::gcode::{self, Dialect, Header, Program};
 use crate::job::{CheckJob, DrawingSettings, Job};
 use crate::machine::Machine;
 use crate::measure::{self, Measurement};
@@ -31,7 +32,7 @@ use crate::num::Tolerance;
 use crate::preview::Scene;
 use crate::read;
 use crate::report::{self, Report};
-use crate::route::{self, Routed, Routing};
+use crate::route::{self, Routed, Routing, Setup};
 use crate::sketch::{Contour, Sketch};
 use checking::Intended;
 use clock::Clock;
@@ -125,20 +126,22 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let mut clock = Clock::default();
     let prepared = prepare(job, source, &mut clock)?;
     let contours = &prepared.cleaned.contours;
+    let sides = siding::sides(job, &prepared)?;
     let fitting = prepare::left_for_fitting(job, &prepared)?;
     let fitted = clock.time("fit", || fit(contours, fitting, progress));
 
     let shift = placing::shift(job.stock.origin(), prepared.part);
     let setup = cutting::setup(job, prepared.part, shift);
-    let routed = cutting::routed(job, contours, fitted.iter().map(|fitted| &fitted.path), shift);
-    let mut routing = clock.time("route", || route::route(&routed, &setup))?;
+    let sided = clock
+        .time("offset", || cutting::sided(job, contours, &fitted, (&sides, prepared.tolerance), shift))?;
+    let mut routing = clock.time("route", || route::route(&sided.routed, &setup))?;
 
     let sha256 = digest(source.bytes);
     let header = header::header(job, source.name, prepared.tolerance, &setup, &sha256);
     let feeds = clock.time("feed", || feeding::suit(&mut routing.toolpath, &header, job));
     let text = clock.time("write", || gcode::write(&routing.toolpath, &header, &job.machine))?;
     let program = clock.time("read back", || read_back(&text, &job.machine))?;
-    let intended = Intended { routed: &routed, setup: &setup, shift };
+    let intended = Intended { routed: &sided.routed, setup: &setup, sides: &sides, shift };
     let verdict = clock.time("check", || checking::check(job, &program, &prepared, &intended));
     checking::hold(&verdict.claims)?;
     let check_part = |part: &Program| checking::check_part(job, part, &prepared, &intended);
@@ -147,17 +150,11 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let limits = Limits::of(&job.machine);
     let times = clock.time("time", || feed::time(&program.toolpath, &limits));
     let highest_override = clock.time("override", || feed::highest_override(&program.toolpath, &limits));
-    let as_drawn = clock.time("as drawn", || {
-        let paths = contours.iter().map(|contour| &contour.path);
-        let toolpath = route::route(&cutting::routed(job, contours, paths, shift), &setup)?.toolpath;
-        let as_drawn = gcode::write(&toolpath, &header, &job.machine)?;
-        // Both texts have the same lines but for their motion.
-        let still = text.lines().count() - program.motion_blocks;
-        let motion_blocks = as_drawn.lines().count() - still;
-        Ok(AsDrawn { motion_blocks, times: feed::time(&toolpath, &limits) })
-    })?;
+    let as_drawn = clock.time("as drawn", || as_drawn(job, contours, (&setup, &header, shift)))?;
     let roughness = clock.time("measure", || prepare::roughness(contours));
     let mut warnings = prepared.warnings;
+    warnings.extend(sides.notes);
+    warnings.extend(sided.notes);
     warnings.extend(routing.notes.iter().cloned());
     warnings.extend(feeds);
     Ok(Plan {
@@ -168,7 +165,7 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
         roughness,
         fitted,
         shift,
-        routed,
+        routed: sided.routed,
         routing,
         text,
         program,
@@ -181,6 +178,18 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
         warnings,
         timings_ms: clock.times(),
     })
+}
+
+/// The same job with the drawing's own spans, on the line.
+fn as_drawn(
+    job: &Job,
+    contours: &[Contour],
+    (setup, header, shift): (&Setup, &Header, Vec2),
+) -> Result<AsDrawn, Error> {
+    let setup = Setup { keep_outs: Vec::new(), ..setup.clone() };
+    let toolpath = route::route(&cutting::as_drawn(job, contours, shift), &setup)?.toolpath;
+    let motion_blocks = gcode::blocks_of(&toolpath, header, &job.machine).iter().sum();
+    Ok(AsDrawn { motion_blocks, times: feed::time(&toolpath, &Limits::of(&job.machine)) })
 }
 
 /// Reads a drawing and measures what is in it.

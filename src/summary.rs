@@ -23,7 +23,9 @@ pub fn summary(report: &Report) -> String {
         ("Program", program(report)),
     ];
     let mut text = String::new();
-    for (name, told) in rows {
+    let uncut = report.contours.iter().flat_map(|c| c.uncut.iter().map(move |told| (c.id, told)));
+    let uncut = uncut.map(|(id, told)| ("Uncut", format!("contour {id}: {told}")));
+    for (name, told) in rows.into_iter().chain(uncut) {
         // A string takes everything that is written to it.
         let _ = writeln!(text, "{name:10} {told}");
     }
@@ -99,7 +101,8 @@ fn cut(setup: &Setup, show: Show) -> String {
     let passes = counted(setup.passes, "pass");
     let depth = show.size(setup.depth_mm);
     let side = side_words(&setup.side);
-    format!("{depth} {} deep in {passes}, {side}", show.unit())
+    let direction = setup.direction.as_ref().map_or(String::new(), |direction| format!(", {direction}"));
+    format!("{depth} {} deep in {passes}, {side}{direction}", show.unit())
 }
 
 /// What came of condensing a program, with a line end.
@@ -153,7 +156,8 @@ fn figures(claim: &Claim) -> String {
     let unit = if claim.unit.is_empty() { String::new() } else { format!(" {}", claim.unit) };
     let mut told = match (claim.value, claim.limit) {
         (Some(value), Some(limit)) if !claim.unit.is_empty() => {
-            format!(": {} found, {}{unit} allowed", four_places(value), four_places(limit))
+            let bound = if claim.least { "least" } else { "most" };
+            format!(": {} found, {}{unit} at {bound} allowed", four_places(value), four_places(limit))
         }
         _ => String::new(),
     };
@@ -172,10 +176,13 @@ fn four_places(value: f64) -> String {
 }
 
 /// What a side means for the part's size.
-pub fn side_words(side: &str) -> String {
+pub fn side_words(side: &str) -> &'static str {
     match side {
-        "on" => "on the line: the part comes out smaller by the cutter's radius".into(),
-        other => format!("{other} the contour"),
+        "on" => "on the line: the part comes out smaller by the cutter's radius",
+        "inside" => "inside the contours: holes keep the drawn size",
+        "outside" => "outside the contours: parts keep the drawn size",
+        "auto" => "outside the outer contours, inside the holes: parts keep the drawn size",
+        _ => "on the side that each layer asks for",
     }
 }
 

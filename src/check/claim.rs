@@ -28,6 +28,8 @@ pub struct Claim {
     pub value: Option<f64>,
     /// What is allowed, in `unit`.
     pub limit: Option<f64>,
+    /// True when the limit is the least that is allowed; else it is the most.
+    pub least: bool,
     /// The unit of both: "mm", "mm/min", "rev/min" or "" for a count.
     pub unit: &'static str,
     /// Where the worst was found.
@@ -118,6 +120,7 @@ impl Claim {
             state,
             value: worst.found(),
             limit: Some(limit),
+            least: false,
             unit,
             at: worst.at,
             note: String::new(),
@@ -134,20 +137,38 @@ impl Claim {
     ) -> Self {
         let mut claim = Self::at_most(name, unit, worst, -limit, slack);
         claim.value = claim.value.map(|value| -value);
-        claim.limit = Some(limit);
+        (claim.limit, claim.least) = (Some(limit), true);
         claim
     }
 
     /// The claim that nothing of a kind was met: `found` of them, the first at `at`.
     pub(super) fn none_of(name: &'static str, found: usize, at: Option<Spot>) -> Self {
         let state = if found == 0 { State::Holds } else { State::Fails };
-        Self { name, state, value: Some(found as f64), limit: Some(0.0), unit: "", at, note: String::new() }
+        Self {
+            name,
+            state,
+            value: Some(found as f64),
+            limit: Some(0.0),
+            least: false,
+            unit: "",
+            at,
+            note: String::new(),
+        }
     }
 
     /// A claim that could not be checked, and why.
     pub(super) fn open(name: &'static str, why: &str) -> Self {
         let note = why.to_string();
-        Self { name, state: State::NotChecked, value: None, limit: None, unit: "", at: None, note }
+        Self {
+            name,
+            state: State::NotChecked,
+            value: None,
+            limit: None,
+            least: false,
+            unit: "",
+            at: None,
+            note,
+        }
     }
 
     /// The same claim with a sentence, when it does not hold.

@@ -12,8 +12,9 @@ mod rings;
 mod shape;
 mod side;
 mod start_end;
+mod steps;
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, BTreeSet};
 
 use kurbo::{Affine, Point, Rect, Vec2};
 
@@ -32,6 +33,12 @@ pub struct Asked {
     pub tolerance: Tolerance,
     /// The side of closed contours that the cutter runs on; open ones are cut on the line.
     pub side: Side,
+    /// The ids of closed contours that are cut on the line all the same.
+    pub on_line: BTreeSet<usize>,
+    /// How much further than its radius the cutter's centre keeps from the edge; negative for a looser fit.
+    pub allowance: f64,
+    /// What the passes leave beside the edge for a last one at full depth.
+    pub leave: f64,
     /// Where the drawing's zero lies in the program's coordinates; `None` to find it among the usual places: the
     /// drawing's own zero, the lower left of the drawing at the program's zero, or its centre there.
     pub drawing_at: Option<Vec2>,
@@ -41,7 +48,7 @@ pub struct Asked {
     pub clearance: Option<f64>,
     /// The height that every contour is cut down to; `None` where it was not said.
     pub lowest: Option<f64>,
-    /// The height that single contours are cut down to instead, by their ids; on the line only.
+    /// The height that single contours are cut down to instead, by their ids.
     pub lowest_of_contour: BTreeMap<usize, f64>,
     /// The deepest that one pass may take; `None` where it was not said.
     pub pass: Option<f64>,
@@ -115,6 +122,9 @@ impl Asked {
         Self {
             tolerance,
             side: Side::On,
+            on_line: BTreeSet::new(),
+            allowance: 0.0,
+            leave: 0.0,
             drawing_at: None,
             stock_top: 0.0,
             clearance: None,

@@ -122,8 +122,8 @@ impl<'a> Walk<'a> {
         let axes = &self.machine.feed;
         let machine = if m.bulge == 0.0 { straight_limit(m, axes) } else { arc_limit(m, axes) };
         let asked = self.asked.feeds.map_or(f64::INFINITY, |feeds| {
-            // What goes down at all is held to the plunge feed in its downward part.
-            let down = (m.from.z - m.to.z).max(0.0) / m.length();
+            // What goes down at all is held to the plunge feed in its downward part, which rounding may lengthen.
+            let down = (m.from.z - m.to.z - self.slack).max(0.0) / m.length();
             feeds.cutting.min(feeds.plunge / down)
         });
         machine.min(asked)

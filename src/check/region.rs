@@ -38,7 +38,9 @@ impl Region {
 fn crosses(span: &Span, p: Point) -> bool {
     let (a, b) = (span.start, span.end);
     let spanned = (a.y > p.y) != (b.y > p.y);
-    let left_of = (b - a).cross(p - a) > 0.0;
+    // Ends as high as `p` count as lower; so a place on a level chord counts as a hair above it.
+    let across = (b - a).cross(p - a);
+    let left_of = across > 0.0 || (across == 0.0 && b.x > a.x);
     let chord = spanned && (left_of == (b.y > a.y));
     let between = span.centre().is_some_and(|centre| {
         let on_arc_side = left_of != (span.bulge > 0.0);

@@ -271,7 +271,7 @@ fn first_laps(chain: &ArcSpline, gap: f64) -> Vec<ArcSpline> {
 }
 
 /// How far the sides of two boxes are apart at most: chains within a distance of each other differ by no more.
-pub(super) fn misfit(a: Rect, b: Rect) -> f64 {
+fn misfit(a: Rect, b: Rect) -> f64 {
     let sides = [a.x0 - b.x0, a.x1 - b.x1, a.y0 - b.y0, a.y1 - b.y1];
     sides.into_iter().map(f64::abs).fold(0.0, f64::max)
 }

@@ -5,16 +5,17 @@
 //! of the border is reachable if a disc of radius plus tolerance, on the cutter's side, touches it and crosses no
 //! border; every reachable place is within radius plus tolerance of the path.
 
+use std::cmp::Ordering;
 use std::collections::HashSet;
 
-use kurbo::{Point, Rect, Vec2};
+use kurbo::{Point, Vec2};
 
 use super::claim::{Claim, Spot, State, Worst};
 use super::cuts::{Cuts, Pass};
 use super::region::Region;
 use super::rings::in_rings;
 use super::shape::{self, Shape};
-use super::{Asked, Placed, Side, Uncut};
+use super::{Asked, Placed, Side, Uncut, steps};
 use crate::geom::{ArcSpline, Span, SpanIndex};
 use crate::machine::Machine;
 use crate::num::Deviation;
@@ -37,13 +38,20 @@ pub(super) fn judge(
     machine: &Machine,
     asked: &Asked,
 ) -> (Shape, Vec<Uncut>) {
-    let radius = asked.cutter / 2.0;
+    let radius = asked.cutter / 2.0 + asked.allowance;
     if asked.tolerance.mm() >= radius {
         let claims = vec![Claim::open(CLEARANCE, "a side needs a cutter larger than the tolerance")];
         let claims = claims.into_iter().map(|claim| Claim { state: State::Fails, ..claim }).collect();
         return (Shape { deviation: None, claims }, Vec::new());
     }
     let (closed, open) = bordering(placed, asked);
+    let lines = SpanIndex::new(open.iter().flat_map(|(_, path)| path.spans()));
+    let on_line = |m: &Move| {
+        !open.is_empty() && lines.farthest(&m.span(), asked.tolerance.mm()).0 <= asked.tolerance.mm()
+    };
+    // The ways down to a cut on the line run on that line.
+    let ways_down: Vec<&Move> =
+        cuts.ramps.iter().chain(&cuts.plunges).copied().filter(|m| !on_line(m)).collect();
     let (shape, beside) = match open.is_empty() {
         true => (None, cuts.passes.iter().collect()),
         false => {
@@ -52,12 +60,12 @@ pub(super) fn judge(
         }
     };
     let judge = Judge::new(closed, radius, side, asked);
-    let clearance = judge.clearance(&beside, cuts);
-    let (coverage, uncut) = judge.coverage(&beside, machine, asked);
+    let clearance = judge.clearance(&beside, &ways_down);
+    let (coverage, uncut) = judge.coverage(&beside, &ways_down, (machine, asked));
     let mut claims = vec![judge.clearance_claim(clearance), judge.coverage_claim(coverage)];
     claims.push(judge.touch_claim(&beside));
-    claims.push(depth_claim(&beside, machine, asked));
-    claims.push(pass_claim(&beside, machine, asked));
+    claims.push(depth_claim(&beside, machine, asked, &judge.ids));
+    claims.push(pass_claim(&beside, &ways_down, machine, asked));
     let deviation = judge.deviation(clearance, coverage);
     let on_line = shape.as_ref().and_then(|shape| shape.deviation);
     let worst = [deviation, on_line].into_iter().flatten().reduce(|a, b| if b.mm > a.mm { b } else { a });
@@ -68,12 +76,15 @@ pub(super) fn judge(
 /// The contours that bound the region, closed or drawn in pieces, and the open ones, which are cut on the line.
 fn bordering(placed: &Placed, asked: &Asked) -> (Contours, Contours) {
     let (mut border, open): (Contours, Contours) =
-        placed.contours.iter().cloned().partition(|(_, path)| path.closed);
+        placed.contours.iter().cloned().partition(|(id, path)| path.closed && !asked.on_line.contains(id));
+    let (on_line, open): (Contours, Contours) =
+        open.into_iter().partition(|(id, _)| asked.on_line.contains(id));
     let paths: Vec<&ArcSpline> = open.iter().map(|(_, path)| path).collect();
     let mut in_ring = in_rings(&paths, asked.tolerance.mm()).into_iter();
-    let (pieces, open): (Contours, Contours) =
+    let (pieces, mut open): (Contours, Contours) =
         open.into_iter().partition(|_| in_ring.next().unwrap_or(false));
     border.extend(pieces);
+    open.extend(on_line);
     (border, open)
 }
 
@@ -86,6 +97,8 @@ struct Judge {
     region: Region,
     radius: f64,
     tolerance: f64,
+    /// How much further the passes run that leave something for a last one.
+    leave: f64,
     side: Side,
 }
 
@@ -103,7 +116,14 @@ impl Judge {
             spans.extend(path.spans());
             ids.resize(spans.len(), *id);
         }
-        Self { ids, region: Region::new(spans), radius, tolerance: asked.tolerance.mm(), side }
+        Self {
+            ids,
+            region: Region::new(spans),
+            radius,
+            tolerance: asked.tolerance.mm(),
+            leave: asked.leave,
+            side,
+        }
     }
 
     /// Half the length of pieces that are short enough to report their distance.
@@ -122,7 +142,7 @@ impl Judge {
     }
 
     /// The least distance of the cutter's centre from the border, turned in sign; negative of zero on the wrong side.
-    fn clearance(&self, beside: &[&Pass], cuts: &Cuts) -> Worst {
+    fn clearance(&self, beside: &[&Pass], ways_down: &[&Move]) -> Worst {
         let mut worst = Worst::none();
         let mut seen = HashSet::new();
         for pass in beside {
@@ -135,7 +155,7 @@ impl Judge {
                 self.note_clearance(m, &mut seen, &mut worst);
             }
         }
-        for m in cuts.ramps.iter().chain(&cuts.plunges) {
+        for m in ways_down {
             if !self.is_free(m.to.xy) {
                 worst.note(0.0, || Spot::end_of(m));
             }
@@ -178,16 +198,31 @@ impl Judge {
         least
     }
 
-    /// The largest distance of a reachable place of the border from the path, and what is not reached.
-    fn coverage(&self, beside: &[&Pass], machine: &Machine, asked: &Asked) -> (Worst, Vec<Uncut>) {
-        let slack = machine.last_place();
-        let deep = beside.iter().filter(|pass| asked.lowest.is_none_or(|lowest| pass.z <= lowest + slack));
-        let path = SpanIndex::new(deep.flat_map(|pass| pass.moves.iter().map(|m| m.span())));
-        let mut worst = Worst::none();
-        let mut uncut: Vec<Uncut> = Vec::new();
-        for (k, (&span, &id)) in self.region.spans().iter().zip(&self.ids).enumerate() {
-            self.cover_corner(k, &path, &mut worst);
-            self.cover(&Piece { span, id }, &path, &mut worst, &mut uncut);
+    /// The largest distance of a reachable place of the border from the path that is as deep as asked there, and what
+    /// is not reached.
+    fn coverage(
+        &self,
+        beside: &[&Pass],
+        ways_down: &[&Move],
+        (machine, asked): (&Machine, &Asked),
+    ) -> (Worst, Vec<Uncut>) {
+        let mut floors: Vec<Option<f64>> = self.ids.iter().map(|&id| asked.lowest_of(id)).collect();
+        floors.sort_by(|a, b| a.partial_cmp(b).unwrap_or(Ordering::Equal));
+        floors.dedup();
+        let (mut worst, mut uncut) = (Worst::none(), Vec::new());
+        for floor in floors {
+            let slack = machine.last_place();
+            let deep = |z: f64| floor.is_none_or(|floor| z <= floor + slack);
+            let along = beside.iter().filter(|pass| deep(pass.z)).flat_map(|pass| pass.moves.iter());
+            // A hole of the cutter's own size is drilled.
+            let drilled = ways_down.iter().filter(|m| m.from.xy == m.to.xy && deep(m.to.z));
+            let path = SpanIndex::new(along.chain(drilled).map(|m| m.span()));
+            for (k, (&span, &id)) in self.region.spans().iter().zip(&self.ids).enumerate() {
+                if asked.lowest_of(id) == floor {
+                    self.cover_corner(k, &path, &mut worst);
+                    self.cover(&Piece { span, id }, &path, &mut worst, &mut uncut);
+                }
+            }
         }
         (worst, uncut)
     }
@@ -256,9 +291,9 @@ impl Judge {
         Claim::none_of(STRAY, found, first).because("the cutter goes down where nothing is drawn")
     }
 
-    /// True when some place of a span is within radius and tolerance of the border.
+    /// True when some place of a span is as near to the border as a cut beside it must be.
     fn comes_near(&self, span: Span) -> bool {
-        let reach = self.radius + self.tolerance;
+        let reach = self.radius + self.tolerance + self.leave;
         let mut pieces = vec![span];
         while let Some(piece) = pieces.pop() {
             let here = self.region.distance(piece.at(0.5));
@@ -316,8 +351,11 @@ fn note_uncut(uncut: &mut Vec<Uncut>, contour: usize, length: f64, at: Point, ga
 }
 
 /// The lowest pass is at the height asked.
-fn depth_claim(beside: &[&Pass], machine: &Machine, asked: &Asked) -> Claim {
-    let Some(lowest) = asked.lowest else { return Claim::open(DEPTH, "no depth was asked for") };
+fn depth_claim(beside: &[&Pass], machine: &Machine, asked: &Asked, ids: &[usize]) -> Claim {
+    let asked_for = ids.iter().filter_map(|&id| asked.lowest_of(id)).reduce(f64::min);
+    let Some(lowest) = asked_for.or(asked.lowest) else {
+        return Claim::open(DEPTH, "no depth was asked for");
+    };
     let mut floor = Worst::none();
     for pass in beside {
         floor.note(-pass.z, || Spot::end_of(pass.moves[0]));
@@ -331,25 +369,15 @@ fn depth_claim(beside: &[&Pass], machine: &Machine, asked: &Asked) -> Claim {
     claim.because("no pass reaches the height asked")
 }
 
-/// The largest step down from one pass to the next of about the same box.
-fn pass_claim(beside: &[&Pass], machine: &Machine, asked: &Asked) -> Claim {
+/// The thickest layer that is taken at once.
+fn pass_claim(beside: &[&Pass], ways_down: &[&Move], machine: &Machine, asked: &Asked) -> Claim {
     let Some(limit) = asked.pass else { return Claim::open(PASSES, "no depth of pass was asked for") };
-    let mut floors: Vec<(Rect, f64)> = Vec::new();
-    let mut step = Worst::none();
-    for pass in beside {
-        let Some(bbox) = pass.chain(0.0).bbox() else { continue };
-        let same = |known: &&mut (Rect, f64)| shape::misfit(known.0, bbox) <= asked.tolerance.mm();
-        match floors.iter_mut().find(same) {
-            Some(known) => {
-                step.note(known.1 - pass.z, || Spot::end_of(pass.moves[0]));
-                known.1 = known.1.min(pass.z);
-            }
-            None => {
-                step.note(asked.stock_top - pass.z, || Spot::end_of(pass.moves[0]));
-                floors.push((bbox, pass.z));
-            }
-        }
-    }
+    let mut moves: Vec<&Move> = beside.iter().flat_map(|pass| pass.moves.iter().copied()).collect();
+    moves.extend(ways_down);
+    moves.sort_by_key(|m| m.line);
+    // A last pass runs so far beside those before it; in a sharp inside corner further, but within the cutter.
+    let beside_rough = (4.0 * asked.leave).min(asked.cutter / 2.0);
+    let step = steps::deepest(moves.into_iter(), asked.stock_top, asked.tolerance.mm() + beside_rough);
     Claim::at_most(PASSES, "mm", step, limit, 2.0 * machine.last_place())
         .because("a pass takes more than one pass may")
 }

@@ -58,6 +58,31 @@ pub(super) const CLEARANCE: Bound = Bound {
     reason: "closer above the stock chips are hit",
 };
 
+pub(super) const BED_CUT: Bound = Bound {
+    name: "bed-cut",
+    unit: "mm",
+    least: 0.0,
+    most: 20.0,
+    reason: "a deeper cut goes through the bed's sheet",
+};
+pub(super) const SKIN: Bound =
+    Bound { name: "skin", unit: "mm", least: 0.01, most: 100.0, reason: "that is no skin" };
+pub(super) const TAB_LENGTH: Bound =
+    Bound { name: "tab-length", unit: "mm", least: 0.1, most: 1e3, reason: "no tab is of such a length" };
+pub(super) const TAB_HEIGHT: Bound =
+    Bound { name: "tab-height", unit: "mm", least: 0.05, most: 1e3, reason: "no tab is of such a height" };
+pub(super) const TAB_SPACING: Bound =
+    Bound { name: "tabs", unit: "mm", least: 1.0, most: 1e5, reason: "tabs so close together leave no cut" };
+pub(super) const ALLOWANCE: Bound = Bound {
+    name: "allowance",
+    unit: "mm",
+    least: -20.0,
+    most: 20.0,
+    reason: "that is another size of the part, not a fit",
+};
+pub(super) const LEAVE: Bound =
+    Bound { name: "leave", unit: "mm", least: 0.0, most: 10.0, reason: "a last pass takes a little only" };
+
 impl Bound {
     /// `value`, if it lies in the range.
     pub(super) fn hold(&self, value: f64) -> Result<f64, Error> {

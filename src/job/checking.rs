@@ -2,7 +2,9 @@
 
 use clap::Args;
 
-use super::{DrawingArgs, DrawingSettings, SettingUpArgs, Stock, Units, bounds, machine, stock};
+use super::{
+    DrawingArgs, DrawingSettings, SettingUpArgs, Side, Stock, Units, bounds, cutter, machine, stock,
+};
 use crate::error::Error;
 use crate::machine::Machine;
 use crate::num::{Length, Tolerance};
@@ -19,6 +21,15 @@ pub struct CheckArgs {
     /// Largest distance allowed between cut path and drawing [default: 0.1mm]
     #[arg(long, value_name = "LEN", help_heading = "Accuracy")]
     pub tolerance: Option<Length>,
+    /// The side of the contour that must be cut on [default: on]
+    #[arg(long, value_enum, help_heading = "Cut")]
+    pub side: Option<Side>,
+    /// The cutter, where a side is cut: its diameter, or a name in the machine profile [default: the profile's first]
+    #[arg(long, value_name = "DIAMETER or NAME", help_heading = "Cut")]
+    pub cutter: Option<String>,
+    /// Material left on the drawn edge [default: none]
+    #[arg(long, value_name = "LEN", help_heading = "Cut", allow_hyphen_values = true)]
+    pub allowance: Option<Length>,
     /// How deep every contour must be cut, below the top of the stock
     #[arg(long, value_name = "LEN", help_heading = "Cut")]
     pub depth: Option<Length>,
@@ -39,6 +50,12 @@ pub struct CheckJob {
     pub drawing: DrawingSettings,
     /// The tolerance that must hold.
     pub tolerance: Tolerance,
+    /// The side of the contours that must be cut on.
+    pub side: Side,
+    /// The cutter's diameter, where a side is cut.
+    pub cutter_mm: Option<f64>,
+    /// Material left on the drawn edge; negative for a looser fit.
+    pub allowance_mm: f64,
     /// How deep every contour must be cut, where that was said.
     pub depth_mm: Option<f64>,
     /// The deepest single pass allowed, where that was said.
@@ -56,7 +73,13 @@ impl CheckJob {
         let machine = machine(typed.machine.as_deref())?;
         let mm = Units { machine: machine.unit };
         let tolerance = mm.length(&bounds::TOLERANCE, typed.tolerance)?.and_then(Tolerance::new);
+        let side = typed.side.unwrap_or_default();
+        let needed = typed.cutter.is_some() || side != Side::On;
+        let cutter = needed.then(|| cutter(typed.cutter.as_deref(), &machine, mm)).transpose()?;
         Ok(Self {
+            side,
+            cutter_mm: cutter.map(|(diameter, _)| diameter),
+            allowance_mm: mm.length(&bounds::ALLOWANCE, typed.allowance)?.unwrap_or(0.0),
             drawing: DrawingSettings::new(&typed.drawing, &machine)?,
             tolerance: tolerance.unwrap_or(Tolerance::DEFAULT),
             depth_mm: mm.length(&bounds::DEPTH, typed.depth)?,

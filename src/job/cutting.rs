@@ -1,7 +1,9 @@
 //! How a contour is cut: depth, passes, feeds and speed, from what was asked, the profile, and the built-in defaults.
 
 use super::bounds::{self, at_most};
-use super::{Entry, Held, LayerSettings, Settings, Units};
+use super::{
+    Corners, CutArgs, Direction, Entry, Held, LayerSettings, Settings, Side, Stock, TabsWanted, Units,
+};
 use crate::error::{Error, Kind};
 use crate::machine::{Cutter, Machine};
 
@@ -20,8 +22,38 @@ pub struct Cutting {
     pub spindle_rpm: f64,
     /// How the cutter goes down.
     pub entry: Entry,
+    /// The side of the contour that it is cut on.
+    pub side: Side,
+    /// Which way the cutter runs along a side.
+    pub direction: Direction,
+    /// How it passes corners that jut out towards it.
+    pub corners: Corners,
+    /// What the passes leave for a last one at full depth, in mm.
+    pub leave_mm: f64,
+    /// Tabs to leave.
+    pub tabs: Option<Tabs>,
     /// How a part is held that the cut frees.
     pub held: Option<Held>,
+}
+
+/// Tabs to leave on each closed contour.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Tabs {
+    /// How many there are.
+    pub number: TabNumber,
+    /// Length of a tab at its top, in mm.
+    pub length_mm: f64,
+    /// Height of a tab above the stock's underside, in mm.
+    pub height_mm: f64,
+}
+
+/// How many tabs a contour gets.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum TabNumber {
+    /// That many.
+    Count(usize),
+    /// One for every so many mm.
+    Spacing(f64),
 }
 
 /// The feed for a cutter of which only the diameter is known, in mm/min: a cautious one for wood.
@@ -30,6 +62,11 @@ const DEFAULT_FEED: f64 = 1500.0;
 const DEFAULT_RPM: f64 = 18000.0;
 /// The most passes: more are a slip of unit.
 const MOST_PASSES: f64 = 1000.0;
+/// How far a cut through the stock goes into the bed where that is allowed, in mm: enough for a sheet that does not lie flat
+/// (common practice, from memory).
+const PAST_THROUGH_MM: f64 = 0.2;
+/// Length and height of a tab, in mm, where nothing else is asked for (common practice in wood, from memory).
+const TAB_MM: (f64, f64) = (6.0, 1.5);
 
 /// Works out cuttings for one machine and cutter.
 pub(super) struct Maker<'a> {
@@ -37,13 +74,15 @@ pub(super) struct Maker<'a> {
     pub(super) mm: Units,
     pub(super) cutter_mm: f64,
     pub(super) cutter: Option<&'a Cutter>,
+    pub(super) stock: &'a Stock,
 }
 
 impl Maker<'_> {
     /// The cutting that `all` asks for.
     pub(super) fn cutting(&self, all: &Settings) -> Result<Cutting, Error> {
-        let depth_mm = self.depth(all)?;
-        let pass = self.mm.length(&bounds::PASS, all.pass)?;
+        let cut = &all.cut;
+        let depth_mm = self.depth(cut)?;
+        let pass = self.mm.length(&bounds::PASS, cut.pass)?;
         let pass_mm = pass.unwrap_or(self.cutter_mm / 2.0);
         if depth_mm / pass_mm > MOST_PASSES {
             let what =
@@ -51,22 +90,84 @@ impl Maker<'_> {
             return Err(Error::new(Kind::Settings, what).remedy("give a deeper --pass"));
         }
         let spindle_rpm = self.spindle(all)?;
-        let feed = self.feed(all, spindle_rpm)?;
-        let plunge = self.plunge(all, feed)?;
-        let entry = all.entry.unwrap_or_default();
-        Ok(Cutting { depth_mm, pass_mm, feed, plunge, spindle_rpm, entry, held: all.held })
+        let feed = self.feed(cut, spindle_rpm)?;
+        Ok(Cutting {
+            depth_mm,
+            pass_mm,
+            feed,
+            plunge: self.plunge(cut, feed)?,
+            spindle_rpm,
+            entry: cut.entry.unwrap_or_default(),
+            side: cut.side.unwrap_or_default(),
+            direction: cut.direction.unwrap_or_default(),
+            corners: cut.corners.unwrap_or_default(),
+            leave_mm: self.leave(cut)?,
+            tabs: self.tabs(cut)?,
+            held: cut.held,
+        })
     }
 
-    fn depth(&self, all: &Settings) -> Result<f64, Error> {
-        let depth = self.mm.length(&bounds::DEPTH, all.depth)?.ok_or_else(|| {
-            Error::new(Kind::Settings, "how deep to cut is not given")
-                .remedy("give --depth, such as --depth 6mm")
-        })?;
+    fn depth(&self, cut: &CutArgs) -> Result<f64, Error> {
+        let depth = match (cut.through == Some(true), self.mm.length(&bounds::SKIN, cut.skin)?) {
+            (true, _) => self.thickness("--through")? + PAST_THROUGH_MM.min(self.stock.bed_cut_mm),
+            (false, Some(skin)) => {
+                let thickness = self.thickness("--skin")?;
+                at_most("skin", skin, thickness, "mm", "the stock's thickness")?;
+                thickness - skin
+            }
+            (false, None) => self.mm.length(&bounds::DEPTH, cut.depth)?.ok_or_else(|| {
+                Error::new(Kind::Settings, "how deep to cut is not given")
+                    .remedy("give --depth, such as --depth 6mm, or --thickness with --through or --skin")
+            })?,
+        };
+        // Sums of decimal lengths, without the last bit's noise.
+        let depth = bounds::DEPTH.hold((depth * 1e9).round() / 1e9)?;
         at_most("depth", depth, self.machine.travel.z, "mm", "the machine's travel in Z")?;
         if let Some(cutter) = self.cutter {
             at_most("depth", depth, cutter.flute_length, "mm", &format!("the flutes of {}", cutter.name))?;
         }
         Ok(depth)
+    }
+
+    /// The stock's thickness, which `option` needs.
+    fn thickness(&self, option: &str) -> Result<f64, Error> {
+        self.stock.thickness_mm.ok_or_else(|| {
+            let what = format!("{option} needs to know how thick the stock is");
+            Error::new(Kind::Settings, what).remedy("give --thickness, such as --thickness 18mm")
+        })
+    }
+
+    /// What is left for a last pass; on the line there is no edge to leave it on.
+    fn leave(&self, cut: &CutArgs) -> Result<f64, Error> {
+        let leave = self.mm.length(&bounds::LEAVE, cut.leave)?.unwrap_or(0.0);
+        if leave > 0.0 && cut.side.unwrap_or_default() == Side::On {
+            let what = "--leave keeps material for a last pass along an edge, and the cut is on the line";
+            return Err(Error::new(Kind::Settings, what).remedy("choose a --side, or leave --leave out"));
+        }
+        Ok(leave)
+    }
+
+    fn tabs(&self, cut: &CutArgs) -> Result<Option<Tabs>, Error> {
+        let length = self.mm.length(&bounds::TAB_LENGTH, cut.tab_length)?;
+        let height = self.mm.length(&bounds::TAB_HEIGHT, cut.tab_height)?;
+        let number = match cut.tabs {
+            None if length.or(height).is_some() => {
+                let what = "the size of tabs is given, and not how many there are";
+                return Err(Error::new(Kind::Settings, what).remedy("give --tabs too, such as --tabs 4"));
+            }
+            None | Some(TabsWanted::Count(0)) => return Ok(None),
+            Some(TabsWanted::Count(count)) => TabNumber::Count(count),
+            Some(TabsWanted::Spacing(spacing)) => {
+                let spacing = self.mm.length(&bounds::TAB_SPACING, Some(spacing))?;
+                TabNumber::Spacing(spacing.unwrap_or_default())
+            }
+        };
+        let thickness = self.thickness("--tabs")?;
+        Ok(Some(Tabs {
+            number,
+            length_mm: length.unwrap_or(TAB_MM.0),
+            height_mm: height.unwrap_or(TAB_MM.1.min(thickness / 2.0)),
+        }))
     }
 
     fn spindle(&self, all: &Settings) -> Result<f64, Error> {
@@ -84,18 +185,18 @@ impl Maker<'_> {
         Ok(rpm)
     }
 
-    fn feed(&self, all: &Settings, rpm: f64) -> Result<f64, Error> {
+    fn feed(&self, cut: &CutArgs, rpm: f64) -> Result<f64, Error> {
         let most = self.machine.feed.x.min(self.machine.feed.y);
         let by_chip = |c: &Cutter| rpm * f64::from(c.flutes) * cautious_chip(c);
         let default = self.cutter.map_or(DEFAULT_FEED, by_chip).round().min(most);
-        let feed = self.mm.feed(&bounds::FEED, all.feed)?.unwrap_or(default);
+        let feed = self.mm.feed(&bounds::FEED, cut.feed)?.unwrap_or(default);
         at_most("feed", feed, most, "mm/min", "the machine")?;
         Ok(feed)
     }
 
-    fn plunge(&self, all: &Settings, feed: f64) -> Result<f64, Error> {
+    fn plunge(&self, cut: &CutArgs, feed: f64) -> Result<f64, Error> {
         let most = self.machine.feed.z;
-        let plunge = self.mm.feed(&bounds::PLUNGE, all.plunge)?.unwrap_or((feed / 3.0).round().min(most));
+        let plunge = self.mm.feed(&bounds::PLUNGE, cut.plunge)?.unwrap_or((feed / 3.0).round().min(most));
         at_most("plunge", plunge, most, "mm/min", "the machine's Z")?;
         Ok(plunge)
     }
@@ -104,15 +205,7 @@ impl Maker<'_> {
 impl LayerSettings {
     /// The layer's wishes as settings.
     pub(super) fn settings(&self) -> Settings {
-        Settings {
-            depth: self.depth,
-            pass: self.pass,
-            feed: self.feed,
-            plunge: self.plunge,
-            entry: self.entry,
-            held: self.held,
-            ..Settings::default()
-        }
+        Settings { cut: self.cut.clone(), ..Settings::default() }
     }
 }
 

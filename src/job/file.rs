@@ -5,9 +5,9 @@ use std::collections::BTreeMap;
 use clap::Args;
 use serde::{Deserialize, Serialize};
 
-use super::settings::{Entry, Held, Settings};
+use super::settings::Settings;
+use super::wishes::CutArgs;
 use crate::error::{Error, Kind};
-use crate::num::{Feed, Length};
 
 /// A job file as it stands: settings for the whole job, and those of single layers.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -20,29 +20,15 @@ pub struct JobFile {
 
 /// The settings that may differ from layer to layer.
 #[derive(Args, Clone, Debug, Default, Deserialize, Serialize, PartialEq)]
-#[serde(default, deny_unknown_fields, rename_all = "kebab-case")]
+#[serde(default, rename_all = "kebab-case")]
 pub struct LayerSettings {
     /// Leave the layer out.
     #[arg(long)]
     pub skip: bool,
-    /// How deep to cut.
-    #[arg(long)]
-    pub depth: Option<Length>,
-    /// Deepest single pass.
-    #[arg(long)]
-    pub pass: Option<Length>,
-    /// Feed along the contour.
-    #[arg(long)]
-    pub feed: Option<Feed>,
-    /// Feed straight down.
-    #[arg(long)]
-    pub plunge: Option<Feed>,
-    /// How the cutter goes down.
-    #[arg(long)]
-    pub entry: Option<Entry>,
-    /// How a part is held that the cut frees.
-    #[arg(long)]
-    pub held: Option<Held>,
+    /// How its contours are cut.
+    #[command(flatten)]
+    #[serde(flatten)]
+    pub cut: CutArgs,
 }
 
 impl JobFile {
@@ -53,84 +39,93 @@ impl JobFile {
     pub fn parse(file: &str, text: &str) -> Result<Self, Error> {
         let mut whole: toml::Table = toml::from_str(text).map_err(|why| placed(file, text, &why))?;
         let layers = whole.remove("layer");
-        known_keys::<Settings>(file, text, &whole, &["layer"])?;
-        let settings = typed(file, text, whole)?;
+        let top = Part { file, text, after: 0 };
+        top.known_keys::<Settings>(&whole, &["layer"])?;
+        let settings = top.typed(whole)?;
         let mut entries = BTreeMap::new();
         if let Some(layers) = layers {
             let toml::Value::Table(layers) = layers else {
-                return Err(wrong(
-                    file,
-                    text,
-                    "layer",
-                    "`layer` is not a table",
-                    "write [layer.NAME] with keys below it",
-                ));
+                let remedy = "write [layer.NAME] with keys below it";
+                return Err(top.wrong("layer", "`layer` is not a table", remedy));
             };
             for (name, entry) in layers {
+                let part = Part { after: header(text, &name), ..top };
                 let toml::Value::Table(entry) = entry else {
-                    return Err(wrong(
-                        file,
-                        text,
-                        &name,
-                        "a layer's entry is not a table",
-                        "write [layer.NAME]",
-                    ));
+                    return Err(top.wrong(&name, "a layer's entry is not a table", "write [layer.NAME]"));
                 };
-                known_keys::<LayerSettings>(file, text, &entry, &[])?;
-                entries.insert(name, typed(file, text, entry)?);
+                part.known_keys::<LayerSettings>(&entry, &[])?;
+                entries.insert(name, part.typed(entry)?);
             }
         }
         Ok(Self { settings, layers: entries })
     }
 }
 
-/// The table's values as settings, each error placed at its key.
-fn typed<T: Default + serde::de::DeserializeOwned>(
-    file: &str,
-    text: &str,
-    table: toml::Table,
-) -> Result<T, Error> {
-    for (key, value) in &table {
-        let alone = toml::Table::from_iter([(key.clone(), value.clone())]);
-        if let Err(why) = alone.try_into::<T>() {
-            let what = format!("`{key}`: {}", why.message().trim());
-            return Err(wrong(file, text, key, &what, ""));
-        }
-    }
-    table.try_into().map_err(|why| placed(file, text, &why))
+/// The number of lines down to the header of a layer's entry; none where it has no header of its own.
+fn header(text: &str, layer: &str) -> usize {
+    let heads = |line: &str| {
+        let inner = line.trim().strip_prefix('[').and_then(|rest| rest.split(']').next());
+        let name = inner.and_then(|inner| inner.trim().strip_prefix("layer."));
+        name.is_some_and(|name| name.trim().trim_matches(['"', '\'']) == layer)
+    };
+    text.lines().position(heads).map_or(0, |index| index + 1)
 }
 
-/// Refuses a key that the settings `T` do not have, and names the nearest that they have.
-fn known_keys<T: Args>(file: &str, text: &str, table: &toml::Table, also: &[&str]) -> Result<(), Error> {
-    let command = T::augment_args(clap::Command::new("settings"));
-    let known: Vec<String> = command
-        .get_arguments()
-        .filter_map(|arg| arg.get_long())
-        .chain(also.iter().copied())
-        .map(str::to_owned)
-        .collect();
-    let Some(key) = table.keys().find(|key| !known.contains(key)) else { return Ok(()) };
-    let remedy = match nearest(key, &known) {
-        Some(meant) => format!("did you mean `{meant}`?"),
-        None => format!("the keys are: {}", known.join(", ")),
-    };
-    Err(wrong(file, text, key, &format!("there is no setting `{key}`"), &remedy))
+/// A part of a job file: what stands below one of its headers.
+#[derive(Clone, Copy)]
+struct Part<'a> {
+    file: &'a str,
+    text: &'a str,
+    /// The lines before it.
+    after: usize,
+}
+
+impl Part<'_> {
+    /// The table's values as settings, each error placed at its key.
+    fn typed<T: Default + serde::de::DeserializeOwned>(self, table: toml::Table) -> Result<T, Error> {
+        for (key, value) in &table {
+            let alone = toml::Table::from_iter([(key.clone(), value.clone())]);
+            if let Err(why) = alone.try_into::<T>() {
+                let what = format!("`{key}`: {}", why.message().trim());
+                return Err(self.wrong(key, &what, ""));
+            }
+        }
+        table.try_into().map_err(|why| placed(self.file, self.text, &why))
+    }
+
+    /// Refuses a key that the settings `T` do not have, and names the nearest that they have.
+    fn known_keys<T: Args>(self, table: &toml::Table, also: &[&str]) -> Result<(), Error> {
+        let command = T::augment_args(clap::Command::new("settings"));
+        let known: Vec<String> = command
+            .get_arguments()
+            .filter_map(|arg| arg.get_long())
+            .chain(also.iter().copied())
+            .map(str::to_owned)
+            .collect();
+        let Some(key) = table.keys().find(|key| !known.contains(key)) else { return Ok(()) };
+        let remedy = match nearest(key, &known) {
+            Some(meant) => format!("did you mean `{meant}`?"),
+            None => format!("the keys are: {}", known.join(", ")),
+        };
+        Err(self.wrong(key, &format!("there is no setting `{key}`"), &remedy))
+    }
+
+    /// An error about `key`, on the first line of the part that sets it.
+    fn wrong(self, key: &str, what: &str, remedy: &str) -> Error {
+        let sets = |line: &str| {
+            let line = line.trim_start().trim_start_matches(['[', '"', '\'']);
+            line.strip_prefix("layer.").unwrap_or(line).trim_start_matches(['"', '\'']).starts_with(key)
+        };
+        let line =
+            self.text.lines().skip(self.after).position(sets).map_or(0, |index| self.after + index + 1);
+        Error::new(Kind::Settings, what).in_file(self.file).on_line(line).remedy(remedy)
+    }
 }
 
 /// The candidate that reads most like `word`, if any does.
 fn nearest<'a>(word: &str, candidates: &'a [String]) -> Option<&'a String> {
     let likeness = |candidate: &&String| strsim::jaro_winkler(word, candidate);
     candidates.iter().max_by(|a, b| likeness(a).total_cmp(&likeness(b))).filter(|best| likeness(best) > 0.8)
-}
-
-/// An error about `key`, on the first line that sets it.
-fn wrong(file: &str, text: &str, key: &str, what: &str, remedy: &str) -> Error {
-    let sets = |line: &str| {
-        let line = line.trim_start().trim_start_matches(['[', '"', '\'']);
-        line.strip_prefix("layer.").unwrap_or(line).trim_start_matches(['"', '\'']).starts_with(key)
-    };
-    let line = text.lines().position(sets).map_or(0, |index| index + 1);
-    Error::new(Kind::Settings, what).in_file(file).on_line(line).remedy(remedy)
 }
 
 /// The TOML reader's own error, on its line.

@@ -6,7 +6,8 @@ use clap::{Args, ValueEnum};
 use schemars::JsonSchema;
 use serde::{Deserialize, Serialize};
 
-use crate::num::{Feed, Length};
+use super::wishes::CutArgs;
+use crate::num::Length;
 
 /// Every setting, each of which may be absent.
 #[derive(Args, Clone, Debug, Default, Deserialize, Serialize, PartialEq)]
@@ -25,18 +26,13 @@ pub struct Settings {
     #[arg(long, value_name = "LEN", help_heading = "Accuracy")]
     pub tolerance: Option<Length>,
 
-    /// How deep to cut, below the top of the stock
-    #[arg(long, value_name = "LEN", help_heading = "Cut")]
-    pub depth: Option<Length>,
-    /// Deepest single pass [default: half the cutter's diameter]
-    #[arg(long, value_name = "LEN", help_heading = "Cut")]
-    pub pass: Option<Length>,
-    /// Feed along the contour [default: the profile's]
-    #[arg(long, value_name = "FEED", help_heading = "Cut")]
-    pub feed: Option<Feed>,
-    /// Feed straight down [default: a third of the feed]
-    #[arg(long, value_name = "FEED", help_heading = "Cut")]
-    pub plunge: Option<Feed>,
+    /// How contours are cut.
+    #[command(flatten)]
+    #[serde(flatten)]
+    pub cut: CutArgs,
+    /// Material to leave on the drawn edge, for a looser or tighter fit [default: none]
+    #[arg(long, value_name = "LEN", help_heading = "Cut", allow_hyphen_values = true)]
+    pub allowance: Option<Length>,
     /// Spindle speed in rev/min [default: the profile's]
     #[arg(long, value_name = "RPM", help_heading = "Cut")]
     pub spindle: Option<f64>,
@@ -44,13 +40,9 @@ pub struct Settings {
     #[arg(long, value_name = "DIAMETER or NAME", help_heading = "Cut")]
     pub cutter: Option<String>,
 
-    /// How the cutter goes down [default: ramp]
-    #[arg(long, value_enum, help_heading = "Cut")]
-    pub entry: Option<Entry>,
-    /// How a part is held that the cut frees
-    #[arg(long, value_enum, help_heading = "Cut")]
-    pub held: Option<Held>,
-
+    /// Deepest cut into the bed under the stock [default: 0.3mm]
+    #[arg(long, value_name = "LEN", help_heading = "Setting up")]
+    pub bed_cut: Option<Length>,
     /// Zero and stock.
     #[command(flatten)]
     #[serde(flatten)]
@@ -106,31 +98,6 @@ pub enum DrawingUnit {
     In,
     /// Pixels, 96 to the inch
     Px,
-}
-
-/// How the cutter goes down.
-#[derive(Clone, Copy, Debug, Default, Deserialize, Serialize, PartialEq, Eq, ValueEnum)]
-#[serde(rename_all = "kebab-case")]
-pub enum Entry {
-    /// Along the contour
-    #[default]
-    Ramp,
-    /// Straight down
-    Plunge,
-    /// Round and round, where there is room beside the part
-    Helix,
-}
-
-/// How a part is held that the cut frees.
-#[derive(Clone, Copy, Debug, Deserialize, Serialize, PartialEq, Eq, ValueEnum)]
-#[serde(rename_all = "kebab-case")]
-pub enum Held {
-    /// By vacuum
-    Vacuum,
-    /// By screws
-    Screws,
-    /// By tape
-    Tape,
 }
 
 /// Where Z is zero.
@@ -200,14 +167,11 @@ impl Settings {
             machine: self.machine.or(other.machine),
             drawing: self.drawing.or(other.drawing),
             tolerance: self.tolerance.or(other.tolerance),
-            depth: self.depth.or(other.depth),
-            pass: self.pass.or(other.pass),
-            feed: self.feed.or(other.feed),
-            plunge: self.plunge.or(other.plunge),
+            cut: self.cut.or(other.cut),
+            allowance: self.allowance.or(other.allowance),
+            bed_cut: self.bed_cut.or(other.bed_cut),
             spindle: self.spindle.or(other.spindle),
             cutter: self.cutter.or(other.cutter),
-            entry: self.entry.or(other.entry),
-            held: self.held.or(other.held),
             setting_up: self.setting_up.or(other.setting_up),
         }
     }

@@ -120,7 +120,10 @@ impl Job<'_> {
             self.round(course, to, z);
             s = to + self.track.length();
         }
-        self.lead_out(course);
+        // Below the first pass the way out runs through material that no pass has cut.
+        if passes.levels.len() == 1 {
+            self.lead_out(course);
+        }
     }
 
     /// The length of all rounds before the pass at `z`.

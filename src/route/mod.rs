@@ -153,8 +153,14 @@ impl Routed {
             ));
         }
         self.cut.validate()?;
-        let frees = self.path.closed && self.work != Work::Drill;
-        self.cut.hold(self.id, frees, setup)
+        self.cut.hold(self.id, self.frees(), setup)
+    }
+
+    /// True when the cutter leaves something within a closed path, that comes free when it is cut through: nothing is left
+    /// where the path is no wider than the cutter.
+    fn frees(&self) -> bool {
+        let wide = |bbox: kurbo::Rect| bbox.width().min(bbox.height()) > self.cut.cutter_mm;
+        self.path.closed && self.work != Work::Drill && self.path.bbox().is_some_and(wide)
     }
 
     /// Adds the moves of one tour's visit to the contour.
@@ -186,7 +192,7 @@ impl Routed {
     /// The contour with its track begun where the tour enters it.
     fn job(&self, stop: Stop, setup: &Setup) -> Result<Job<'_>, Error> {
         let track = Track::new(&self.path_from(stop.entry));
-        let wanted = self.cut.tabs.filter(|_| self.path.closed);
+        let wanted = self.cut.tabs.filter(|_| self.frees());
         let place = |tabs| tabs::place(self.id, &track, &self.cut, &tabs, setup.heights());
         let tabs = wanted.map(place).transpose()?;
         let lead = match self.work {

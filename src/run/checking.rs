@@ -4,10 +4,11 @@ use kurbo::{Rect, Vec2};
 
 use super::placing::shift;
 use super::prepare::Prepared;
+use super::siding::Sides;
 use crate::check::{self, Asked, Claim, Feeds, State, Verdict};
 use crate::error::{Error, Kind};
 use crate::gcode::Program;
-use crate::job::{CheckJob, Job};
+use crate::job::{self, CheckJob, Cutting, Job};
 use crate::route::{Cut, Routed, Setup};
 use crate::sketch::{Contour, Sketch};
 
@@ -25,6 +26,7 @@ pub(super) fn check_part(job: &Job, part: &Program, prepared: &Prepared, plan: &
 pub(super) struct Intended<'a> {
     pub(super) routed: &'a [Routed],
     pub(super) setup: &'a Setup,
+    pub(super) sides: &'a Sides,
     pub(super) shift: Vec2,
 }
 
@@ -36,7 +38,15 @@ fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
         let cutting = job.cutting_of(&contour.layer).filter(|_| job.layers.contains_key(&contour.layer))?;
         Some((contour.id, heights.top - cutting.depth_mm))
     };
+    let on_line = |contour: &&Contour| {
+        job.cutting_of(&contour.layer).is_none_or(|cutting| cutting.side == job::Side::On)
+    };
+    let leave = |cutting: &Cutting| cutting.leave_mm;
     Asked {
+        side: plan.sides.region,
+        on_line: prepared.sketch.contours.iter().filter(on_line).map(|contour| contour.id).collect(),
+        allowance: job.allowance_mm,
+        leave: job.cuttings().map(leave).fold(0.0, f64::max),
         drawing_at: Some(plan.shift),
         stock_top: heights.top,
         clearance: Some(heights.clearance),
@@ -54,6 +64,13 @@ pub(super) fn check_existing(job: &CheckJob, program: &Program, sketch: &Sketch)
     let top = job.stock.top_mm();
     let part = sketch.bbox().unwrap_or(Rect::ZERO);
     let asked = Asked {
+        side: match job.side {
+            job::Side::On => check::Side::On,
+            job::Side::Inside => check::Side::Inside,
+            job::Side::Outside | job::Side::Auto => check::Side::Outside,
+        },
+        cutter: job.cutter_mm.unwrap_or(0.0),
+        allowance: job.allowance_mm,
         drawing_at: job.stock.origin.map(|origin| shift(origin, part)),
         stock_top: top,
         clearance: job.stock.clearance_mm.map(|clearance| top + clearance),

@@ -3,9 +3,15 @@
 use kurbo::{Point, Rect, Vec2};
 
 use super::placing::moved;
-use crate::geom::ArcSpline;
+use super::siding::Sides;
+use crate::error::Error;
+use crate::fit::Fitted;
 use crate::job::{self, Cutting, Job, Origin};
-use crate::route::{Cut, Entry, Held, Routed, Setup, Thickness, Work, Zero};
+use crate::num::Tolerance;
+use crate::offset::Corners;
+use crate::route::{
+    self, Cut, Direction, Entry, Held, Outline, Routed, Setup, Sided, TabNumber, Tabs, Thickness, Work, Zero,
+};
 use crate::sketch::Contour;
 
 /// What all contours of the program share. The program ends above its zero, or, where that is the drawing's, above the
@@ -19,45 +25,81 @@ pub(super) fn setup(job: &Job, part: Rect, shift: Vec2) -> Setup {
         },
         thickness: job.stock.thickness_mm.map(|mm| Thickness { thinnest: mm, thickest: mm }),
         clearance_mm: job.stock.clearance_mm(),
+        bed_cut_mm: job.stock.bed_cut_mm,
         park,
         step_mm: job.machine.last_place(),
         ..Setup::default()
     }
 }
 
-/// Each contour's path in the program's coordinates, with how it is cut.
-pub(super) fn routed<'a>(
+/// The line of the cutter's centre for each contour's path, in the program's coordinates, with how it is cut.
+pub(super) fn sided(
     job: &Job,
     contours: &[Contour],
-    paths: impl Iterator<Item = &'a ArcSpline>,
+    fitted: &[Fitted],
+    (sides, tolerance): (&Sides, Tolerance),
     shift: Vec2,
-) -> Vec<Routed> {
-    let cut = |(contour, path): (&Contour, &ArcSpline)| {
-        let cutting = job.cutting_of(&contour.layer).unwrap_or(&job.cutting);
-        Routed { id: contour.id, path: moved(path, shift), cut: cut(job, cutting), work: Work::OnLine }
+) -> Result<Sided, Error> {
+    let outline = |((contour, fitted), &side): ((&Contour, &Fitted), &route::Side)| Outline {
+        id: contour.id,
+        path: moved(&fitted.path, shift),
+        cut: Cut { side, ..cut(job, job.cutting_of(&contour.layer).unwrap_or(&job.cutting)) },
     };
-    contours.iter().zip(paths).map(cut).collect()
+    let outlines: Vec<Outline> = contours.iter().zip(fitted).zip(&sides.each).map(outline).collect();
+    route::beside(&outlines, tolerance.mm())
+}
+
+/// Each contour of the drawing as it is, cut on the line and held in some way: the job to compare with.
+pub(super) fn as_drawn(job: &Job, contours: &[Contour], shift: Vec2) -> Vec<Routed> {
+    let cut = |contour: &Contour| {
+        let cutting = job.cutting_of(&contour.layer).unwrap_or(&job.cutting);
+        let cut = Cut { tabs: None, held: Some(Held::Vacuum), leave_mm: 0.0, ..cut(job, cutting) };
+        Routed { id: contour.id, path: moved(&contour.path, shift), cut, work: Work::OnLine }
+    };
+    contours.iter().map(cut).collect()
 }
 
 fn cut(job: &Job, cutting: &Cutting) -> Cut {
-    let Cutting { depth_mm, pass_mm, feed, plunge, spindle_rpm, entry, held } = *cutting;
+    let Cutting { depth_mm, pass_mm, feed, plunge, spindle_rpm, leave_mm, .. } = *cutting;
     Cut {
         depth_mm,
         pass_mm,
         feed,
         plunge,
         spindle_rpm,
+        leave_mm,
         cutter_mm: job.cutter_mm,
-        entry: match entry {
+        allowance_mm: job.allowance_mm,
+        corners: match cutting.corners {
+            job::Corners::Round => Corners::Round,
+            job::Corners::Sharp => Corners::Sharp,
+        },
+        direction: match cutting.direction {
+            job::Direction::Conventional => Direction::Conventional,
+            job::Direction::Climb => Direction::Climb,
+        },
+        entry: match cutting.entry {
             job::Entry::Ramp => Entry::Ramp,
             job::Entry::Plunge => Entry::Plunge,
             job::Entry::Helix => Entry::Helix,
         },
-        held: held.map(|held| match held {
+        tabs: cutting.tabs.map(tabs),
+        held: cutting.held.map(|held| match held {
             job::Held::Vacuum => Held::Vacuum,
             job::Held::Screws => Held::Screws,
             job::Held::Tape => Held::Tape,
         }),
         ..Cut::default()
+    }
+}
+
+fn tabs(tabs: job::Tabs) -> Tabs {
+    Tabs {
+        number: match tabs.number {
+            job::TabNumber::Count(count) => TabNumber::Count(count),
+            job::TabNumber::Spacing(mm) => TabNumber::Spacing(mm),
+        },
+        length_mm: tabs.length_mm,
+        height_mm: tabs.height_mm,
     }
 }

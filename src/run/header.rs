@@ -4,7 +4,7 @@ use std::path::Path;
 
 use crate::cautions;
 use crate::gcode::Header;
-use crate::job::Job;
+use crate::job::{Job, Side};
 use crate::machine::{ArcStyle, Machine};
 use crate::num::Tolerance;
 use crate::route::Setup;
@@ -15,7 +15,7 @@ pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup,
     let file = Path::new(name).file_name().map_or_else(|| name.into(), |file| file.to_string_lossy());
     let cutting = &job.cutting;
     let mut notes = vec![
-        "on the line: the part comes out smaller by the radius of the cutter".to_owned(),
+        side(job).to_owned(),
         format!(
             "tolerance {} mm, depth {} mm, pass {} mm at most",
             tolerance.mm(),
@@ -35,6 +35,20 @@ pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup,
         chord_error: chord_error(&job.machine, tolerance),
         notes,
         marks: Vec::new(),
+    }
+}
+
+/// The side in words that stand in a comment.
+fn side(job: &Job) -> &'static str {
+    let first = job.cutting.side;
+    if job.cuttings().any(|cutting| cutting.side != first) {
+        return "on the side that each layer asks for";
+    }
+    match first {
+        Side::On => "on the line: the part comes out smaller by the radius of the cutter",
+        Side::Inside => "inside the contours: holes keep the drawn size",
+        Side::Outside => "outside the contours: parts keep the drawn size",
+        Side::Auto => "outside the outer contours, inside the holes",
     }
 }
 

@@ -10,7 +10,7 @@ use crate::check::{self, Verdict};
 use crate::clean::Roughness;
 use crate::files::Target;
 use crate::fit::Fitted;
-use crate::job::Job;
+use crate::job::{Cutting, Job, Side};
 use crate::report::{AsDrawn, Check, Claim, Contour, Drawing, Part, Program, Report, Setup, State};
 use crate::sketch;
 use crate::toolpath::{Move, Toolpath};
@@ -49,6 +49,7 @@ fn contours(plan: &Plan, place_mm: f64) -> Vec<Contour> {
     let drawn = plan.cleaned.contours.iter().zip(&plan.roughness);
     let told = |((drawn, rough), fitted): ((&sketch::Contour, &Roughness), &Fitted)| Contour {
         roughness_mm: rough.sigma_mm,
+        uncut: plan.verdict.uncut.iter().filter(|uncut| uncut.contour == drawn.id).map(stays).collect(),
         ..contour(drawn, fitted, place_mm)
     };
     drawn.zip(&plan.fitted).map(told).collect()
@@ -73,7 +74,28 @@ fn contour(drawn: &sketch::Contour, fitted: &Fitted, place_mm: f64) -> Contour {
     }
 }
 
+/// A stretch that the cutter does not reach, in one sentence.
+fn stays(uncut: &check::Uncut) -> String {
+    let check::Uncut { length, at, gap, .. } = *uncut;
+    if gap.is_infinite() {
+        return format!("nothing of it is cut: the cutter does not fit, by X {:.3} Y {:.3}", at.x, at.y);
+    }
+    format!(
+        "the cutter does not reach {length:.2} mm of it, by {gap:.2} mm at most, at X {:.3} Y {:.3}",
+        at.x, at.y
+    )
+}
+
+/// The way that all contours are cut which are cut beside the line, or "by layer".
+fn shared(job: &Job, name: fn(&Cutting) -> &'static str) -> String {
+    let mut names: Vec<&str> = job.cuttings().filter(|c| c.side != Side::On).map(name).collect();
+    names.dedup();
+    if names.len() == 1 { names[0].into() } else { "by layer".into() }
+}
+
 fn setup(job: &Job, plan: &Plan) -> Setup {
+    let beside = job.cuttings().any(|cutting| cutting.side != Side::On);
+    let mixed = beside && job.cuttings().any(|cutting| cutting.side == Side::On);
     let cuts = || plan.routed.iter().map(|routed| &routed.cut);
     let most = |figure: fn(&crate::route::Cut) -> f64| cuts().map(figure).fold(0.0, f64::max);
     Setup {
@@ -83,8 +105,12 @@ fn setup(job: &Job, plan: &Plan) -> Setup {
         origin: job.stock.origin(),
         extents_mm: extents(&plan.program.toolpath),
         cutter_mm: job.cutter_mm,
-        side: "on".into(),
-        direction: None,
+        side: match (beside, mixed) {
+            (false, _) => Side::On.name().into(),
+            (true, true) => "by layer".into(),
+            (true, false) => shared(job, |cutting| cutting.side.name()),
+        },
+        direction: beside.then(|| shared(job, |cutting| cutting.direction.name())),
         depth_mm: most(|cut| cut.depth_mm),
         passes: cuts().map(|cut| cut.passes().len()).max().unwrap_or(0),
         feed_mm_min: fastest_along(&plan.routing.toolpath),
@@ -170,6 +196,7 @@ fn claim(claim: &check::Claim) -> Claim {
         },
         value: claim.value,
         limit: claim.limit,
+        least: claim.least,
         unit: claim.unit.into(),
         at: claim.at.map(|spot| spot.to_string()),
         note: claim.note.clone(),

@@ -1,0 +1,6 @@
+//! Sides, holding and depth from the command line: whole programs, what is told of them, and what is refused.
+
+mod layers;
+mod programs;
+mod refused;
+mod shop;
