@@ -150,7 +150,9 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let limits = Limits::of(&job.machine);
     let times = clock.time("time", || feed::time(&program.toolpath, &limits));
     let highest_override = clock.time("override", || feed::highest_override(&program.toolpath, &limits));
-    let as_drawn = clock.time("as drawn", || as_drawn(job, contours, (&setup, &header, shift)))?;
+    // Both texts have the same lines but for their motion.
+    let still = text.lines().count() - program.motion_blocks;
+    let as_drawn = clock.time("as drawn", || as_drawn(job, contours, (&setup, &header, shift), still))?;
     let roughness = clock.time("measure", || prepare::roughness(contours));
     let mut warnings = prepared.warnings;
     warnings.extend(sides.notes);
@@ -185,10 +187,11 @@ fn as_drawn(
     job: &Job,
     contours: &[Contour],
     (setup, header, shift): (&Setup, &Header, Vec2),
+    still: usize,
 ) -> Result<AsDrawn, Error> {
-    let setup = Setup { keep_outs: Vec::new(), ..setup.clone() };
-    let toolpath = route::route(&cutting::as_drawn(job, contours, shift), &setup)?.toolpath;
-    let motion_blocks = gcode::blocks_of(&toolpath, header, &job.machine).iter().sum();
+    let toolpath = route::route(&cutting::as_drawn(job, contours, shift), setup)?.toolpath;
+    let text = gcode::write(&toolpath, header, &job.machine)?;
+    let motion_blocks = text.lines().count() - still;
     Ok(AsDrawn { motion_blocks, times: feed::time(&toolpath, &Limits::of(&job.machine)) })
 }
 
