@@ -6,7 +6,7 @@
 use std::path::Path;
 
 use rayon::prelude::*;
-use ribband::job::{DrawingArgs, DrawingUnit, Job, JobFile, Settings};
+use ribband::job::{CutArgs, DrawingArgs, DrawingUnit, Job, JobFile, Settings};
 use ribband::num::Length;
 use ribband::run::{Plan, Source, Unwatched, plan};
 use serde_json::Value;
@@ -76,8 +76,11 @@ fn row(folder: &Path, entry: &Value) -> Result<Option<Row>, Failure> {
     let tolerance = entry["tolerance_mm"].as_f64().ok_or("no tolerance")?;
     let settings = Settings {
         machine: Some("old-controller".into()),
-        depth: Some(Length::from_mm(3.0)),
-        feed: Some("3000mm/min".parse().map_err(|_| "no feed")?),
+        cut: CutArgs {
+            depth: Some(Length::from_mm(3.0)),
+            feed: Some("3000mm/min".parse().map_err(|_| "no feed")?),
+            ..CutArgs::default()
+        },
         tolerance: Some(Length::from_mm(tolerance)),
         drawing: DrawingArgs { drawing_unit: Some(DrawingUnit::Mm), ..DrawingArgs::default() },
         ..Settings::default()

@@ -5,7 +5,7 @@ use super::{job_file, print, report_to, tell};
 use crate::compare::compare as planned;
 use crate::error::{Error, Kind};
 use crate::files::{self, Target};
-use crate::job::{Job, Ladder, Settings};
+use crate::job::{CutArgs, Job, JobFile, Ladder, Settings};
 use crate::num::Length;
 use crate::run::Source;
 
@@ -19,8 +19,9 @@ pub(super) fn compare(typed: &Compare) -> Result<(), Error> {
         return Err(Error::new(Kind::Settings, what).remedy("give the range with --from, --to and --steps"));
     }
     let file = job_file(typed.job.as_deref())?;
-    let depth = typed.settings.depth.or(file.settings.depth).or(Some(Length::from_mm(DEPTH_MM)));
-    let job = Job::new(&Settings { depth, ..typed.settings.clone() }, &file)?;
+    let default = CutArgs { depth: Some(Length::from_mm(DEPTH_MM)), ..CutArgs::default() };
+    let settings = file.settings.or(Settings { cut: default, ..Settings::default() });
+    let job = Job::new(&typed.settings, &JobFile { settings, ..file })?;
     let ladder = Ladder::new(&typed.range, &job.machine)?;
     let outputs = &typed.outputs;
     let report = report_to(outputs.report.as_deref(), outputs.overwrite, &[&typed.drawing])?;
