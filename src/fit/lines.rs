@@ -64,7 +64,7 @@ fn fitted(beads: &[Bead], first: usize, last: usize) -> Option<Line> {
     let (from, to) =
         (beads[first].along + ENDS_LEFT_OUT * length, beads[last].along - ENDS_LEFT_OUT * length);
     let inner = || beads[first..=last].iter().filter(|b| (from..=to).contains(&b.along));
-    let (start, end) = (inner().next()?, inner().last()?);
+    let (start, end) = (inner().next()?, inner().next_back()?);
     let chord = end.at - start.at;
     let along = chord.normalize();
     let half = chord.hypot() / 2.0;
