@@ -11,7 +11,7 @@ use crate::fit;
 use crate::gcode::Dialect;
 use crate::gcode::read::Text;
 use crate::gcode::write::{self, Amid};
-use crate::geom::ArcSpline;
+use crate::geom::{ArcSpline, frechet_within};
 use crate::machine::{ArcStyle, Machine, Unit};
 use crate::num::{Deviation, Tolerance};
 use crate::toolpath::{Move, Position};
@@ -30,6 +30,9 @@ pub(super) struct Replaced {
 
 /// How much of the tolerance is for the way seen from above where a run slopes; the rest is for its heights.
 const SLOPING: f64 = 0.8;
+/// Shares of the tolerance that are tried one after the other, until what is read back holds: for the fit, and for arcs
+/// that the machine cannot take. Both with the rounding may come to more than the whole.
+const ATTEMPTS: [(f64, f64); 4] = [(1.0, 0.25), (0.9, 0.15), (0.7, 0.25), (1.0, 0.0)];
 
 /// Works on one program.
 pub(super) struct Fitter<'a> {
@@ -42,57 +45,72 @@ pub(super) struct Fitter<'a> {
 }
 
 impl Fitter<'_> {
-    /// The runs that can be cut in fewer blocks, in order. Runs of the same shape are worked on once.
+    /// The runs that can be cut in fewer blocks, in order.
     pub(super) fn replaced(&self, runs: Vec<Run>) -> Vec<Replaced> {
-        let shape = |run: &Run| -> Vec<[u64; 2]> {
-            run.points.iter().map(|p| [p.x.to_bits(), p.y.to_bits()]).collect()
-        };
+        let mut replaced = Vec::new();
+        let mut left = runs;
+        for shares in ATTEMPTS {
+            let tried = self.tried(left, shares);
+            left = Vec::new();
+            for tried in tried {
+                match tried {
+                    Ok(done) => replaced.push(done),
+                    Err(run) => left.push(run),
+                }
+            }
+        }
+        replaced.sort_by_key(|replaced| replaced.run.blocks.start);
+        replaced
+    }
+
+    /// The runs that fewer spans were found for within those shares of the tolerance, written or left to be tried again.
+    /// Runs of the same shape are worked on once.
+    fn tried(&self, runs: Vec<Run>, (fit, chords): (f64, f64)) -> Vec<Result<Replaced, Run>> {
         let mut known = HashMap::new();
         let mut shapes: Vec<&Run> = Vec::new();
-        let of: Vec<usize> = runs
-            .iter()
-            .map(|run| {
-                *known.entry((shape(run), run.slopes())).or_insert_with(|| {
-                    shapes.push(run);
-                    shapes.len() - 1
-                })
+        let mut shape_of = |run| {
+            *known.entry(shape(run)).or_insert_with(|| {
+                shapes.push(run);
+                shapes.len() - 1
             })
-            .collect();
-        let fitted: Vec<Option<ArcSpline>> = shapes.par_iter().map(|run| self.fitted(run)).collect();
-        let pairs: Vec<(Run, usize)> = runs.into_iter().zip(of).collect();
-        pairs.into_par_iter().filter_map(|(run, of)| self.written(run, fitted[of].as_ref()?)).collect()
+        };
+        let shape_of: Vec<usize> = runs.iter().map(&mut shape_of).collect();
+        let fitted: Vec<Option<ArcSpline>> = shapes.par_iter().map(|run| self.fitted(run, fit)).collect();
+        let pairs: Vec<(Run, usize)> = runs.into_iter().zip(shape_of).collect();
+        let tried = pairs.into_par_iter().filter_map(|(run, shape)| {
+            let path = fitted[shape].as_ref()?;
+            Some(self.written(&run, path, chords).ok_or(run))
+        });
+        tried.collect()
     }
 
     /// The way in fewer spans, if there is one.
-    fn fitted(&self, run: &Run) -> Option<ArcSpline> {
+    fn fitted(&self, run: &Run, share: f64) -> Option<ArcSpline> {
         let path = run.path();
         let machine = self.machine_at(run);
-        let share = if run.slopes() { SLOPING * self.tolerance.mm() } else { self.tolerance.mm() };
-        let left = Tolerance::new(share - 1.5 * machine.last_place())?;
+        let share = if run.slopes() { SLOPING * share } else { share };
+        let left = Tolerance::new(share * self.tolerance.mm() - 1.5 * machine.last_place())?;
         let fitted = match machine.arcs.style {
             ArcStyle::None => fit::simplify(&path, left),
-            _ => fit::fit_pinned(&path, left).path,
+            _ => flattened(fit::fit_pinned(&path, left).path, &path, left, machine.arcs.largest),
         };
         (fitted.len() < run.blocks.len()).then_some(fitted)
     }
 
     /// The run with the lines for `path`, if they are fewer and hold.
-    fn written(&self, run: Run, path: &ArcSpline) -> Option<Replaced> {
-        let machine = self.machine_at(&run);
-        let amid = Amid {
-            incremental: self.first(&run).before.incremental,
-            word: None,
-            chord_error: self.tolerance.mm() / 4.0,
-        };
-        let mut lines = write::run(&moves(path, &run), &machine, amid);
+    fn written(&self, run: &Run, path: &ArcSpline, chords: f64) -> Option<Replaced> {
+        let machine = self.machine_at(run);
+        let incremental = self.first(run).before.incremental;
+        let amid = Amid { incremental, word: None, chord_error: chords * self.tolerance.mm() };
+        let mut lines = write::run(&moves(path, run), &machine, amid);
         let word = lines.iter().rev().find_map(|line| motion_word(line));
         if lines.len() >= run.blocks.len() {
             return None;
         }
-        self.dress(&run, &mut lines, &machine);
-        let deviation =
-            judge::deviation(&self.scene(&run), &self.lines_of(&run), &lines.join("\n"), self.tolerance)?;
-        Some(Replaced { run, lines, word, deviation })
+        self.dress(run, &mut lines, &machine);
+        let (old, new) = (self.lines_of(run), lines.join("\n"));
+        let deviation = judge::deviation(&self.scene(run), &old, &new, self.tolerance)?;
+        Some(Replaced { run: run.clone(), lines, word, deviation })
     }
 
     /// Gives the lines the run's own feed and line numbers.
@@ -145,6 +163,23 @@ impl Fitter<'_> {
         };
         machine
     }
+}
+
+/// What runs have in common that are worked on once: their places, and whether they slope.
+fn shape(run: &Run) -> (Vec<[u64; 2]>, bool) {
+    (run.points.iter().map(|p| [p.x.to_bits(), p.y.to_bits()]).collect(), run.slopes())
+}
+
+/// The path with its arcs of more than the `largest` radius as lines, where it stays within the tolerance so.
+fn flattened(path: ArcSpline, run: &ArcSpline, tolerance: Tolerance, largest: f64) -> ArcSpline {
+    let wide: Vec<usize> =
+        (0..path.len()).filter(|&i| !path.span(i).is_line() && path.span(i).radius() > largest).collect();
+    wide.into_iter().fold(path, |path, i| {
+        let mut flat = path.clone();
+        flat.vertices[i].bulge = 0.0;
+        let holds = frechet_within(&flat, run, tolerance.mm()).mm <= tolerance.mm();
+        if holds { flat } else { path }
+    })
 }
 
 /// The cuts along `path`, the height in proportion to the length.

@@ -3,4 +3,5 @@
 #[path = "../check/emit.rs"]
 #[expect(dead_code, reason = "straight blocks need no style of arcs")]
 mod emit;
+mod kept;
 mod traces;

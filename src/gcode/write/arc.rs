@@ -114,7 +114,7 @@ impl<'a> Rounder<'a> {
     fn chords(&self, part: Span) -> usize {
         let radius = self.grid.exact(part.radius());
         let half_step = (1.0 - (self.chord_error / radius).min(1.0)).acos();
-        (part.sweep().abs() / (2.0 * half_step)).ceil().max(2.0) as usize
+        (part.sweep().abs() / (2.0 * half_step)).ceil().max(1.0) as usize
     }
 
     /// How the controller is told to run along `part` from `at` to `to`; `None` when it cannot be, or when
