@@ -88,7 +88,6 @@ fn what_cannot_be_bettered_is_returned_as_it_is() {
 #[test]
 fn runs_end_where_anything_else_changes() {
     let rows = [
-        ("X28.284 Y28.284 F900", "a feed"),
         ("G1 X28.284 Y28.284 Z-2.5", "a height"),
         ("M8", "a word without motion"),
         ("X28.284 Y28.284 (half way)", "a comment"),
@@ -107,7 +106,7 @@ fn runs_end_where_anything_else_changes() {
         // The place before the odd line is kept; so is the end.
         for place in [&run[8], &run[19]] {
             let (x, y) = place.rsplit_once(" Y").expect("two words");
-            let x = x.trim_start_matches('X').trim_end_matches('0');
+            let x = x.trim_start_matches('X').trim_end_matches('0').trim_end_matches('.');
             let y = y.trim_end_matches('0').trim_end_matches('.');
             assert!(
                 got.text.contains(&format!("X{x}")) && got.text.contains(&format!("Y{y}")),
@@ -116,6 +115,21 @@ fn runs_end_where_anything_else_changes() {
             );
         }
     }
+}
+
+#[test]
+fn a_change_of_feed_parts_two_runs_and_is_said_again() {
+    let mut run = quarter("", "");
+    run[0].insert_str(0, "G1 F1800 ");
+    run[9].push_str(" F900");
+    let got = condensed(&program(&run, "G0 Z5\nM5\nM30\n"));
+    assert_eq!((got.runs, got.bettered), (2, 2));
+    let feed_at = |program: &Program, y: f64| {
+        let cuts = program.toolpath.moves.iter().filter(|m| m.to.z < 0.0 && m.from.z < 0.0);
+        cuts.clone().find(|m| m.from.xy.y <= y && y < m.to.xy.y).and_then(|m| m.feed)
+    };
+    let new = understood(&got.text);
+    assert_eq!((feed_at(&new, 25.0), feed_at(&new, 26.5)), (Some(1800.0), Some(900.0)), "{}", got.text);
 }
 
 /// A line that counts on the motion word in force finds it, though the run now ends with an arc.
