@@ -32,7 +32,7 @@ pub(super) struct Replaced {
 const SLOPING: f64 = 0.8;
 /// Shares of the tolerance that are tried one after the other, until what is read back holds: for the fit, and for arcs
 /// that the machine cannot take. Both with the rounding may come to more than the whole.
-const ATTEMPTS: [(f64, f64); 4] = [(1.0, 0.25), (0.9, 0.15), (0.7, 0.25), (1.0, 0.0)];
+const ATTEMPTS: [(f64, f64); 5] = [(1.0, 0.25), (0.98, 0.02), (0.9, 0.15), (0.7, 0.25), (1.0, 0.0)];
 
 /// Works on one program.
 pub(super) struct Fitter<'a> {

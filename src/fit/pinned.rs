@@ -71,7 +71,8 @@ fn moored_start(path: &ArcSpline, contour: &ArcSpline, tolerance: Tolerance) -> 
         vec![Span { start, ..*first }],
     ];
     let led_on = CUT_OFF.iter().map(|&t| vec![Span { start, ..first.part(0.0, t) }, first.part(t, 1.0)]);
-    let legal = |spans: &Vec<Span>| spans.iter().all(|s| s.bulge.abs() <= 1.0 && s.chord().hypot() >= SHORTEST);
+    let legal =
+        |spans: &Vec<Span>| spans.iter().all(|s| s.bulge.abs() <= 1.0 && s.chord().hypot() >= SHORTEST);
     let mut ways = bent.into_iter().chain(led_on).filter(legal);
     ways.find_map(|start| {
         let path = ArcSpline::from_spans(&[&start, rest].concat(), false);
