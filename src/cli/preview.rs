@@ -5,11 +5,11 @@ use std::path::Path;
 use super::args::Preview;
 use super::outputs::Targets;
 use super::progress::Bar;
-use super::{job_file, tell};
+use super::{job_file, print, tell};
 use crate::error::Error;
 use crate::files::{self, Target};
 use crate::job::Job;
-use crate::preview::{Scene, page, still};
+use crate::preview::{Scene, page, still, terminal};
 use crate::run::{self, Source};
 
 /// Carries out `ribband preview`.
@@ -26,10 +26,15 @@ pub(super) fn preview(typed: &Preview) -> Result<(), Error> {
     let scene = run::scene(&job, &plan, &told);
     let drawn = draw(targets.main(), &scene)?;
     targets.write(&drawn, &scene)?;
-    if !typed.quiet {
-        tell(&format!("{}: {} bytes\n", targets.main().name(), drawn.len()));
+    if typed.quiet {
+        return Ok(());
     }
-    Ok(())
+    let text = format!("{}{}, {} bytes\n", terminal(&scene), targets.main().name(), drawn.len());
+    if targets.use_stdout() {
+        tell(&text);
+        return Ok(());
+    }
+    print(&text)
 }
 
 /// A page, or, for a name that ends so, an SVG picture.

@@ -35,6 +35,13 @@ pub struct Lap {
     pub uncut: Vec<Span>,
 }
 
+impl Lap {
+    /// The largest chord error, unsigned.
+    pub fn largest(&self) -> f64 {
+        self.stations.iter().map(|station| station.error.abs()).fold(0.0, f64::max)
+    }
+}
+
 /// The chord error of a whole program.
 #[derive(Clone, Debug, Default)]
 pub struct Chord {
@@ -68,11 +75,6 @@ impl Chord {
         let every = (2 * all).div_ceil(MOST);
         let thinned = |lap: Lap| Lap { stations: thinned(lap.stations, every), ..lap };
         Self { laps: if all > MOST { laps.into_iter().map(thinned).collect() } else { laps } }
-    }
-
-    /// The largest chord error of all, unsigned; 0 where nothing was measured.
-    pub fn largest(&self) -> f64 {
-        self.stations().map(|station| station.error.abs()).fold(0.0, f64::max)
     }
 
     /// All stations, contour by contour.
@@ -133,7 +135,7 @@ impl Measure<'_> {
         for span in self.contour.spans() {
             let fractions = self.fractions(&span);
             let measured: Vec<Option<(usize, Station)>> =
-                fractions.iter().map(|&t| self.from_drawing(&path, span.at(t))).collect();
+                fractions.iter().map(|&t| self.at_foot_of(&path, span.at(t))).collect();
             let piece = 1.0 / fractions.len() as f64;
             let missed = fractions.iter().zip(&measured).filter(|(_, station)| self.is_uncut(station));
             uncut.extend(missed.map(|(&t, _)| span.part(t, t + piece)));
@@ -142,7 +144,7 @@ impl Measure<'_> {
         for (order, &of) in self.moves.iter().enumerate() {
             let span = self.span(of);
             let at = self.fractions(&span).into_iter().chain([1.0]);
-            keyed.extend(at.filter_map(|t| Some((order, self.from_path(&drawn, of, t)?))));
+            keyed.extend(at.filter_map(|t| Some((order, self.at_place_of(&drawn, of, t)?))));
         }
         keyed.sort_by(|a, b| a.0.cmp(&b.0).then(a.1.t.total_cmp(&b.1.t)));
         let stations = keyed.into_iter().map(|(_, station)| station).collect();
@@ -160,7 +162,7 @@ impl Measure<'_> {
     }
 
     /// The chord error at the foot of a place of the drawing, with the move's place in the lap.
-    fn from_drawing(&self, path: &SpanIndex, drawn: Point) -> Option<(usize, Station)> {
+    fn at_foot_of(&self, path: &SpanIndex, drawn: Point) -> Option<(usize, Station)> {
         let (order, span) = path.nearest(drawn)?;
         let foot = span.nearest(drawn);
         let error = self.error(&span, foot.t, drawn);
@@ -168,7 +170,7 @@ impl Measure<'_> {
     }
 
     /// The chord error at a place of the path, by the place of the drawing that is nearest to it.
-    fn from_path(&self, drawn: &SpanIndex, of: usize, t: f64) -> Option<Station> {
+    fn at_place_of(&self, drawn: &SpanIndex, of: usize, t: f64) -> Option<Station> {
         let span = self.span(of);
         let at = span.at(t);
         let (_, nearest) = drawn.nearest(at)?;

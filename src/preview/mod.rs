@@ -13,6 +13,7 @@ mod page;
 mod palette;
 mod sheet;
 mod still;
+mod terminal;
 mod tour;
 
 use kurbo::{Point, Rect, Vec2};
@@ -28,6 +29,7 @@ pub(crate) use markup::escaped;
 pub use page::{MOST_MOVES, page};
 pub use sheet::setup_sheet;
 pub use still::still;
+pub use terminal::terminal;
 pub use tour::{Kind, Stage};
 
 /// What a picture shows.

@@ -88,7 +88,7 @@ let sight, painted;
 let asked = false, settling = 0;
 // More moves than this are not painted anew for every step of the hand: the picture is shifted until it rests.
 const MANY = 4000;
-const frame = () => get("view").getBoundingClientRect();
+const frame = () => get("frame").getBoundingClientRect();
 function look(x, y, w, h) {
   const box = frame();
   const ratio = box.width && box.height ? box.width / box.height : 1;
@@ -258,7 +258,8 @@ const keys = {
   w: worst, n: () => stepBy(1), p: () => stepBy(-1), " ": () => run(!running),
 };
 document.addEventListener("keydown", e => {
-  if (e.ctrlKey || e.altKey || e.metaKey || e.target.closest("input, select, button, #plot")) return;
+  if (e.defaultPrevented || e.ctrlKey || e.altKey || e.metaKey || e.target.closest("select, [type=range]")) return;
+  if (e.key === " " && e.target.closest("button, input")) return;
   const act = keys[e.key] || keys[e.key.toLowerCase()];
   if (!act) return;
   e.preventDefault();

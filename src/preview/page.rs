@@ -90,11 +90,11 @@ fn view(scene: &Scene, drawn: &Drawn) -> String {
         format!("<g id=\"layer-{}\"{hidden}>\n{}</g>\n", layer.id, layer.svg)
     });
     format!(
-        "<section id=\"view\" aria-label=\"Drawing\">\n<svg id=\"picture\" tabindex=\"0\" role=\"application\" \
+        "<section id=\"view\" aria-label=\"Drawing\">\n<div id=\"frame\"><svg id=\"picture\" tabindex=\"0\" role=\"application\" \
          aria-label=\"Cutter's path over the trace; arrow keys move, plus and minus zoom, N and P step through the \
          spans, W goes to the worst place\" viewBox=\"{} {} {} {}\">\n\
          {}<g id=\"live\" aria-hidden=\"true\"><path id=\"chosen\" class=\"chosen\"/><path id=\"place\" \
-         class=\"place\"/><circle id=\"disc\" r=\"{}\"/></g>\n</svg>\n\
+         class=\"place\"/><circle id=\"disc\" r=\"{}\"/></g>\n</svg></div>\n\
          <div class=\"tools\"><button type=\"button\" id=\"closer\" aria-label=\"Closer\">+</button>\
          <button type=\"button\" id=\"farther\" aria-label=\"Farther\">&minus;</button>\
          <button type=\"button\" id=\"whole\">Whole part</button>\

@@ -221,6 +221,14 @@ describe("what it does", () => {
     await page.focus("#plot");
     await page.keyboard.press("ArrowRight");
     assert.equal(Number(await page.getAttribute("#plot", "aria-valuenow")), Number(before) + 1);
+    await page.click("#whole");
+    await frames(page);
+    const whole = await sight(page);
+    await page.focus("#plot");
+    await page.keyboard.press("Home");
+    await page.keyboard.press("0");
+    await frames(page);
+    assert.deepEqual(await sight(page), whole, "other keys work on the plot too");
   }));
 
   test("the comb grows with its slider", () => onPage(async page => {

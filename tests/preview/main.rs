@@ -2,6 +2,7 @@
 
 mod page;
 mod still;
+mod terminal;
 
 use std::path::Path;
 
