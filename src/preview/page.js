@@ -404,6 +404,6 @@ function tick(at) {
 get("run").onclick = () => run(!running);
 get("clock").textContent = clock(lasts) + " in all";
 
-addEventListener("resize", () => look(sight.x, sight.y, sight.w, sight.h));
 whole();
+new ResizeObserver(() => look(sight.x, sight.y, sight.w, sight.h)).observe(get("frame"));
 })();

@@ -150,7 +150,7 @@ fn cutting(scene: &Scene) -> String {
                     if setup.passes == 1 { "pass" } else { "passes" }
                 ),
             ),
-            ("Side", format!("{}{direction}", escaped(&side_words(&setup.side)))),
+            ("Side", format!("{}{direction}", escaped(side_words(&setup.side)))),
             ("Tolerance", format!("{} mm", scene.report.tolerance_mm)),
             ("Blocks", format!("{}, of which {} move", program.blocks, program.motion_blocks)),
             ("Planned time", duration(program.time_s)),
