@@ -5,7 +5,7 @@ use std::fs;
 use std::path::Path;
 
 use rayon::prelude::*;
-use ribband::job::{DrawingArgs, DrawingUnit, Job, JobFile, Settings};
+use ribband::job::{CutArgs, DrawingArgs, DrawingUnit, Job, JobFile, Settings};
 use ribband::num::Length;
 use ribband::run::{Source, Unwatched, plan};
 use serde_json::Value;
@@ -84,8 +84,11 @@ fn cut(folder: &Path, entry: &Value) -> Option<Cut> {
     let (id, csv) = (entry["id"].as_str().expect("an id"), entry["csv"].as_str().expect("a file"));
     let settings = Settings {
         machine: Some("old-controller".into()),
-        depth: Some(Length::from_mm(3.0)),
-        feed: Some("3000mm/min".parse().expect("a feed")),
+        cut: CutArgs {
+            depth: Some(Length::from_mm(3.0)),
+            feed: Some("3000mm/min".parse().expect("a feed")),
+            ..CutArgs::default()
+        },
         tolerance: Some(Length::from_mm(tolerance)),
         drawing: DrawingArgs { drawing_unit: Some(DrawingUnit::Mm), ..DrawingArgs::default() },
         ..Settings::default()
