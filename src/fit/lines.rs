@@ -78,7 +78,8 @@ fn fitted(beads: &[Bead], first: usize, last: usize) -> Option<Line> {
         b += row * along.cross(bead.at - middle);
     }
     let c = a.lu().solve(&b)?;
-    if !(c.z.abs() <= STRAIGHT * beads[first].band) {
+    let bends = c.z.is_nan() || c.z.abs() > STRAIGHT * beads[first].band;
+    if bends {
         return None;
     }
     let left = Vec2::new(-along.y, along.x);
