@@ -65,11 +65,12 @@ impl Comparison {
              <text class=\"head\" x=\"{LEFT}\" y=\"30\">{title}</text>\n",
             escaped(&self.reason())
         );
-        let panels: [(&str, (f64, f64), f64, fn(&Figures) -> f64); 2] = [
-            ("motion blocks", BLOCKS, self.as_drawn.motion_blocks as f64, |f| f.motion_blocks as f64),
-            ("time along the contours, s", TIME, self.as_drawn.cut_time_s, |f| f.cut_time_s),
-        ];
-        for (name, place, drawn, figure) in panels {
+        let blocks: fn(&Figures) -> f64 = |f| f.motion_blocks as f64;
+        let time: fn(&Figures) -> f64 = |f| f.cut_time_s;
+        for (name, place, drawn, figure) in [
+            ("motion blocks", BLOCKS, self.as_drawn.motion_blocks as f64, blocks),
+            ("time along the contours, s", TIME, self.as_drawn.cut_time_s, time),
+        ] {
             svg.push_str(&self.panel(tolerances, name, place, (drawn, figure)));
         }
         svg.push_str(&self.foot(tolerances));
