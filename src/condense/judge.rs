@@ -39,7 +39,7 @@ pub(super) fn deviation(scene: &Scene, old: &str, new: &str, tolerance: Toleranc
     if !(steady(&old) && steady(&new) && ends_alike) {
         return None;
     }
-    let sloping = old.iter().chain(&new).any(|m| m.from.z != m.to.z);
+    let sloping = old.iter().chain(&new).any(|m| (m.to.z - m.from.z).abs() > 0.0);
     let deviation = if sloping { space::deviation(&old, &new) } else { in_plane(&old, &new, tolerance)? };
     (deviation.mm <= tolerance.mm()).then_some(deviation)
 }

@@ -26,7 +26,7 @@ impl Run {
 
     /// True when it goes up or down on its way.
     pub(super) fn slopes(&self) -> bool {
-        self.heights.is_some_and(|(from, to)| from != to)
+        self.heights.is_some_and(|(from, to): (f64, f64)| (to - from).abs() > 0.0)
     }
 }
 

@@ -21,7 +21,7 @@ pub(super) fn deviation(old: &[Move], new: &[Move]) -> Deviation {
     let mut worst = Deviation { mm: 0.0, at: Point::ZERO, certified: true };
     let mut walk = Walk { moves: old, at: 0, t: 0.0 };
     for (k, m) in new.iter().enumerate() {
-        let piece = if k + 1 == new.len() { walk.to_end() } else { walk.to_foot(m) };
+        let piece = if k + 1 == new.len() { walk.finish() } else { walk.follow(m) };
         let bound = beside(m, &piece);
         if bound.mm > worst.mm {
             worst = bound;
@@ -96,7 +96,7 @@ impl Walk<'_> {
     }
 
     /// On to the place nearest to the end of `m`, not further than twice its length. Returns the places passed.
-    fn to_foot(&mut self, m: &Move) -> Vec<Position> {
+    fn follow(&mut self, m: &Move) -> Vec<Position> {
         let (mut gone, mut best) = (0.0, (f64::INFINITY, self.at, self.t));
         for at in self.at..self.moves.len() {
             let near = self.moves[at].span().nearest(m.to.xy);
@@ -113,7 +113,7 @@ impl Walk<'_> {
         self.passed(best.1, best.2)
     }
 
-    fn to_end(&mut self) -> Vec<Position> {
+    fn finish(&mut self) -> Vec<Position> {
         self.passed(self.moves.len() - 1, 1.0)
     }
 

@@ -47,7 +47,7 @@ fn forms() -> impl Iterator<Item = Form> {
 
 /// The passes of a program below its zero, each as the cutter's way from above with its height.
 fn passes(program: &Program) -> Vec<(f64, ArcSpline)> {
-    let cuts = program.toolpath.moves.iter().filter(|m| m.feed.is_some() && m.from.z == m.to.z);
+    let cuts = program.toolpath.moves.iter().filter(|m| m.feed.is_some() && (m.to.z - m.from.z).abs() < 1e-9);
     let cuts: Vec<_> = cuts.collect();
     let runs = cuts.chunk_by(|a, b| a.to == b.from);
     runs.map(|run| {
