@@ -65,8 +65,7 @@ impl Chord {
         let measured = (0..contours.len()).into_par_iter().filter(|&c| !finishing[c].is_empty());
         let laps: Vec<Lap> = measured
             .map(|c| {
-                let on = scene.report.setup.side == "on" || !contours[c].closed;
-                let radius = if on { 0.0 } else { scene.report.setup.cutter_mm / 2.0 };
+                let radius = beside(scene, &contours[c], &finishing[c]);
                 let measure = Measure { scene, contour: &contours[c], moves: &finishing[c], radius, step };
                 measure.lap(scene.sketch.contours[c].id)
             })
@@ -113,6 +112,20 @@ fn finishing(scene: &Scene, stages: &[Stage], contours: &[ArcSpline]) -> Vec<Vec
         }
     }
     finishing
+}
+
+/// How far the path should be from its contour, by where it is: 0 on the line, the cutter's radius beside it.
+fn beside(scene: &Scene, contour: &ArcSpline, moves: &[usize]) -> f64 {
+    let radius = scene.report.setup.cutter_mm / 2.0;
+    let drawn = SpanIndex::new(contour.spans());
+    let few = moves.iter().step_by(moves.len().div_ceil(64).max(1));
+    let away = few.filter_map(|&i| {
+        let middle = scene.program.toolpath.moves[i].span().at(0.5);
+        Some(drawn.nearest(middle)?.1.nearest(middle).distance)
+    });
+    let mut away: Vec<f64> = away.collect();
+    away.sort_by(f64::total_cmp);
+    if away.get(away.len() / 2).is_some_and(|&middle| middle > radius / 2.0) { radius } else { 0.0 }
 }
 
 /// One contour beside the moves that cut it.

@@ -26,7 +26,12 @@ impl Made {
 
     /// The job that cuts a drawing 6 mm deep.
     pub(crate) fn of(name: &str, drawing: &[u8]) -> Self {
-        let file = JobFile::parse("job.toml", "depth = \"6mm\"\ndrawing-unit = \"mm\"\nheld = \"vacuum\"\n");
+        Self::with(name, drawing, "depth = \"6mm\"\nheld = \"vacuum\"\n")
+    }
+
+    /// The job for a drawing in mm, with the settings of a job file.
+    pub(crate) fn with(name: &str, drawing: &[u8], settings: &str) -> Self {
+        let file = JobFile::parse("job.toml", &format!("drawing-unit = \"mm\"\n{settings}"));
         let job = Job::new(&Settings::default(), &file.expect("a job file")).expect("a job");
         let plan = run::plan(&job, Source { name, bytes: drawing }, &Unwatched).expect("a plan");
         let report = run::report(&job, &plan, name, "part.nc");

@@ -110,3 +110,23 @@ fn the_page_asks_for_nothing() {
     );
     assert!(!page.contains("src=\"") && !page.contains("@import") && !page.contains("url("));
 }
+
+#[test]
+fn beside_the_line_the_error_is_that_of_the_edge_and_what_stays_uncut_is_drawn() {
+    let sign = include_bytes!("../../fixtures/demo/sign.dxf");
+    let settings =
+        "depth = \"6mm\"\nthickness = \"6mm\"\nside = \"auto\"\nheld = \"vacuum\"\ncutter = \"3mm\"\n";
+    let made = Made::with("sign.dxf", sign, settings);
+    let text = page(&made.scene()).expect("a page");
+    let data = data(&text);
+    let laps = data["laps"].as_array().expect("laps");
+    assert_eq!(laps.len(), made.report.contours.len());
+    let errors = laps.iter().flat_map(|lap| lap["error"].as_array().expect("a list"));
+    let largest = errors.map(|e| e.as_f64().expect("a number").abs()).fold(0.0, f64::max);
+    let certified = made.report.check.deviation_mm.expect("a deviation");
+    assert!(largest <= certified + 1e-5 && largest >= 0.8 * certified, "{largest} of {certified}");
+    let uncut = text.split("<g id=\"layer-uncut\">").nth(1).and_then(|rest| rest.split("</g>").next());
+    let drawn = uncut.expect("the layer").contains("<path");
+    assert_eq!(drawn, made.report.contours.iter().any(|contour| !contour.uncut.is_empty()));
+    assert!(drawn);
+}
