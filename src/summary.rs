@@ -133,20 +133,21 @@ pub fn condensed(told: &Condensed) -> String {
     rows.iter().map(|(name, told)| format!("{name:10} {told}\n")).collect()
 }
 
-/// A check claim by claim, with what it leaves to the person at the machine.
+/// A check: its verdict in one line, then claim by claim, then what it leaves to the person at the machine.
 pub fn check_list(check: &Check) -> String {
-    let mut text = String::new();
+    let verdict = if check.holds { "holds" } else { "does not hold" };
+    let mut text = format!("checked against the drawing: {verdict}\n\n");
     for claim in &check.claims {
         let state = match claim.state {
             State::Holds => "holds",
-            State::Fails => "FAILS",
-            State::NotChecked => "open",
+            State::Fails => "fails",
+            State::NotChecked => "not checked",
         };
-        let _ = writeln!(text, "{state:6} {}{}", claim.name, figures(claim));
+        let _ = writeln!(text, "{state:11} {}{}", claim.name, figures(claim));
     }
     text.push_str("\nNo program can check:\n");
     for open in &check.not_checked {
-        let _ = writeln!(text, "       {open}");
+        let _ = writeln!(text, "            {open}");
     }
     text
 }

@@ -31,9 +31,10 @@ pub(super) fn condense(typed: &Condense) -> Result<(), Error> {
     let letters = Letters::of(&files::read(&typed.program)?);
     let condensed = condense::condense(&letters.text, &job.machine, job.tolerance)
         .map_err(|error| error.in_file(name.as_str()))?;
-    let told = told(&condensed, &job, (&name, &program.name()));
+    let (old, new) = (letters.bytes(&letters.text), letters.bytes(&condensed.text));
+    let told = told(&condensed, &job, [(&name, old.len()), (&program.name(), new.len())]);
 
-    let staged_program = program.stage(&letters.bytes(&condensed.text))?;
+    let staged_program = program.stage(&new)?;
     let staged_report = report.as_ref().map(|report| report.stage(told.json().as_bytes())).transpose()?;
     staged_program.appear(outputs.overwrite)?;
     staged_report.map_or(Ok(()), |staged| staged.appear(outputs.overwrite))?;
@@ -86,13 +87,13 @@ impl Letters {
     }
 }
 
-/// The figures as the report has them; `old` and `new` are the files' names as typed.
-fn told(condensed: &Condensed, job: &CondenseJob, (old, new): (&str, &str)) -> report::Condensed {
-    let size = |file: &str, size: &condense::Size| report::Size {
+/// The figures as the report has them; `old` and `new` are the files' names as typed, with their sizes in bytes.
+fn told(condensed: &Condensed, job: &CondenseJob, [old, new]: [(&str, usize); 2]) -> report::Condensed {
+    let size = |(file, bytes): (&str, usize), size: &condense::Size| report::Size {
         file: file.into(),
         blocks: size.blocks,
         motion_blocks: size.motion_blocks,
-        bytes: size.bytes,
+        bytes,
         time_s: size.time_s,
     };
     report::Condensed {

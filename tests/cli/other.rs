@@ -32,7 +32,9 @@ fn check_holds_what_post_wrote_and_refutes_what_was_changed() {
     let held =
         check("out.nc", &["--depth", "3", "--pass", "3", "--clearance", "5", "--origin", "lower-left"]);
     assert_eq!(held.status, 0, "{}{}", held.out, held.err);
-    assert!(held.out.contains("No program can check") && !held.out.contains("FAILS"), "{}", held.out);
+    let [verdict, _, ..] = held.out.lines().collect::<Vec<_>>()[..] else { panic!("{}", held.out) };
+    assert_eq!(verdict, "checked against the drawing: holds");
+    assert!(held.out.contains("No program can check") && !held.out.contains("\nfails"), "{}", held.out);
     for (what, to, claim) in [
         ("X20 ", "X20.2 ", "within the tolerance"),
         ("\nM5", "", "spindle off"),
@@ -45,7 +47,8 @@ fn check_holds_what_post_wrote_and_refutes_what_was_changed() {
         );
         let refuted = check("changed.nc", &["--depth", "3"]);
         assert_eq!(refuted.status, 1, "{what} to {to}: {}", refuted.out);
-        let failed: Vec<&str> = refuted.out.lines().filter(|line| line.starts_with("FAILS")).collect();
+        assert!(refuted.out.starts_with("checked against the drawing: does not hold\n"), "{}", refuted.out);
+        let failed: Vec<&str> = refuted.out.lines().filter(|line| line.starts_with("fails")).collect();
         assert!(failed.iter().any(|line| line.contains(claim)), "{what} to {to}: {failed:?}");
     }
     shop.put("odd.nc", "G1 X1 Y1 F100\nG77\nM30\n");

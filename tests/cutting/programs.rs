@@ -122,12 +122,12 @@ fn a_program_for_a_side_is_checked_for_that_side_and_refuted_for_another() {
     };
     let held = check("--side auto --cutter 3mm");
     assert_eq!(held.status, 0, "{}{}", held.out, held.err);
-    assert!(held.out.contains("holds  the cutter stays off what is kept"), "{}", held.out);
+    assert!(held.out.contains("holds       the cutter stays off what is kept"), "{}", held.out);
     for (wrong, said) in [
-        ("--side inside --cutter 3mm", "FAILS  the cutter stays off what is kept"),
-        ("--side auto --cutter 4mm", "FAILS  the cutter stays off what is kept"),
-        ("--side auto --cutter 2mm", "FAILS  the cutter reaches all of the drawing that it can"),
-        ("--side on", "FAILS  every contour is cut"),
+        ("--side inside --cutter 3mm", "fails       the cutter stays off what is kept"),
+        ("--side auto --cutter 4mm", "fails       the cutter stays off what is kept"),
+        ("--side auto --cutter 2mm", "fails       the cutter reaches all of the drawing that it can"),
+        ("--side on", "fails       every contour is cut"),
     ] {
         let ended = check(wrong);
         assert_eq!(ended.status, 1, "{wrong}: {}", ended.out);
