@@ -153,3 +153,18 @@ fn file_names_suit_the_controller() {
     assert_eq!(flaw("shop-router", "paddle blade, left"), None);
     assert!(flaw("benchtop-router", "paddle blade").is_some());
 }
+
+/// Found by fuzzing: a cutter's diameter of sixteen digits came back rounded to twelve.
+#[test]
+fn every_digit_of_a_profile_survives_writing_it() {
+    for (name, short, long) in [
+        ("shop-router", "diameter = 3.175", "diameter = 3.1777777777777775"),
+        ("inch-gantry", "diameter = 0.25", "diameter = 0.25777777777777777"),
+    ] {
+        let text = machine::built_in(name).expect("a profile of this name");
+        assert!(text.contains(short), "{name} has such a cutter");
+        let machine = Machine::from_toml(&text.replacen(short, long, 1)).expect("such a cutter is allowed");
+        let again = Machine::from_toml(&machine.to_toml().expect("written")).expect("read again");
+        assert!(again == machine, "{name}");
+    }
+}

@@ -366,7 +366,7 @@ impl Machine {
     pub fn to_toml(&self) -> Result<String, Error> {
         let mut own = self.clone();
         let mm = self.unit.mm();
-        own.lengths().into_iter().for_each(|length| *length = rounded(*length / mm, 12));
+        own.lengths().into_iter().for_each(|length| *length = stated(*length, mm));
         toml::to_string(&own).map_err(|error| Error::new(Kind::Output, error.to_string()))
     }
 
@@ -415,8 +415,18 @@ impl Files {
     }
 }
 
-/// `value` rounded to so many significant digits: twelve bring a number that was converted on reading back
-/// as it stood.
+/// The number with the fewest digits that is read back as exactly `length` in a unit of `mm`.
+///
+/// Division need not undo the product that reading makes; the right number is then one of the quotient's neighbours.
+fn stated(length: f64, mm: f64) -> f64 {
+    let quotient = length / mm;
+    let short = (1..=17).map(|digits| rounded(quotient, digits));
+    let near = [quotient, quotient.next_up(), quotient.next_down()];
+    let exact = |value: &f64| (value * mm).to_bits() == length.to_bits();
+    short.chain(near).find(exact).unwrap_or(quotient)
+}
+
+/// `value` rounded to so many significant digits.
 fn rounded(value: f64, digits: usize) -> f64 {
     let less_one = digits - 1;
     format!("{value:.less_one$e}").parse().unwrap_or(value)
