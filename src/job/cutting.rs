@@ -196,7 +196,7 @@ impl Maker<'_> {
 
     fn plunge(&self, cut: &CutArgs, feed: f64) -> Result<f64, Error> {
         let most = self.machine.feed.z;
-        let plunge = self.mm.feed(&bounds::PLUNGE, cut.plunge)?.unwrap_or((feed / 3.0).round().min(most));
+        let plunge = self.mm.feed(&bounds::PLUNGE, cut.plunge)?.unwrap_or(third_of(feed).min(most));
         at_most("plunge", plunge, most, "mm/min", "the machine's Z")?;
         Ok(plunge)
     }
@@ -212,4 +212,10 @@ impl LayerSettings {
 /// A chip on the light side of what the cutter takes, in mm: a quarter of the way up its range.
 fn cautious_chip(cutter: &Cutter) -> f64 {
     cutter.least_chip + (cutter.most_chip - cutter.least_chip) / 4.0
+}
+
+/// The plunge that goes with a feed, in mm/min: a third of it, in whole numbers where that is not nothing.
+fn third_of(feed: f64) -> f64 {
+    let third = feed / 3.0;
+    if third < 1.0 { third } else { third.round() }
 }

@@ -1,6 +1,7 @@
 //! Lengths and feeds as typed.
 
 use proptest::prelude::*;
+use ribband::job::{Job, JobFile, Settings};
 use ribband::num::{Feed, Length, LengthUnit};
 
 /// The text as mm on a machine that works in `unit`; `Err` when it is no length, `Ok(None)` when the unit is missing.
@@ -91,4 +92,12 @@ proptest! {
         let length = Length::from_mm(mm);
         prop_assert_eq!(length.to_string().parse::<Length>(), Ok(length));
     }
+}
+
+/// Found by fuzzing: a third of 1 mm/min was rounded to a plunge of nothing.
+#[test]
+fn a_crawling_feed_keeps_a_plunge() {
+    let file = JobFile::parse("job.toml", "depth = \"6mm\"\nfeed = 1\n").expect("a job file");
+    let job = Job::new(&Settings::default(), &file).expect("a job");
+    assert!((job.cutting.plunge - 1.0 / 3.0).abs() < 1e-12, "plunge {}", job.cutting.plunge);
 }
