@@ -2,8 +2,8 @@
 
 use std::path::Path;
 
-use kurbo::{Affine, Point};
-use ribband::geom::ArcSpline;
+use kurbo::{Affine, Point, Vec2};
+use ribband::geom::{ArcSpline, Vertex};
 
 use crate::emit::{Arcs, Form, program};
 use crate::{asked, assert_holds, sketch, verdict};
@@ -49,17 +49,60 @@ fn forms() -> impl Iterator<Item = Form> {
     })
 }
 
+/// Holds the program of `cut` against `drawing`, and refutes that of the same cut shifted by twice the tolerance.
+fn holds_where_it_is_drawn(name: &str, cut: &[ArcSpline], form: Form, drawing: &[ArcSpline], tolerance: f64) {
+    let (drawing, asked) = (sketch(drawing), asked(tolerance));
+    assert_holds(&program(cut, form), &drawing, &asked);
+    let shift = Affine::translate((1.6 * tolerance, -1.2 * tolerance));
+    let shifted: Vec<ArcSpline> = cut.iter().map(|path| path.transformed(shift)).collect();
+    let verdict = verdict(&program(&shifted, form), &drawing, &asked).expect("it reads");
+    assert!(!verdict.holds, "{name}, {form:?}, shifted by twice the tolerance holds");
+}
+
 #[test]
 fn traces_as_straight_blocks_hold_and_shifted_ones_do_not() {
-    for (k, (name, paths, tolerance)) in outlines(4).into_iter().enumerate() {
-        let drawing = sketch(&paths);
+    for (k, (name, paths, tolerance)) in outlines(3).into_iter().enumerate() {
         let form = forms().nth(k % 4).expect("four forms");
-        assert_holds(&program(&paths, form), &drawing, &asked(tolerance));
-        let shift = Affine::translate((1.6 * tolerance, -1.2 * tolerance));
-        let shifted: Vec<ArcSpline> = paths.iter().map(|path| path.transformed(shift)).collect();
-        let verdict = verdict(&program(&shifted, form), &drawing, &asked(tolerance)).expect("it reads");
-        assert!(!verdict.holds, "{name} shifted by twice the tolerance holds");
+        holds_where_it_is_drawn(&name, &paths, form, &paths, tolerance);
     }
+}
+
+#[test]
+fn traces_with_arcs_by_radius_hold_and_shifted_ones_do_not() {
+    for (k, (name, paths, tolerance)) in outlines(3).into_iter().enumerate() {
+        let form = Form { arcs: Arcs::Radius, ..forms().nth(k % 4).expect("four forms") };
+        let cut: Vec<ArcSpline> = paths.iter().map(|path| with_arcs(path, tolerance)).collect();
+        holds_where_it_is_drawn(&name, &cut, form, &paths, tolerance);
+    }
+}
+
+/// A polyline with an arc through three vertices in place of two lines wherever it bows from them by at most a third
+/// of the tolerance.
+fn with_arcs(path: &ArcSpline, tolerance: f64) -> ArcSpline {
+    let places: Vec<Point> = path.vertices.iter().map(|v| v.at).collect();
+    let mut vertices = Vec::new();
+    let mut k = 0;
+    while k < places.len() {
+        let bulge = match places[k..] {
+            [a, b, c, ..] => bulge_through(a, b, c, tolerance / 3.0),
+            _ => None,
+        };
+        vertices.push(Vertex { at: places[k], bulge: bulge.unwrap_or(0.0) });
+        k += if bulge.is_some() { 2 } else { 1 };
+    }
+    ArcSpline { vertices, closed: path.closed }
+}
+
+/// The bulge of the arc from `a` through `b` to `c`; `None` where it leaves the lines between them by more than
+/// `bow`, or is hardly an arc.
+fn bulge_through(a: Point, b: Point, c: Point, bow: f64) -> Option<f64> {
+    let between = |one: Vec2, other: Vec2| one.cross(other).atan2(one.dot(other));
+    // By the angle on the circumference: half the turn at `b` is a quarter of the arc's sweep.
+    let bulge = (between(b - a, c - b) / 2.0).tan();
+    let sagitta = |chord: Vec2, seen: f64| chord.hypot() / 2.0 * (seen.abs() / 2.0).tan();
+    let first = sagitta(b - a, between(a - c, b - c));
+    let second = sagitta(c - b, between(b - a, c - a));
+    (first.max(second) <= bow && (0.001..0.6).contains(&bulge.abs())).then_some(bulge)
 }
 
 #[test]

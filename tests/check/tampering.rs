@@ -1,19 +1,22 @@
-//! Single changes to good programs: those that alter the part or the safety are refuted, by the claim that they
-//! break; those that alter neither leave everything holding.
+//! Single changes to good programs, judged by `ribband check` as anybody runs it: those that alter the part or the
+//! safety are refuted, by the claim that they break; those that alter neither leave everything holding.
 
+use std::fmt::Write as _;
+use std::fs;
+
+use assert_cmd::Command;
 use kurbo::{Point, Vec2};
-use ribband::check::{Asked, Feeds};
 use ribband::geom::ArcSpline;
-use ribband::sketch::Sketch;
+use serde_json::Value;
 
 use crate::emit::{Arcs, Form, program};
-use crate::{asked, failing, polyline, sketch, verdict};
+use crate::polyline;
 
-/// A good program with its drawing: a sign of an outer ring of arcs, a square hole and an open stroke.
+/// A good program with its drawing, in a folder of their own: a sign of an outer ring of arcs, a square hole and an
+/// open stroke.
 struct Good {
     text: String,
-    drawing: Sketch,
-    asked: Asked,
+    folder: tempfile::TempDir,
 }
 
 impl Good {
@@ -27,19 +30,53 @@ impl Good {
         let hole = polyline(&[(60.0, 50.0), (75.0, 50.0), (75.0, 65.0), (60.0, 65.0)], true);
         let stroke = polyline(&[(90.0, 40.0), (95.0, 55.0), (105.0, 50.0), (100.0, 80.0)], false);
         let paths = [outer, hole, stroke];
-        let asked = Asked { feeds: Some(Feeds { cutting: 1800.0, plunge: 600.0 }), ..asked(0.02) };
-        Self { text: program(&paths, form), drawing: sketch(&paths), asked }
+        let folder = tempfile::tempdir().expect("a folder");
+        fs::write(folder.path().join("sign.dxf"), dxf(&paths)).expect("the folder takes a drawing");
+        Self { text: program(&paths, form), folder }
     }
 
     fn lines(&self) -> Vec<String> {
         self.text.lines().map(str::to_string).collect()
     }
 
-    /// The claims that fail for the changed lines, or the reader's refusal.
-    fn judge(&self, lines: &[String]) -> Result<Vec<&'static str>, String> {
-        let text = lines.join("\n") + "\n";
-        verdict(&text, &self.drawing, &self.asked).map(|verdict| failing(&verdict))
+    /// The claims that fail for the changed lines, or what the command says when it reads no further.
+    fn judge(&self, lines: &[String]) -> Result<Vec<String>, String> {
+        fs::write(self.folder.path().join("sign.nc"), lines.join("\n") + "\n").expect("the folder takes it");
+        let mut command = Command::cargo_bin("ribband").expect("the binary is built");
+        command.current_dir(&self.folder).args(["check", "sign.nc", "--against", "sign.dxf"]);
+        command.args(["--origin", "drawing", "--tolerance", "0.05mm", "--depth", "6mm", "--pass", "2mm"]);
+        let ended = command.args(["--clearance", "5mm", "--report", "-"]).output().expect("it runs");
+        let (told, status) = (String::from_utf8_lossy(&ended.stderr), ended.status.code());
+        let Ok(report) = serde_json::from_slice::<Value>(&ended.stdout) else {
+            assert_eq!(status, Some(1), "a program that is not understood is refused: {told}");
+            return Err(told.into_owned());
+        };
+        let claims = report["check"]["claims"].as_array().expect("a list").iter();
+        let name = |claim: &Value| claim["name"].as_str().expect("a name").to_string();
+        let failing: Vec<String> = claims.filter(|claim| claim["state"] == "fails").map(name).collect();
+        let (holds, verdict) = if failing.is_empty() { (0, "holds") } else { (1, "does not hold") };
+        assert_eq!(status, Some(holds), "{failing:?}");
+        assert_eq!(
+            told.lines().next(),
+            Some(&*format!("checked against the drawing: {verdict}")),
+            "{failing:?}"
+        );
+        Ok(failing)
     }
+}
+
+/// Contours as a DXF of light polylines with bulges, in mm.
+fn dxf(paths: &[ArcSpline]) -> String {
+    let mut text =
+        String::from("0\nSECTION\n2\nHEADER\n9\n$INSUNITS\n70\n4\n0\nENDSEC\n0\nSECTION\n2\nENTITIES\n");
+    for path in paths {
+        let (count, closed) = (path.vertices.len(), u8::from(path.closed));
+        write!(text, "0\nLWPOLYLINE\n8\n0\n90\n{count}\n70\n{closed}\n").expect("text takes any line");
+        for v in &path.vertices {
+            write!(text, "10\n{}\n20\n{}\n42\n{}\n", v.at.x, v.at.y, v.bulge).expect("text takes any line");
+        }
+    }
+    text + "0\nENDSEC\n0\nEOF\n"
 }
 
 /// Claims that any change of the shape may break.

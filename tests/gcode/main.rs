@@ -8,4 +8,5 @@ mod parts;
 mod rounded;
 mod routed;
 mod second;
+mod second_reader;
 mod written;

@@ -164,6 +164,32 @@ fn drilling_goes_down_and_back_for_every_hole() {
     assert!(program.toolpath.moves.windows(2).all(|w| w[0].to == w[1].from), "one chain");
 }
 
+/// NISTIR 6556, 3.5.16.2: the two worked cycles, from (1, 2, 3), with the moves that the report lists (in mm here).
+#[test]
+fn the_worked_drilling_cycles() {
+    let once = [[4.0, 5.0, 3.0], [4.0, 5.0, 2.8], [4.0, 5.0, 1.5], [4.0, 5.0, 3.0]].to_vec();
+    let mut thrice = vec![[1.0, 2.0, 4.8]];
+    for (x, y) in [(5.0, 7.0), (9.0, 12.0), (13.0, 17.0)] {
+        thrice.extend([[x, y, 4.8], [x, y, 4.2], [x, y, 4.8]]);
+    }
+    for (line, expected) in
+        [("G90 G81 G98 X4 Y5 Z1.5 R2.8", once), ("G91 G81 G98 X4 Y5 Z-0.6 R1.8 L3", thrice)]
+    {
+        let program = shop(&format!("G21 G90 G94 G17 F100 G0 X1 Y2 Z3\n{line}\nG80\nM2"));
+        let moves = &program.toolpath.moves;
+        let ends: Vec<_> = moves.iter().map(|m| [m.to.xy.x, m.to.xy.y, m.to.z]).collect();
+        assert_eq!(ends.len(), expected.len(), "{line}: {ends:?}");
+        for (m, (end, expected)) in moves.iter().zip(ends.iter().zip(&expected)) {
+            assert!(
+                end.iter().zip(expected).all(|(a, b)| (a - b).abs() < 1e-12),
+                "{line}: {end:?} {expected:?}"
+            );
+            let bottom = m.to.z < 1.6 || (4.1..4.3).contains(&m.to.z);
+            assert_eq!(m.is_rapid(), !bottom, "{line}: {m:?}");
+        }
+    }
+}
+
 #[test]
 fn nothing_counts_after_the_end() {
     let program = shop("%\nG21 G90 G0 X0 Y0 Z0\nM30\nG1 X5 F100\n%\nthis is not read");
