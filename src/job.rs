@@ -6,6 +6,7 @@ mod condensing;
 mod cutting;
 mod file;
 mod ladder;
+mod laying;
 mod settings;
 mod wishes;
 
@@ -22,6 +23,7 @@ pub use condensing::{CondenseArgs, CondenseJob};
 pub use cutting::{Cutting, TabNumber, Tabs};
 pub use file::{JobFile, LayerSettings};
 pub use ladder::{Ladder, LadderArgs};
+pub use laying::{Grid, Layout, LayoutArgs};
 pub use settings::{DrawingArgs, DrawingUnit, Origin, Outputs, SettingUpArgs, Settings, Zero};
 pub use wishes::{Corners, CutArgs, Direction, Entry, Held, Side, TabsWanted};
 
@@ -44,6 +46,8 @@ pub struct Job {
     pub cutting: Cutting,
     /// How the contours of single layers are cut instead; `None` where they are left out.
     pub layers: BTreeMap<String, Option<Cutting>>,
+    /// How the drawing is laid on the stock.
+    pub layout: Layout,
     /// Zero, stock and the height of travel.
     pub stock: Stock,
 }
@@ -148,8 +152,18 @@ impl Job {
             let what = "--allowance moves the cutter off the drawn edge, and the cut is on the line";
             return Err(Error::new(Kind::Settings, what).remedy("choose a --side, or leave --allowance out"));
         }
+        let layout = Layout::new(&all.layout, mm)?;
+        let outside = |c: &Cutting| matches!(c.side, Side::Outside | Side::Auto);
+        let needed_mm = cutter_mm + 2.0 * allowance_mm;
+        if layout.copies.count() > 1
+            && layout.gap_mm < needed_mm
+            && (outside(&cutting) || layers.values().flatten().any(outside))
+        {
+            return Err(too_close(layout.gap_mm, needed_mm));
+        }
         Ok(Self {
             drawing: drawing(&all.drawing, mm)?,
+            layout,
             tolerance: tolerance.and_then(Tolerance::new),
             cutter_mm,
             cutter,
@@ -170,6 +184,14 @@ impl Job {
     pub fn cutting_of(&self, layer: &str) -> Option<&Cutting> {
         self.layers.get(layer).map_or(Some(&self.cutting), Option::as_ref)
     }
+}
+
+/// Refuses copies between which the cutter cannot pass.
+fn too_close(gap_mm: f64, needed_mm: f64) -> Error {
+    let what = format!(
+        "the gap between copies is {gap_mm} mm, and the cutter needs {needed_mm} mm to pass outside of both"
+    );
+    Error::new(Kind::Refused, what).remedy("ask for a wider --gap")
 }
 
 /// The machine profile of that name, built in or in a file; `shop-router` where none is named.

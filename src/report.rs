@@ -96,6 +96,8 @@ pub struct Setup {
     pub zero: Zero,
     /// Where X and Y are zero.
     pub origin: Origin,
+    /// How the drawing is laid out.
+    pub layout: Layout,
     /// The extents of the cutter's path from that zero: least x, y, z, largest x, y, z.
     pub extents_mm: [f64; 6],
     /// The cutter's diameter.
@@ -114,6 +116,23 @@ pub struct Setup {
     pub plunge_mm_min: f64,
     /// The spindle's speed.
     pub spindle_rpm: f64,
+}
+
+/// How the drawing is laid out.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Layout {
+    /// True when it is mirrored left to right, before it is turned.
+    pub mirrored: bool,
+    /// Degrees that it is turned by, counter-clockwise.
+    pub turn_deg: f64,
+    /// Copies side by side.
+    pub columns: usize,
+    /// Copies above each other.
+    pub rows: usize,
+    /// The gap between the boxes around two copies.
+    pub gap_mm: f64,
+    /// The box around the finished parts of all copies, from the program's zero: least x and y, largest x and y.
+    pub parts_mm: [f64; 4],
 }
 
 /// The program as it was written.
@@ -262,6 +281,21 @@ pub struct Size {
     pub bytes: usize,
     /// Its planned time; none where it holds words that are not known.
     pub time_s: Option<f64>,
+}
+
+impl Layout {
+    /// What is not as drawn, in words, a length said by `show`; empty for the drawing as it is, once.
+    pub fn words(&self, show: impl Fn(f64) -> String) -> String {
+        let copies = self.columns * self.rows;
+        let parts = [
+            self.mirrored.then(|| "mirrored".to_owned()),
+            (self.turn_deg != 0.0).then(|| format!("turned {} degrees", self.turn_deg)),
+            (copies > 1).then(|| {
+                format!("{copies} copies, {} by {}, {} apart", self.columns, self.rows, show(self.gap_mm))
+            }),
+        ];
+        parts.into_iter().flatten().collect::<Vec<_>>().join(", ")
+    }
 }
 
 impl Condensed {

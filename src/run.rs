@@ -13,9 +13,9 @@ mod showing;
 mod siding;
 mod splitting;
 
-use std::collections::BTreeMap;
+use std::collections::{BTreeMap, HashSet};
 
-use kurbo::{Rect, Vec2};
+use kurbo::Rect;
 use rayon::prelude::*;
 use sha2::{Digest, Sha256};
 
@@ -36,6 +36,7 @@ use crate::route::{self, Routed, Routing, Setup};
 use crate::sketch::{Contour, Sketch};
 use checking::Intended;
 use clock::Clock;
+use placing::Placing;
 use prepare::prepare;
 
 pub use progress::{Progress, Unwatched};
@@ -64,8 +65,10 @@ pub struct Plan {
     pub tolerance: Tolerance,
     /// The path of each contour, in the drawing's coordinates.
     pub fitted: Vec<Fitted>,
-    /// The step from the drawing's coordinates to the program's.
-    pub shift: Vec2,
+    /// The contours as they are drawn, in the program's coordinates, copy by copy.
+    pub drawn: Vec<Contour>,
+    /// The box around the finished parts of all copies, in the program's coordinates.
+    pub parts_box: Rect,
     /// Each path in the program's coordinates, with how it is cut.
     pub routed: Vec<Routed>,
     /// The moves as meant.
@@ -125,15 +128,15 @@ pub fn plan(job: &Job, source: Source, progress: &dyn Progress) -> Result<Plan, 
 fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<Plan, Error> {
     let mut clock = Clock::default();
     let prepared = prepare(job, source, &mut clock)?;
+    let placing = Placing::of(job, &prepared)?;
     let contours = &prepared.cleaned.contours;
     let sides = siding::sides(job, &prepared)?;
     let fitting = prepare::left_for_fitting(job, &prepared)?;
     let fitted = clock.time("fit", || fit(contours, fitting, progress));
 
-    let shift = placing::shift(job.stock.origin(), prepared.part);
-    let setup = cutting::setup(job, prepared.part, shift);
+    let setup = cutting::setup(job, &placing);
     let sided = clock
-        .time("offset", || cutting::sided(job, contours, &fitted, (&sides, prepared.tolerance), shift))?;
+        .time("offset", || cutting::sided(job, contours, &fitted, (&sides, prepared.tolerance), &placing))?;
     let mut routing = clock.time("route", || route::route(&sided.routed, &setup))?;
 
     let sha256 = digest(source.bytes);
@@ -141,7 +144,7 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let feeds = clock.time("feed", || feeding::suit(&mut routing.toolpath, &header, job));
     let text = clock.time("write", || gcode::write(&routing.toolpath, &header, &job.machine))?;
     let program = clock.time("read back", || read_back(&text, &job.machine))?;
-    let intended = Intended { routed: &sided.routed, setup: &setup, sides: &sides, shift };
+    let intended = Intended { routed: &sided.routed, setup: &setup, sides: &sides, placing: &placing };
     let verdict = clock.time("check", || checking::check(job, &program, &prepared, &intended));
     checking::hold(&verdict.claims)?;
     let check_part = |part: &Program| checking::check_part(job, part, &prepared, &intended);
@@ -152,21 +155,23 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let highest_override = clock.time("override", || feed::highest_override(&program.toolpath, &limits));
     // Both texts have the same lines but for their motion.
     let still = text.lines().count() - program.motion_blocks;
-    let as_drawn = clock.time("as drawn", || as_drawn(job, contours, (&setup, &header, shift), still))?;
+    let as_drawn = clock.time("as drawn", || as_drawn(job, contours, (&setup, &header, &placing), still))?;
     let roughness = clock.time("measure", || prepare::roughness(contours));
     let mut warnings = prepared.warnings;
     warnings.extend(sides.notes);
     warnings.extend(sided.notes);
     warnings.extend(routing.notes.iter().cloned());
     warnings.extend(feeds);
+    once_each(&mut warnings);
     Ok(Plan {
+        drawn: placing.drawn(&prepared.sketch.contours),
+        parts_box: placing.parts,
         sketch: prepared.sketch,
         cleaned: prepared.cleaned,
         part: prepared.part,
         tolerance: prepared.tolerance,
         roughness,
         fitted,
-        shift,
         routed: sided.routed,
         routing,
         text,
@@ -186,10 +191,10 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
 fn as_drawn(
     job: &Job,
     contours: &[Contour],
-    (setup, header, shift): (&Setup, &Header, Vec2),
+    (setup, header, placing): (&Setup, &Header, &Placing),
     still: usize,
 ) -> Result<AsDrawn, Error> {
-    let toolpath = route::route(&cutting::as_drawn(job, contours, shift), setup)?.toolpath;
+    let toolpath = route::route(&cutting::as_drawn(job, contours, placing), setup)?.toolpath;
     let text = gcode::write(&toolpath, header, &job.machine)?;
     let motion_blocks = text.lines().count() - still;
     Ok(AsDrawn { motion_blocks, times: feed::time(&toolpath, &Limits::of(&job.machine)) })
@@ -225,6 +230,12 @@ pub fn report(job: &Job, plan: &Plan, drawing: &str, program: &str) -> Report {
 /// What the pictures of a plan show, with the plan's `report`.
 pub fn scene<'a>(job: &Job, plan: &'a Plan, report: &'a Report) -> Scene<'a> {
     showing::scene(job, plan, report)
+}
+
+/// Drops what was said before: copies are alike.
+fn once_each(told: &mut Vec<String>) {
+    let mut said = HashSet::new();
+    told.retain(|sentence| said.insert(sentence.clone()));
 }
 
 /// Every contour replaced by its path, in the contours' order however many cores work on them.

@@ -3,7 +3,7 @@
 use std::fmt::Write;
 
 use crate::num::LengthUnit;
-use crate::report::{Check, Claim, Condensed, Report, Setup, State};
+use crate::report::{Check, Claim, Condensed, Layout, Report, Setup, State};
 
 /// The summary of `report`, in the machine's own unit, with a line end.
 pub fn summary(report: &Report) -> String {
@@ -25,7 +25,9 @@ pub fn summary(report: &Report) -> String {
     let mut text = String::new();
     let uncut = report.contours.iter().flat_map(|c| c.uncut.iter().map(move |told| (c.id, told)));
     let uncut = uncut.map(|(id, told)| ("Uncut", format!("contour {id}: {told}")));
-    for (name, told) in rows.into_iter().chain(uncut) {
+    let laid = laid_out(&report.setup.layout, show).map(|told| ("Laid out", told));
+    let (first, rest) = rows.split_at(2);
+    for (name, told) in first.iter().cloned().chain(laid).chain(rest.iter().cloned()).chain(uncut) {
         // A string takes everything that is written to it.
         let _ = writeln!(text, "{name:10} {told}");
     }
@@ -83,6 +85,14 @@ fn part(report: &Report, show: Show) -> String {
     let (width, height) = (show.size(drawing.width_mm), show.size(drawing.height_mm));
     let contours = counted(report.contours.len(), "contour");
     format!("{width} x {height} {} finished, {contours}, scale by {}", show.unit(), drawing.scale_from)
+}
+
+/// How the drawing is laid out, where it is not once as drawn.
+fn laid_out(layout: &Layout, show: Show) -> Option<String> {
+    let words = layout.words(|mm| format!("{} {}", show.size(mm), show.unit()));
+    let [x0, y0, x1, y1] = layout.parts_mm;
+    let (width, height) = (show.size(x1 - x0), show.size(y1 - y0));
+    (!words.is_empty()).then(|| format!("{words}: {width} x {height} {} in all", show.unit()))
 }
 
 fn zero(setup: &Setup) -> String {

@@ -16,15 +16,17 @@ mod steps;
 
 use std::collections::{BTreeMap, BTreeSet};
 
-use kurbo::{Affine, Point, Rect, Vec2};
+use kurbo::{Point, Rect, Vec2};
 
 use crate::gcode::read::Program;
-use crate::geom::ArcSpline;
 use crate::machine::Machine;
 use crate::num::{Deviation, Tolerance};
 use crate::sketch::Sketch;
 
+use place::Placed;
+
 pub use claim::{Claim, Spot, State};
+pub use place::Layout;
 
 /// What a program is checked for. Lengths in mm; heights and places in the program's own coordinates.
 #[derive(Clone, Debug)]
@@ -39,8 +41,10 @@ pub struct Asked {
     pub allowance: f64,
     /// What the passes leave beside the edge for a last one at full depth.
     pub leave: f64,
-    /// Where the drawing's zero lies in the program's coordinates; `None` to find it among the usual places: the
-    /// drawing's own zero, the lower left of the drawing at the program's zero, or its centre there.
+    /// How the drawing is laid on the stock.
+    pub layout: Layout,
+    /// Where the drawing's zero lies in the program's coordinates, in the lower left copy; `None` to find it among the
+    /// usual places: the drawing's own zero, the lower left of all copies at the program's zero, or their centre there.
     pub drawing_at: Option<Vec2>,
     /// The height of the stock's top.
     pub stock_top: f64,
@@ -78,6 +82,8 @@ pub enum Side {
 pub struct Uncut {
     /// The contour's id in the drawing.
     pub contour: usize,
+    /// The copy's number, from 0: the lower left one first, then along its row.
+    pub copy: usize,
     /// How long all its stretches are, in mm.
     pub length: f64,
     /// The place that the cutter is furthest from, in the drawing's coordinates.
@@ -125,6 +131,7 @@ impl Asked {
             on_line: BTreeSet::new(),
             allowance: 0.0,
             leave: 0.0,
+            layout: Layout::default(),
             drawing_at: None,
             stock_top: 0.0,
             clearance: None,
@@ -143,7 +150,7 @@ impl Asked {
 pub struct Verdict {
     /// True when no claim fails.
     pub holds: bool,
-    /// The worst deviation between what the program cuts and the drawing, in the drawing's coordinates: on the line
+    /// The worst deviation between what the program cuts and the drawing, in the program's coordinates: on the line
     /// between the cutter's centre and the contour, else between the cutter's edge and what it can reach of the
     /// contour. `None` when nothing that is cut could be matched to the drawing.
     pub deviation: Option<Deviation>,
@@ -161,10 +168,9 @@ pub struct Verdict {
 /// nothing may be cut elsewhere. Costs time in proportion to the program and the drawing.
 pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Asked) -> Verdict {
     let cuts = cuts::Cuts::of(&program.toolpath.moves, asked.stock_top);
-    let at = asked.drawing_at.unwrap_or_else(|| place::find(&cuts, sketch));
-    let placed = Placed::new(sketch, at);
+    let placed = Placed::new(sketch, &asked.layout, asked.drawing_at, &cuts);
     let (shape, uncut) = match asked.side {
-        Side::On => (shape::judge(&cuts, placed.contours, true, machine, asked).0, Vec::new()),
+        Side::On => (shape::judge(&cuts, placed.contours.clone(), true, machine, asked).0, Vec::new()),
         side => side::judge(&cuts, &placed, side, machine, asked),
     };
     let mut claims = shape.claims;
@@ -178,9 +184,9 @@ pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Aske
             sketch.sampling_mm
         ));
     }
-    let deviation = shape.deviation.map(|d| Deviation { at: d.at - at, ..d });
-    let uncut = uncut.into_iter().map(|u| Uncut { at: u.at - at, ..u }).collect();
-    Verdict { holds, deviation, claims, uncut, not_checked }
+    let in_drawing = |u: Uncut| Uncut { at: placed.in_drawing(u.copy, u.at), ..u };
+    let uncut = uncut.into_iter().map(in_drawing).collect();
+    Verdict { holds, deviation: shape.deviation, claims, uncut, not_checked }
 }
 
 /// Checks what holds of a program whatever it cuts: its moves, its start and its end. For a part of a longer program.
@@ -188,19 +194,6 @@ pub fn check_moves(program: &Program, machine: &Machine, asked: &Asked) -> Vec<C
     let mut claims = motion::judge(program, machine, asked);
     claims.extend(start_end::judge(program, machine, asked));
     claims
-}
-
-/// The drawing in the program's coordinates.
-struct Placed {
-    /// The contours with their ids.
-    contours: Vec<(usize, ArcSpline)>,
-}
-
-impl Placed {
-    fn new(sketch: &Sketch, at: Vec2) -> Self {
-        let place = Affine::translate(at);
-        Self { contours: sketch.contours.iter().map(|c| (c.id, c.path.transformed(place))).collect() }
-    }
 }
 
 /// What no program can tell.

@@ -5,6 +5,7 @@ use kurbo::{Point, Rect};
 use super::Asked;
 use super::claim::{Claim, Spot, State, Worst};
 use super::cuts::{Cuts, Pass};
+use super::place::Drawn;
 use crate::geom::{Along, ArcSpline, SpanIndex, Vertex, frechet_within};
 use crate::machine::Machine;
 use crate::num::Deviation;
@@ -34,11 +35,10 @@ struct Target {
     best: Option<(Deviation, Spot)>,
 }
 
-/// Compares the cuts with `contours`, by their ids, which are in the program's coordinates. With `alone`, all cuts must be theirs;
-/// else those that follow none are handed back.
+/// Compares the cuts with `contours`. With `alone`, all cuts must be theirs; else those that follow none are handed back.
 pub(super) fn judge<'a, 'b>(
     cuts: &'b Cuts<'a>,
-    contours: Vec<(usize, ArcSpline)>,
+    contours: Vec<Drawn>,
     alone: bool,
     machine: &Machine,
     asked: &Asked,
@@ -72,8 +72,8 @@ struct Comparison {
 }
 
 impl Comparison {
-    fn new(contours: Vec<(usize, ArcSpline)>, asked: &Asked) -> Self {
-        let target = |(id, path): (usize, ArcSpline)| {
+    fn new(contours: Vec<Drawn>, asked: &Asked) -> Self {
+        let target = |Drawn { id, path, .. }: Drawn| {
             let bbox = path.bbox()?;
             let lowest = asked.lowest_of(id);
             Some(Target { path, bbox, lowest, floors: Vec::new(), best: None })

@@ -12,10 +12,11 @@ use kurbo::{Point, Vec2};
 
 use super::claim::{Claim, Spot, State, Worst};
 use super::cuts::{Cuts, Pass};
+use super::place::{Drawn, Placed};
 use super::region::Region;
 use super::rings::in_rings;
 use super::shape::{self, Shape};
-use super::{Asked, Placed, Side, Uncut, steps};
+use super::{Asked, Side, Uncut, steps};
 use crate::geom::{ArcSpline, Span, SpanIndex};
 use crate::machine::Machine;
 use crate::num::Deviation;
@@ -45,7 +46,7 @@ pub(super) fn judge(
         return (Shape { deviation: None, claims }, Vec::new());
     }
     let (closed, open) = bordering(placed, asked);
-    let lines = SpanIndex::new(open.iter().flat_map(|(_, path)| path.spans()));
+    let lines = SpanIndex::new(open.iter().flat_map(|drawn| drawn.path.spans()));
     let on_line = |m: &Move| {
         !open.is_empty() && lines.farthest(&m.span(), asked.tolerance.mm()).0 <= asked.tolerance.mm()
     };
@@ -64,7 +65,7 @@ pub(super) fn judge(
     let (coverage, uncut) = judge.coverage(&beside, &ways_down, (machine, asked));
     let mut claims = vec![judge.clearance_claim(clearance), judge.coverage_claim(coverage)];
     claims.push(judge.touch_claim(&beside));
-    claims.push(depth_claim(&beside, machine, asked, &judge.ids));
+    claims.push(depth_claim(&beside, machine, asked, &judge.owners));
     claims.push(pass_claim(&beside, &ways_down, machine, asked));
     let deviation = judge.deviation(clearance, coverage);
     let on_line = shape.as_ref().and_then(|shape| shape.deviation);
@@ -74,26 +75,23 @@ pub(super) fn judge(
 }
 
 /// The contours that bound the region, closed or drawn in pieces, and the open ones, which are cut on the line.
-fn bordering(placed: &Placed, asked: &Asked) -> (Contours, Contours) {
-    let (mut border, open): (Contours, Contours) =
-        placed.contours.iter().cloned().partition(|(id, path)| path.closed && !asked.on_line.contains(id));
-    let (on_line, open): (Contours, Contours) =
-        open.into_iter().partition(|(id, _)| asked.on_line.contains(id));
-    let paths: Vec<&ArcSpline> = open.iter().map(|(_, path)| path).collect();
+fn bordering(placed: &Placed, asked: &Asked) -> (Vec<Drawn>, Vec<Drawn>) {
+    let on_line = |drawn: &Drawn| asked.on_line.contains(&drawn.id);
+    let (mut border, open): (Vec<Drawn>, Vec<Drawn>) =
+        placed.contours.iter().cloned().partition(|drawn| drawn.path.closed && !on_line(drawn));
+    let (on_line, open): (Vec<Drawn>, Vec<Drawn>) = open.into_iter().partition(on_line);
+    let paths: Vec<&ArcSpline> = open.iter().map(|drawn| &drawn.path).collect();
     let mut in_ring = in_rings(&paths, asked.tolerance.mm()).into_iter();
-    let (pieces, mut open): (Contours, Contours) =
+    let (pieces, mut open): (Vec<Drawn>, Vec<Drawn>) =
         open.into_iter().partition(|_| in_ring.next().unwrap_or(false));
     border.extend(pieces);
     open.extend(on_line);
     (border, open)
 }
 
-/// Contours with their ids.
-type Contours = Vec<(usize, ArcSpline)>;
-
 struct Judge {
-    /// The contours' ids, one for each span of the region's border.
-    ids: Vec<usize>,
+    /// The contour, and its copy, of each span of the region's border.
+    owners: Vec<Owner>,
     region: Region,
     radius: f64,
     tolerance: f64,
@@ -102,22 +100,29 @@ struct Judge {
     side: Side,
 }
 
-/// A piece of the border, with the span before and after it for the directions at its ends.
+/// What a span of the border belongs to.
+#[derive(Clone, Copy)]
+struct Owner {
+    id: usize,
+    copy: usize,
+}
+
+/// A piece of the border.
 struct Piece {
     span: Span,
-    id: usize,
+    owner: Owner,
 }
 
 impl Judge {
-    fn new(closed: Vec<(usize, ArcSpline)>, radius: f64, side: Side, asked: &Asked) -> Self {
-        let mut ids = Vec::new();
+    fn new(closed: Vec<Drawn>, radius: f64, side: Side, asked: &Asked) -> Self {
+        let mut owners = Vec::new();
         let mut spans = Vec::new();
-        for (id, path) in &closed {
-            spans.extend(path.spans());
-            ids.resize(spans.len(), *id);
+        for drawn in &closed {
+            spans.extend(drawn.path.spans());
+            owners.resize(spans.len(), Owner { id: drawn.id, copy: drawn.copy });
         }
         Self {
-            ids,
+            owners,
             region: Region::new(spans),
             radius,
             tolerance: asked.tolerance.mm(),
@@ -206,7 +211,8 @@ impl Judge {
         ways_down: &[&Move],
         (machine, asked): (&Machine, &Asked),
     ) -> (Worst, Vec<Uncut>) {
-        let mut floors: Vec<Option<f64>> = self.ids.iter().map(|&id| asked.lowest_of(id)).collect();
+        let mut floors: Vec<Option<f64>> =
+            self.owners.iter().map(|owner| asked.lowest_of(owner.id)).collect();
         floors.sort_by(|a, b| a.partial_cmp(b).unwrap_or(Ordering::Equal));
         floors.dedup();
         let (mut worst, mut uncut) = (Worst::none(), Vec::new());
@@ -217,10 +223,10 @@ impl Judge {
             // A hole of the cutter's own size is drilled.
             let drilled = ways_down.iter().filter(|m| m.from.xy == m.to.xy && deep(m.to.z));
             let path = SpanIndex::new(along.chain(drilled).map(|m| m.span()));
-            for (k, (&span, &id)) in self.region.spans().iter().zip(&self.ids).enumerate() {
-                if asked.lowest_of(id) == floor {
+            for (k, (&span, &owner)) in self.region.spans().iter().zip(&self.owners).enumerate() {
+                if asked.lowest_of(owner.id) == floor {
                     self.cover_corner(k, &path, &mut worst);
-                    self.cover(&Piece { span, id }, &path, &mut worst, &mut uncut);
+                    self.cover(&Piece { span, owner }, &path, &mut worst, &mut uncut);
                 }
             }
         }
@@ -244,7 +250,9 @@ impl Judge {
             } else if self.touches(middle, normals(&part).into_iter()) {
                 worst.note(bound, || spot(middle));
             } else if bound > limit {
-                note_uncut(uncut, piece.id, part.length(), middle, here - self.radius);
+                let Owner { id: contour, copy } = piece.owner;
+                let gap = here - self.radius;
+                note_uncut(uncut, Uncut { contour, copy, length: part.length(), at: middle, gap });
             }
         }
     }
@@ -338,21 +346,22 @@ fn spot(xy: Point) -> Spot {
     Spot { line: 0, at: Some(crate::toolpath::Position { xy, z: 0.0 }) }
 }
 
-fn note_uncut(uncut: &mut Vec<Uncut>, contour: usize, length: f64, at: Point, gap: f64) {
-    match uncut.last_mut().filter(|last| last.contour == contour) {
+fn note_uncut(uncut: &mut Vec<Uncut>, more: Uncut) {
+    let same = |last: &&mut Uncut| (last.contour, last.copy) == (more.contour, more.copy);
+    match uncut.last_mut().filter(same) {
         Some(last) => {
-            last.length += length;
-            if gap > last.gap {
-                (last.at, last.gap) = (at, gap);
+            last.length += more.length;
+            if more.gap > last.gap {
+                (last.at, last.gap) = (more.at, more.gap);
             }
         }
-        None => uncut.push(Uncut { contour, length, at, gap }),
+        None => uncut.push(more),
     }
 }
 
 /// The lowest pass is at the height asked.
-fn depth_claim(beside: &[&Pass], machine: &Machine, asked: &Asked, ids: &[usize]) -> Claim {
-    let asked_for = ids.iter().filter_map(|&id| asked.lowest_of(id)).reduce(f64::min);
+fn depth_claim(beside: &[&Pass], machine: &Machine, asked: &Asked, owners: &[Owner]) -> Claim {
+    let asked_for = owners.iter().filter_map(|owner| asked.lowest_of(owner.id)).reduce(f64::min);
     let Some(lowest) = asked_for.or(asked.lowest) else {
         return Claim::open(DEPTH, "no depth was asked for");
     };

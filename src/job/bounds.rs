@@ -58,6 +58,15 @@ pub(super) const CLEARANCE: Bound = Bound {
     reason: "closer above the stock chips are hit",
 };
 
+pub(super) const GAP: Bound =
+    Bound { name: "gap", unit: "mm", least: 0.0, most: 1e4, reason: "no machine holds copies so far apart" };
+pub(super) const TURN: Bound = Bound {
+    name: "turn",
+    unit: "degrees",
+    least: -360.0,
+    most: 360.0,
+    reason: "that is more than all round",
+};
 pub(super) const BED_CUT: Bound = Bound {
     name: "bed-cut",
     unit: "mm",

@@ -3,7 +3,8 @@
 use clap::Args;
 
 use super::{
-    DrawingArgs, DrawingSettings, SettingUpArgs, Side, Stock, Units, bounds, cutter, machine, stock,
+    DrawingArgs, DrawingSettings, Layout, LayoutArgs, SettingUpArgs, Side, Stock, Units, bounds, cutter,
+    machine, stock,
 };
 use crate::error::Error;
 use crate::machine::Machine;
@@ -36,6 +37,9 @@ pub struct CheckArgs {
     /// Deepest single pass allowed
     #[arg(long, value_name = "LEN", help_heading = "Cut")]
     pub pass: Option<Length>,
+    /// How the drawing is laid on the stock.
+    #[command(flatten)]
+    pub layout: LayoutArgs,
     /// Zero and stock.
     #[command(flatten)]
     pub setting_up: SettingUpArgs,
@@ -60,6 +64,8 @@ pub struct CheckJob {
     pub depth_mm: Option<f64>,
     /// The deepest single pass allowed, where that was said.
     pub pass_mm: Option<f64>,
+    /// How the drawing is laid on the stock.
+    pub layout: Layout,
     /// Zero, stock and the height of travel.
     pub stock: Stock,
 }
@@ -84,6 +90,7 @@ impl CheckJob {
             tolerance: tolerance.unwrap_or(Tolerance::DEFAULT),
             depth_mm: mm.length(&bounds::DEPTH, typed.depth)?,
             pass_mm: mm.length(&bounds::PASS, typed.pass)?,
+            layout: Layout::new(&typed.layout, mm)?,
             stock: stock(&typed.setting_up, mm)?,
             machine,
         })

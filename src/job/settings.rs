@@ -6,6 +6,7 @@ use clap::{Args, ValueEnum};
 use schemars::JsonSchema;
 use serde::{Deserialize, Serialize};
 
+use super::laying::LayoutArgs;
 use super::wishes::CutArgs;
 use crate::num::Length;
 
@@ -40,6 +41,10 @@ pub struct Settings {
     #[arg(long, value_name = "DIAMETER or NAME", help_heading = "Cut")]
     pub cutter: Option<String>,
 
+    /// How the drawing is laid on the stock.
+    #[command(flatten)]
+    #[serde(flatten)]
+    pub layout: LayoutArgs,
     /// Deepest cut into the bed under the stock [default: 0.3mm]
     #[arg(long, value_name = "LEN", help_heading = "Setting up")]
     pub bed_cut: Option<Length>,
@@ -172,6 +177,7 @@ impl Settings {
             bed_cut: self.bed_cut.or(other.bed_cut),
             spindle: self.spindle.or(other.spindle),
             cutter: self.cutter.or(other.cutter),
+            layout: self.layout.or(other.layout),
             setting_up: self.setting_up.or(other.setting_up),
         }
     }

@@ -3,7 +3,7 @@
 //! Distances are to the nearest place, taken at every vertex of the drawing, at every joint of the path and in between:
 //! they show where the deviation is. How large it is at most is what the check certifies.
 
-use kurbo::{Affine, Point};
+use kurbo::Point;
 use rayon::prelude::*;
 
 use super::Scene;
@@ -57,17 +57,15 @@ const MOST: usize = 24_000;
 impl Chord {
     /// The chord error of the program in `scene`, whose moves have the `stages`.
     pub(super) fn of(scene: &Scene, stages: &[Stage]) -> Self {
-        let place = Affine::translate(scene.drawing_at);
-        let contours: Vec<ArcSpline> =
-            scene.sketch.contours.iter().map(|contour| contour.path.transformed(place)).collect();
-        let step = contours.iter().map(ArcSpline::length).sum::<f64>() / BETWEEN;
+        let contours: Vec<&ArcSpline> = scene.drawn.iter().map(|contour| &contour.path).collect();
+        let step = contours.iter().map(|path| path.length()).sum::<f64>() / BETWEEN;
         let finishing = finishing(scene, stages, &contours);
         let measured = (0..contours.len()).into_par_iter().filter(|&c| !finishing[c].is_empty());
         let laps: Vec<Lap> = measured
             .map(|c| {
-                let radius = beside(scene, &contours[c], &finishing[c]);
-                let measure = Measure { scene, contour: &contours[c], moves: &finishing[c], radius, step };
-                measure.lap(scene.sketch.contours[c].id)
+                let radius = beside(scene, contours[c], &finishing[c]);
+                let measure = Measure { scene, contour: contours[c], moves: &finishing[c], radius, step };
+                measure.lap(scene.drawn[c].id)
             })
             .collect();
         let all = laps.iter().map(|lap| lap.stations.len()).sum::<usize>();
@@ -83,13 +81,13 @@ impl Chord {
 }
 
 /// For each contour the moves that cut it last: those of its deepest passes, or, beside the line, of the last of them.
-fn finishing(scene: &Scene, stages: &[Stage], contours: &[ArcSpline]) -> Vec<Vec<usize>> {
+fn finishing(scene: &Scene, stages: &[Stage], contours: &[&ArcSpline]) -> Vec<Vec<usize>> {
     let moves = &scene.program.toolpath.moves;
     let mut owners = Vec::new();
     for (c, contour) in contours.iter().enumerate() {
         owners.resize(owners.len() + contour.len(), c);
     }
-    let index = SpanIndex::new(contours.iter().flat_map(ArcSpline::spans));
+    let index = SpanIndex::new(contours.iter().flat_map(|path| path.spans()));
     let mut passes: Vec<Vec<usize>> = Vec::new();
     for (i, stage) in stages.iter().enumerate() {
         if let Some(pass) = stage.pass {

@@ -1,6 +1,6 @@
 //! Curvature as a comb: a tooth at each place, as long as the path bends there.
 
-use kurbo::{Affine, Point, Rect, Vec2};
+use kurbo::{Point, Rect, Vec2};
 
 use super::Scene;
 use super::chord::Chord;
@@ -27,9 +27,7 @@ type Bend = (Point, Vec2, f64);
 
 /// The combs of the program in `scene`.
 pub(super) fn combs(scene: &Scene, chord: &Chord) -> Combs {
-    let place = Affine::translate(scene.drawing_at);
-    let traced: Vec<Bend> =
-        scene.sketch.contours.iter().flat_map(|contour| traced(&contour.path.transformed(place))).collect();
+    let traced: Vec<Bend> = scene.drawn.iter().flat_map(|contour| traced(&contour.path)).collect();
     let moves = &scene.program.toolpath.moves;
     let step = chord.laps.iter().flat_map(|lap| &lap.moves).map(|&i| moves[i].span().length()).sum::<f64>()
         / (TEETH as f64 / 2.0);

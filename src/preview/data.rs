@@ -52,7 +52,7 @@ fn kind_number(kind: Kind) -> usize {
 
 fn laps(scene: &Scene, drawn: &Drawn) -> String {
     let lap = |lap: &Lap| {
-        let layer = scene.sketch.contours.iter().find(|contour| contour.id == lap.contour);
+        let layer = scene.drawn.iter().find(|contour| contour.id == lap.contour);
         format!(
             "{{\"contour\":{},\"layer\":{},\"moves\":{},\"of\":{},\"at\":{},\"error\":{}}}",
             lap.contour,

@@ -2,7 +2,7 @@
 
 use std::collections::HashSet;
 
-use kurbo::{Affine, Point, Rect, Vec2};
+use kurbo::{Point, Rect, Vec2};
 
 use super::chord::{Chord, Lap};
 use super::curvature::{Combs, combs};
@@ -160,8 +160,7 @@ fn comparison(scene: &Scene, chord: &Chord, combs: Combs, trace: String) -> Vec<
 
 /// The drawing; where it has too many vertices, every so many of them, which is then told.
 fn trace(scene: &Scene) -> (String, Option<String>) {
-    let place = Affine::translate(scene.drawing_at);
-    let contours: Vec<_> = scene.sketch.contours.iter().map(|c| c.path.transformed(place)).collect();
+    let contours: Vec<_> = scene.drawn.iter().map(|c| &c.path).collect();
     let vertices: usize = contours.iter().map(|path| path.vertices.len()).sum();
     let every = vertices.div_ceil(TRACE);
     if every <= 1 {

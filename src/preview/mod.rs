@@ -16,13 +16,13 @@ mod still;
 mod terminal;
 mod tour;
 
-use kurbo::{Point, Rect, Vec2};
+use kurbo::{Point, Rect};
 
 use crate::check::Verdict;
 use crate::feed::Limits;
 use crate::gcode::read::Program;
 use crate::report::Report;
-use crate::sketch::Sketch;
+use crate::sketch::Contour;
 
 pub use chord::{Chord, Lap, Station};
 pub(crate) use markup::escaped;
@@ -41,10 +41,8 @@ pub struct Scene<'a> {
     pub text: &'a str,
     /// What it says, read back.
     pub program: &'a Program,
-    /// The drawing as it was read.
-    pub sketch: &'a Sketch,
-    /// Where the drawing's zero lies in the program's coordinates.
-    pub drawing_at: Vec2,
+    /// The contours as they are drawn, in the program's coordinates, copy by copy.
+    pub drawn: &'a [Contour],
     /// What the program was checked for.
     pub verdict: &'a Verdict,
     /// The machine's limits.
@@ -58,7 +56,8 @@ pub struct Scene<'a> {
 impl Scene<'_> {
     /// The box around the finished parts as they are drawn.
     pub fn part(&self) -> Rect {
-        self.sketch.bbox().unwrap_or(Rect::ZERO) + self.drawing_at
+        let boxes = self.drawn.iter().filter_map(|contour| contour.path.bbox());
+        boxes.reduce(|a, b| a.union(b)).unwrap_or(Rect::ZERO)
     }
 
     /// The box around all that is drawn and all that the cutter sweeps, zero included.
@@ -70,6 +69,6 @@ impl Scene<'_> {
 
     /// Where the deviation is largest, in the program's coordinates.
     fn worst(&self) -> Option<Point> {
-        self.verdict.deviation.map(|deviation| deviation.at + self.drawing_at)
+        self.verdict.deviation.map(|deviation| deviation.at)
     }
 }

@@ -1,8 +1,6 @@
 //! The written text held against the drawing, the machine, and what was asked for.
 
-use kurbo::{Rect, Vec2};
-
-use super::placing::shift;
+use super::placing::{Placing, for_check};
 use super::prepare::Prepared;
 use super::siding::Sides;
 use crate::check::{self, Asked, Claim, Feeds, State, Verdict};
@@ -27,7 +25,7 @@ pub(super) struct Intended<'a> {
     pub(super) routed: &'a [Routed],
     pub(super) setup: &'a Setup,
     pub(super) sides: &'a Sides,
-    pub(super) shift: Vec2,
+    pub(super) placing: &'a Placing,
 }
 
 fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
@@ -47,7 +45,8 @@ fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
         on_line: prepared.sketch.contours.iter().filter(on_line).map(|contour| contour.id).collect(),
         allowance: job.allowance_mm,
         leave: job.cuttings().map(leave).fold(0.0, f64::max),
-        drawing_at: Some(plan.shift),
+        layout: for_check(&job.layout),
+        drawing_at: Some(plan.placing.drawing_at),
         stock_top: heights.top,
         clearance: Some(heights.clearance),
         lowest: Some(heights.top - job.cutting.depth_mm),
@@ -62,7 +61,8 @@ fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
 /// Checks a program that exists already, whoever wrote it.
 pub(super) fn check_existing(job: &CheckJob, program: &Program, sketch: &Sketch) -> Verdict {
     let top = job.stock.top_mm();
-    let part = sketch.bbox().unwrap_or(Rect::ZERO);
+    let contours = &sketch.contours[..];
+    let place = |origin| Placing::new(&job.layout, origin, (contours, contours)).drawing_at;
     let asked = Asked {
         side: match job.side {
             job::Side::On => check::Side::On,
@@ -71,7 +71,8 @@ pub(super) fn check_existing(job: &CheckJob, program: &Program, sketch: &Sketch)
         },
         cutter: job.cutter_mm.unwrap_or(0.0),
         allowance: job.allowance_mm,
-        drawing_at: job.stock.origin.map(|origin| shift(origin, part)),
+        layout: for_check(&job.layout),
+        drawing_at: job.stock.origin.map(place),
         stock_top: top,
         clearance: job.stock.clearance_mm.map(|clearance| top + clearance),
         lowest: job.depth_mm.map(|depth| top - depth),

@@ -1,8 +1,8 @@
 //! From paths to what the router needs: depth and feed for each, heights, zero.
 
-use kurbo::{Point, Rect, Vec2};
+use kurbo::{Affine, Point};
 
-use super::placing::moved;
+use super::placing::Placing;
 use super::siding::Sides;
 use crate::error::Error;
 use crate::fit::Fitted;
@@ -15,9 +15,9 @@ use crate::route::{
 use crate::sketch::Contour;
 
 /// What all contours of the program share. The program ends above its zero, or, where that is the drawing's, above the
-/// part's lower left corner.
-pub(super) fn setup(job: &Job, part: Rect, shift: Vec2) -> Setup {
-    let park = if job.stock.origin() == Origin::Drawing { part.origin() + shift } else { Point::ORIGIN };
+/// parts' lower left corner.
+pub(super) fn setup(job: &Job, placing: &Placing) -> Setup {
+    let park = if job.stock.origin() == Origin::Drawing { placing.parts.origin() } else { Point::ORIGIN };
     Setup {
         zero: match job.stock.zero {
             job::Zero::StockTop => Zero::StockTop,
@@ -32,31 +32,33 @@ pub(super) fn setup(job: &Job, part: Rect, shift: Vec2) -> Setup {
     }
 }
 
-/// The line of the cutter's centre for each contour's path, in the program's coordinates, with how it is cut.
+/// The line of the cutter's centre for each contour's path of every copy, in the program's coordinates, with how it is cut.
 pub(super) fn sided(
     job: &Job,
     contours: &[Contour],
     fitted: &[Fitted],
     (sides, tolerance): (&Sides, Tolerance),
-    shift: Vec2,
+    placing: &Placing,
 ) -> Result<Sided, Error> {
-    let outline = |((contour, fitted), &side): ((&Contour, &Fitted), &route::Side)| Outline {
+    type Ready<'a> = ((&'a Contour, &'a Fitted), &'a route::Side);
+    let outline = |((contour, fitted), side): &Ready, place: Affine| Outline {
         id: contour.id,
-        path: moved(&fitted.path, shift),
-        cut: Cut { side, ..cut(job, job.cutting_of(&contour.layer).unwrap_or(&job.cutting)) },
+        path: fitted.path.transformed(place),
+        cut: Cut { side: **side, ..cut(job, job.cutting_of(&contour.layer).unwrap_or(&job.cutting)) },
     };
-    let outlines: Vec<Outline> = contours.iter().zip(fitted).zip(&sides.each).map(outline).collect();
+    let ready: Vec<Ready> = contours.iter().zip(fitted).zip(&sides.each).collect();
+    let outlines: Vec<Outline> = placing.place(&ready, outline).collect();
     route::beside(&outlines, tolerance.mm())
 }
 
-/// Each contour of the drawing as it is, cut on the line and held in some way: the job to compare with.
-pub(super) fn as_drawn(job: &Job, contours: &[Contour], shift: Vec2) -> Vec<Routed> {
-    let cut = |contour: &Contour| {
+/// Each contour of every copy as it is drawn, cut on the line and held in some way: the job to compare with.
+pub(super) fn as_drawn(job: &Job, contours: &[Contour], placing: &Placing) -> Vec<Routed> {
+    let cut = |contour: &Contour, place: Affine| {
         let cutting = job.cutting_of(&contour.layer).unwrap_or(&job.cutting);
         let cut = Cut { tabs: None, held: Some(Held::Vacuum), leave_mm: 0.0, ..cut(job, cutting) };
-        Routed { id: contour.id, path: moved(&contour.path, shift), cut, work: Work::OnLine }
+        Routed { id: contour.id, path: contour.path.transformed(place), cut, work: Work::OnLine }
     };
-    contours.iter().map(cut).collect()
+    placing.place(contours, cut).collect()
 }
 
 fn cut(job: &Job, cutting: &Cutting) -> Cut {

@@ -4,7 +4,7 @@ use std::path::Path;
 
 use crate::cautions;
 use crate::gcode::Header;
-use crate::job::{Job, Side};
+use crate::job::{Job, Layout, Side};
 use crate::machine::{ArcStyle, Machine};
 use crate::num::Tolerance;
 use crate::route::Setup;
@@ -25,6 +25,7 @@ pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup,
         format!("made by ribband {} from {file}", env!("CARGO_PKG_VERSION")),
         format!("drawing sha256 {sha256}"),
     ];
+    notes.extend(laid_out(job));
     notes.extend(cautions::SHORT.map(str::to_owned));
     Header {
         title: file.into_owned(),
@@ -36,6 +37,15 @@ pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup,
         notes,
         marks: Vec::new(),
     }
+}
+
+/// How the drawing is laid out, where it is not once as drawn.
+fn laid_out(job: &Job) -> Option<String> {
+    let Layout { mirror, turn_deg, copies, gap_mm } = job.layout;
+    (!job.layout.is_as_drawn()).then(|| {
+        let mirrored = if mirror { "mirrored, " } else { "" };
+        format!("{mirrored}turned {turn_deg} degrees, {copies} copies {gap_mm} mm apart")
+    })
 }
 
 /// The side in words that stand in a comment.

@@ -9,7 +9,6 @@ use super::header::chord_error;
 use crate::clean::{self, Cleaned, Roughness};
 use crate::error::{Error, Kind};
 use crate::job::{DrawingSettings, DrawingUnit, Job};
-use crate::machine::Machine;
 use crate::num::Tolerance;
 use crate::read::{self, Scale, Unit};
 use crate::sketch::{Contour, Sketch};
@@ -36,7 +35,6 @@ pub(super) fn prepare(job: &Job, source: Source, clock: &mut Clock) -> Result<Pr
     let cleaned = clock.time("clean", || clean::clean(&sketch, join_mm));
     let bbox = cleaned.contours.iter().filter_map(|c| c.path.bbox()).reduce(|a, b| a.union(b));
     let part = bbox.ok_or_else(nothing_to_cut)?;
-    fits_machine(part, &job.machine)?;
     let mut warnings: Vec<String> = told.into_iter().collect();
     warnings.extend(cleaning(&cleaned));
     warnings.extend(sketch.notes.iter().cloned());
@@ -137,22 +135,4 @@ fn cleaning(cleaned: &Cleaned) -> Vec<String> {
 fn nothing_to_cut() -> Error {
     Error::new(Kind::Refused, "there is nothing to cut")
         .remedy("look at the layers asked for, and at the drawing's size")
-}
-
-/// Refuses a part that is larger than the machine's travel.
-fn fits_machine(part: Rect, machine: &Machine) -> Result<(), Error> {
-    let travel = &machine.travel;
-    if part.width() <= travel.x && part.height() <= travel.y {
-        return Ok(());
-    }
-    let what = format!(
-        "the part is {:.1} x {:.1} mm, and {} travels {:.0} x {:.0} mm",
-        part.width(),
-        part.height(),
-        machine.name,
-        travel.x,
-        travel.y
-    );
-    Err(Error::new(Kind::Refused, what)
-        .remedy("look at the drawing's unit and scale, or name a larger machine with --machine"))
 }

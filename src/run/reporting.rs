@@ -11,7 +11,7 @@ use crate::clean::Roughness;
 use crate::files::Target;
 use crate::fit::Fitted;
 use crate::job::{Cutting, Job, Side};
-use crate::report::{AsDrawn, Check, Claim, Contour, Drawing, Part, Program, Report, Setup, State};
+use crate::report::{AsDrawn, Check, Claim, Contour, Drawing, Layout, Part, Program, Report, Setup, State};
 use crate::sketch;
 use crate::toolpath::{Move, Toolpath};
 
@@ -49,7 +49,7 @@ fn contours(plan: &Plan, place_mm: f64) -> Vec<Contour> {
     let drawn = plan.cleaned.contours.iter().zip(&plan.roughness);
     let told = |((drawn, rough), fitted): ((&sketch::Contour, &Roughness), &Fitted)| Contour {
         roughness_mm: rough.sigma_mm,
-        uncut: plan.verdict.uncut.iter().filter(|uncut| uncut.contour == drawn.id).map(stays).collect(),
+        uncut: uncut(plan, drawn.id),
         ..contour(drawn, fitted, place_mm)
     };
     drawn.zip(&plan.fitted).map(told).collect()
@@ -72,6 +72,13 @@ fn contour(drawn: &sketch::Contour, fitted: &Fitted, place_mm: f64) -> Contour {
         deviation_mm: fitted.deviation.mm,
         uncut: Vec::new(),
     }
+}
+
+/// What the cutter does not reach of a contour: of copies, of the one that it reaches least of.
+fn uncut(plan: &Plan, contour: usize) -> Vec<String> {
+    let of_contour = || plan.verdict.uncut.iter().filter(|uncut| uncut.contour == contour);
+    let worst = of_contour().max_by(|a, b| a.gap.total_cmp(&b.gap)).map(|uncut| uncut.copy);
+    of_contour().filter(|uncut| Some(uncut.copy) == worst).map(stays).collect()
 }
 
 /// A stretch that the cutter does not reach, in one sentence.
@@ -103,6 +110,7 @@ fn setup(job: &Job, plan: &Plan) -> Setup {
         unit: job.machine.unit.symbol().into(),
         zero: job.stock.zero,
         origin: job.stock.origin(),
+        layout: layout(job, plan),
         extents_mm: extents(&plan.program.toolpath),
         cutter_mm: job.cutter_mm,
         side: match (beside, mixed) {
@@ -116,6 +124,18 @@ fn setup(job: &Job, plan: &Plan) -> Setup {
         feed_mm_min: fastest_along(&plan.routing.toolpath),
         plunge_mm_min: most(|cut| cut.plunge),
         spindle_rpm: spindle_rpm(&plan.routing.toolpath),
+    }
+}
+
+fn layout(job: &Job, plan: &Plan) -> Layout {
+    let (asked, parts) = (job.layout, plan.parts_box);
+    Layout {
+        mirrored: asked.mirror,
+        turn_deg: asked.turn_deg,
+        columns: asked.copies.columns,
+        rows: asked.copies.rows,
+        gap_mm: asked.gap_mm,
+        parts_mm: [parts.x0, parts.y0, parts.x1, parts.y1],
     }
 }
 

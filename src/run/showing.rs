@@ -1,6 +1,6 @@
 //! From a plan to its pictures.
 
-use super::{Plan, cutting};
+use super::Plan;
 use crate::feed::Limits;
 use crate::job::Job;
 use crate::preview::Scene;
@@ -12,11 +12,10 @@ pub(super) fn scene<'a>(job: &Job, plan: &'a Plan, report: &'a Report) -> Scene<
         report,
         text: &plan.text,
         program: &plan.program,
-        sketch: &plan.sketch,
-        drawing_at: plan.shift,
+        drawn: &plan.drawn,
         verdict: &plan.verdict,
         limits: Limits::of(&job.machine),
-        stock_top: cutting::setup(job, plan.part, plan.shift).heights().top,
+        stock_top: job.stock.top_mm(),
         thickness_mm: job.stock.thickness_mm,
     }
 }

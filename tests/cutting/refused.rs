@@ -2,7 +2,7 @@
 
 use crate::shop::Shop;
 
-const REFUSED: [(&str, i32); 21] = [
+const REFUSED: [(&str, i32); 26] = [
     ("plate.svg --side auto --thickness 6mm --through", 1),
     ("bracket.csv --thickness 6mm --through", 1),
     ("bracket.csv --side outside --thickness 6mm --through --tabs 2 --tab-height 6mm", 1),
@@ -24,6 +24,11 @@ const REFUSED: [(&str, i32); 21] = [
     ("bracket.csv --depth 3mm --allowance 0.5mm", 2),
     ("bracket.csv --side outside --depth 3mm --allowance=-3mm", 2),
     ("bracket.csv --thickness 6mm --depth 3mm --through", 2),
+    ("bracket.csv --depth 3mm --copies 30x1 --gap 12mm", 1),
+    ("bracket.csv --side outside --depth 3mm --copies 2x1 --gap 5mm", 1),
+    ("bracket.csv --depth 3mm --copies 2x1", 2),
+    ("bracket.csv --depth 3mm --copies 0x2 --gap 12mm", 2),
+    ("bracket.csv --depth 3mm --turn 400", 2),
 ];
 
 #[test]

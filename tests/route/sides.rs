@@ -5,7 +5,7 @@ use kurbo::Point;
 use ribband::geom::{ArcSpline, SpanIndex, Vertex};
 use ribband::offset::Corners;
 use ribband::route::{
-    Cut, Direction, Entry, Outline, Placement, Routed, Setup, Side, Sided, Work, beside, by_cutter, route,
+    Cut, Direction, Entry, Outline, Routed, Setup, Side, Sided, Work, beside, by_cutter, route,
 };
 use ribband::toolpath::Toolpath;
 
@@ -182,21 +182,6 @@ fn what_has_no_side_or_no_room_is_refused() {
     let o = square(1, (0.0, 0.0), 50.0, Side::Inside);
     let loose = Outline { cut: Cut { allowance_mm: -3.0, ..o.cut.clone() }, ..o };
     assert_snapshot!("allowance-beyond-the-cutter", refusal(&[loose]));
-}
-
-#[test]
-fn copies_stand_in_a_grid_mirrored_and_turned() {
-    let shape = rectangle(1, (10.0, 5.0), (30.0, 20.0)).path;
-    let placement = Placement { turn_deg: 90.0, mirror: true, columns: 3, rows: 2, gap_mm: 8.0 };
-    let copies = placement.place(&[outline(1, shape, Side::Outside)]).expect("copies stand");
-    assert_eq!(copies.len(), 6);
-    let boxes: Vec<_> = copies.iter().map(|copy| copy.path.bbox().expect("a copy has a box")).collect();
-    // Mirrored to x -40 to -10, turned to y -40 to -10 and x -25 to -5.
-    assert_eq!(boxes[0], kurbo::Rect::new(-25.0, -40.0, -5.0, -10.0));
-    assert_eq!(boxes[1].x0, -25.0 + 28.0);
-    assert_eq!(boxes[3].y0, -40.0 + 38.0);
-    assert!(copies.iter().all(|copy| copy.path.area() < 0.0), "mirrored once: the other way round");
-    assert!(Placement { rows: 0, ..placement }.place(&[]).is_err());
 }
 
 #[test]
