@@ -7,7 +7,9 @@ mod cutting;
 mod file;
 mod ladder;
 mod laying;
+mod places;
 mod settings;
+mod stock;
 mod wishes;
 
 use std::collections::BTreeMap;
@@ -15,7 +17,7 @@ use std::path::Path;
 
 use crate::error::{Error, Kind};
 use crate::files;
-use crate::machine::{Cutter, Machine};
+use crate::machine::{Cutter, Machine, RetractBy};
 use crate::num::{Length, LengthUnit, Tolerance};
 
 pub use checking::{CheckArgs, CheckJob};
@@ -24,7 +26,9 @@ pub use cutting::{Cutting, TabNumber, Tabs};
 pub use file::{JobFile, LayerSettings};
 pub use ladder::{Ladder, LadderArgs};
 pub use laying::{Grid, Layout, LayoutArgs};
-pub use settings::{DrawingArgs, DrawingUnit, Origin, Outputs, SettingUpArgs, Settings, Zero};
+pub use places::{ClampWanted, Pair, SizeWanted, ThicknessWanted};
+pub use settings::{DrawingArgs, DrawingUnit, Origin, Outputs, Settings, Zero};
+pub use stock::{Clamp, SettingUpArgs, Sheet, Stock, Thickness};
 pub use wishes::{Corners, CutArgs, Direction, Entry, Held, Side, TabsWanted};
 
 /// A job whose settings are whole and inside their bounds. Lengths in mm, feeds in mm/min.
@@ -48,7 +52,7 @@ pub struct Job {
     pub layers: BTreeMap<String, Option<Cutting>>,
     /// How the drawing is laid on the stock.
     pub layout: Layout,
-    /// Zero, stock and the height of travel.
+    /// Zero, stock, clamps and the height of travel.
     pub stock: Stock,
 }
 
@@ -67,48 +71,9 @@ pub struct DrawingSettings {
     pub join_mm: Option<f64>,
 }
 
-/// Zero, stock and the height of travel.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Stock {
-    /// Where Z is zero.
-    pub zero: Zero,
-    /// The stock's thickness, where it is given.
-    pub thickness_mm: Option<f64>,
-    /// The deepest cut into the bed that is allowed.
-    pub bed_cut_mm: f64,
-    /// How far above the stock the cutter travels, where that was said.
-    pub clearance_mm: Option<f64>,
-    /// Where X and Y are zero; `None` where that was not said.
-    pub origin: Option<Origin>,
-}
-
-/// How far above the stock the cutter travels where nothing else is asked for, in mm.
-const DEFAULT_CLEARANCE_MM: f64 = 5.0;
-/// How far into the bed a cut may go where nothing else is asked for, in mm.
-const DEFAULT_BED_CUT_MM: f64 = 0.3;
 /// How many units of the last decimal a tolerance must span at least: fitting loses 1.5 of them to the rounding of the
 /// program's numbers.
 const LEAST_TOLERANCE_STEPS: f64 = 3.0;
-
-impl Stock {
-    /// Where X and Y are zero.
-    pub fn origin(&self) -> Origin {
-        self.origin.unwrap_or_default()
-    }
-
-    /// How far above the stock the cutter travels.
-    pub fn clearance_mm(&self) -> f64 {
-        self.clearance_mm.unwrap_or(DEFAULT_CLEARANCE_MM)
-    }
-
-    /// The height of the stock's top, in the program's coordinates.
-    pub fn top_mm(&self) -> f64 {
-        match (self.zero, self.thickness_mm) {
-            (Zero::Bed, Some(thickness)) => thickness,
-            _ => 0.0,
-        }
-    }
-}
 
 impl DrawingSettings {
     /// How a drawing is read for `machine`, judged.
@@ -135,8 +100,8 @@ impl Job {
             spans_decimals(tolerance, &machine)?;
         }
         let (cutter_mm, cutter) = cutter(all.cutter.as_deref(), &machine, mm)?;
-        let bed_cut = mm.length(&bounds::BED_CUT, all.bed_cut)?.unwrap_or(DEFAULT_BED_CUT_MM);
-        let stock = Stock { bed_cut_mm: bed_cut, ..stock(&all.setting_up, mm)? };
+        let stock = Stock::new(&all.setting_up, all.bed_cut, mm)?;
+        starts_clear(&stock, &machine)?;
         let maker =
             cutting::Maker { machine: &machine, mm, cutter_mm, cutter: cutter.as_ref(), stock: &stock };
         let cutting = maker.cutting(&all)?;
@@ -184,6 +149,23 @@ impl Job {
     pub fn cutting_of(&self, layer: &str) -> Option<&Cutting> {
         self.layers.get(layer).map_or(Some(&self.cutting), Option::as_ref)
     }
+}
+
+/// Refuses clamps that rise to where the cutter travels on a machine whose program starts at that height: nobody knows
+/// from where it then comes across.
+fn starts_clear(stock: &Stock, machine: &Machine) -> Result<(), Error> {
+    let clearance_mm = stock.clearance_mm();
+    let tall = |(_, clamp): &(usize, &Clamp)| clamp.height_mm >= clearance_mm;
+    let Some((number, clamp)) = (1..).zip(&stock.clamps).find(tall) else { return Ok(()) };
+    if machine.retract.by == RetractBy::MachineCoordinate {
+        return Ok(());
+    }
+    let what = format!(
+        "clamp {number} rises {} mm above the stock, and the cutter comes to its first cut {clearance_mm} mm above it, \
+         from a place that the program does not know",
+        clamp.height_mm
+    );
+    Err(Error::new(Kind::Refused, what).remedy("raise --clearance above the clamp"))
 }
 
 /// Refuses copies between which the cutter cannot pass.
@@ -248,21 +230,6 @@ fn drawing(typed: &DrawingArgs, mm: Units) -> Result<DrawingSettings, Error> {
         fit_width_mm: mm.length(&bounds::FIT_WIDTH, typed.fit_width)?,
         layers: typed.layers.clone(),
         join_mm: mm.length(&bounds::JOIN, typed.join)?,
-    })
-}
-
-fn stock(typed: &SettingUpArgs, mm: Units) -> Result<Stock, Error> {
-    let thickness_mm = mm.length(&bounds::THICKNESS, typed.thickness)?;
-    if typed.zero == Some(Zero::Bed) && thickness_mm.is_none() {
-        let what = "zero is on the bed, and the thickness of the stock is not given";
-        return Err(Error::new(Kind::Settings, what).remedy("give --thickness, or use --zero stock-top"));
-    }
-    Ok(Stock {
-        zero: typed.zero.unwrap_or_default(),
-        thickness_mm,
-        bed_cut_mm: DEFAULT_BED_CUT_MM,
-        clearance_mm: mm.length(&bounds::CLEARANCE, typed.clearance)?,
-        origin: typed.origin,
     })
 }
 

@@ -96,6 +96,14 @@ pub struct Setup {
     pub zero: Zero,
     /// Where X and Y are zero.
     pub origin: Origin,
+    /// How thick the stock is, at least and at most; none where that is not given.
+    pub thickness_mm: Option<[f64; 2]>,
+    /// How deep the program cuts into the bed under the thinnest stock; none where its thickness is not given.
+    pub bed_cut_mm: Option<f64>,
+    /// The stock from above; none where it is not given.
+    pub stock: Option<Stock>,
+    /// The clamps that are kept clear of.
+    pub clamps: Vec<Clamp>,
     /// How the drawing is laid out.
     pub layout: Layout,
     /// The extents of the cutter's path from that zero: least x, y, z, largest x, y, z.
@@ -116,6 +124,24 @@ pub struct Setup {
     pub plunge_mm_min: f64,
     /// The spindle's speed.
     pub spindle_rpm: f64,
+}
+
+/// The stock from above.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Stock {
+    /// Its box from the program's zero: least x and y, largest x and y.
+    pub box_mm: [f64; 4],
+    /// Its lower left corner on the machine, from the lower left end of the travel; none where that is not given.
+    pub on_machine_mm: Option<[f64; 2]>,
+}
+
+/// A clamp.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Clamp {
+    /// Its box from the program's zero: least x and y, largest x and y.
+    pub box_mm: [f64; 4],
+    /// How far it rises above the top of the stock.
+    pub height_mm: f64,
 }
 
 /// How the drawing is laid out.
@@ -281,6 +307,52 @@ pub struct Size {
     pub bytes: usize,
     /// Its planned time; none where it holds words that are not known.
     pub time_s: Option<f64>,
+}
+
+impl Setup {
+    /// The stock in words, each length said by `show` without its unit; none where nothing is known of it.
+    pub fn stock_words(&self, show: impl Fn(f64) -> String) -> Option<String> {
+        let unit = &self.unit;
+        let place = |[x, y]: [f64; 2]| format!("X {} Y {}", show(x), show(y));
+        let size = self.stock.as_ref().map(|Stock { box_mm: [x0, y0, x1, y1], .. }| {
+            format!("{} x {} {unit}", show(x1 - x0), show(y1 - y0))
+        });
+        let thickness = self.thickness_mm.map(|[thinnest, thickest]| {
+            let range = if thinnest < thickest { format!("{} to ", show(thinnest)) } else { String::new() };
+            format!("{range}{} {unit} thick", show(thickest))
+        });
+        let corner = self.stock.as_ref().map(|stock| {
+            let machine =
+                stock.on_machine_mm.map_or(String::new(), |at| format!(", on the machine at {}", place(at)));
+            format!(
+                "its lower left corner at {} from zero{machine}",
+                place([stock.box_mm[0], stock.box_mm[1]])
+            )
+        });
+        let known: Vec<String> = [size, thickness, corner].into_iter().flatten().collect();
+        (!known.is_empty()).then(|| known.join(", "))
+    }
+
+    /// The cut into the bed in words, likewise; none where the stock's thickness is not known.
+    pub fn bed_words(&self, show: impl Fn(f64) -> String) -> Option<String> {
+        let [thinnest, thickest] = self.thickness_mm?;
+        let under = if thinnest < thickest { " under the thinnest stock" } else { "" };
+        let depth = self.bed_cut_mm?;
+        Some(if depth > 0.0 {
+            format!("the bed is cut {} {} deep{under}", show(depth), self.unit)
+        } else {
+            "the bed is not cut".into()
+        })
+    }
+
+    /// Each clamp in words, likewise.
+    pub fn clamp_words(&self, show: impl Fn(f64) -> String) -> Vec<String> {
+        let words = |Clamp { box_mm: [x0, y0, x1, y1], height_mm }: &Clamp| {
+            let [x0, y0, x1, y1, height] = [*x0, *y0, *x1, *y1, *height_mm].map(&show);
+            format!("X {x0} to {x1}, Y {y0} to {y1}, {height} {} above the stock", self.unit)
+        };
+        self.clamps.iter().map(words).collect()
+    }
 }
 
 impl Layout {

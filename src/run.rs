@@ -69,6 +69,8 @@ pub struct Plan {
     pub drawn: Vec<Contour>,
     /// The box around the finished parts of all copies, in the program's coordinates.
     pub parts_box: Rect,
+    /// The stock from above, in the program's coordinates, where it is given.
+    pub stock: Option<Rect>,
     /// Each path in the program's coordinates, with how it is cut.
     pub routed: Vec<Routed>,
     /// The moves as meant.
@@ -138,9 +140,10 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let sided = clock
         .time("offset", || cutting::sided(job, contours, &fitted, (&sides, prepared.tolerance), &placing))?;
     let mut routing = clock.time("route", || route::route(&sided.routed, &setup))?;
+    placing.stays_on_machine(&routing.toolpath, &job.machine)?;
 
     let sha256 = digest(source.bytes);
-    let header = header::header(job, source.name, prepared.tolerance, &setup, &sha256);
+    let header = header::header(job, source.name, (prepared.tolerance, placing.stock), &setup, &sha256);
     let feeds = clock.time("feed", || feeding::suit(&mut routing.toolpath, &header, job));
     let text = clock.time("write", || gcode::write(&routing.toolpath, &header, &job.machine))?;
     let program = clock.time("read back", || read_back(&text, &job.machine))?;
@@ -161,11 +164,13 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     warnings.extend(sides.notes);
     warnings.extend(sided.notes);
     warnings.extend(routing.notes.iter().cloned());
+    warnings.extend(placing.over_the_edge(&routing.toolpath, job.cutter_mm));
     warnings.extend(feeds);
     once_each(&mut warnings);
     Ok(Plan {
         drawn: placing.drawn(&prepared.sketch.contours),
         parts_box: placing.parts,
+        stock: placing.stock,
         sketch: prepared.sketch,
         cleaned: prepared.cleaned,
         part: prepared.part,
@@ -194,7 +199,9 @@ fn as_drawn(
     (setup, header, placing): (&Setup, &Header, &Placing),
     still: usize,
 ) -> Result<AsDrawn, Error> {
-    let toolpath = route::route(&cutting::as_drawn(job, contours, placing), setup)?.toolpath;
+    // It is never run: no clamp is in its way.
+    let setup = Setup { keep_outs: Vec::new(), ..setup.clone() };
+    let toolpath = route::route(&cutting::as_drawn(job, contours, placing), &setup)?.toolpath;
     let text = gcode::write(&toolpath, header, &job.machine)?;
     let motion_blocks = text.lines().count() - still;
     Ok(AsDrawn { motion_blocks, times: feed::time(&toolpath, &Limits::of(&job.machine)) })
@@ -219,7 +226,7 @@ pub fn check(job: &CheckJob, program: Source, drawing: Source) -> Result<report:
     // Comments may be in any encoding; what a controller executes is ASCII.
     let text = String::from_utf8_lossy(program.bytes);
     let read = read_back(&text, &job.machine).map_err(|error| error.in_file(program.name))?;
-    Ok(reporting::check_of(&checking::check_existing(job, &read, &sketch)))
+    Ok(reporting::check_of(&checking::check_existing(job, &read, &sketch)?))
 }
 
 /// The report of a plan; `drawing` and `program` are the files' names as typed.

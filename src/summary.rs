@@ -13,6 +13,8 @@ pub fn summary(report: &Report) -> String {
         ("Part", part(report, show)),
         ("Zero", zero(&report.setup)),
         ("Path", extents(&report.setup, show)),
+        ("Stock", stock(&report.setup, show)),
+        ("Clamps", clamps(&report.setup, show)),
         ("Cut", cut(&report.setup, show)),
         ("Cutter", cutter(&report.setup, show)),
         ("Blocks", blocks(report)),
@@ -27,7 +29,8 @@ pub fn summary(report: &Report) -> String {
     let uncut = uncut.map(|(id, told)| ("Uncut", format!("contour {id}: {told}")));
     let laid = laid_out(&report.setup.layout, show).map(|told| ("Laid out", told));
     let (first, rest) = rows.split_at(2);
-    for (name, told) in first.iter().cloned().chain(laid).chain(rest.iter().cloned()).chain(uncut) {
+    let rest = rest.iter().filter(|(_, told)| !told.is_empty());
+    for (name, told) in first.iter().cloned().chain(laid).chain(rest.cloned()).chain(uncut) {
         // A string takes everything that is written to it.
         let _ = writeln!(text, "{name:10} {told}");
     }
@@ -105,6 +108,24 @@ fn extents(setup: &Setup, show: Show) -> String {
         "X {x0} to {x1}, Y {y0} to {y1}, Z {z1} down to {z0} {} from that zero; lowest Z {z0}",
         show.unit()
     )
+}
+
+/// The stock and the cut into the bed under it, as far as they are known.
+fn stock(setup: &Setup, show: Show) -> String {
+    // A cut into the bed is a matter of tenths.
+    let fine = |mm: f64| match show.0 {
+        LengthUnit::Mm => format!("{mm:.2}"),
+        LengthUnit::Inch => format!("{:.4}", mm / 25.4),
+    };
+    [setup.stock_words(|mm| show.size(mm)), setup.bed_words(fine)]
+        .into_iter()
+        .flatten()
+        .collect::<Vec<_>>()
+        .join("; ")
+}
+
+fn clamps(setup: &Setup, show: Show) -> String {
+    setup.clamp_words(|mm| show.size(mm)).join("; ")
 }
 
 fn cut(setup: &Setup, show: Show) -> String {

@@ -46,6 +46,9 @@ pub struct Asked {
     /// Where the drawing's zero lies in the program's coordinates, in the lower left copy; `None` to find it among the
     /// usual places: the drawing's own zero, the lower left of all copies at the program's zero, or their centre there.
     pub drawing_at: Option<Vec2>,
+    /// Where the program's zero lies on the machine, from the lower left end of its travel; `None` where that was not
+    /// said: travel is then judged by size.
+    pub zero_at: Option<Vec2>,
     /// The height of the stock's top.
     pub stock_top: f64,
     /// The height below which nothing goes by rapid; `None` for the stock's top.
@@ -133,6 +136,7 @@ impl Asked {
             leave: 0.0,
             layout: Layout::default(),
             drawing_at: None,
+            zero_at: None,
             stock_top: 0.0,
             clearance: None,
             lowest: None,
@@ -177,6 +181,7 @@ pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Aske
     claims.extend(check_moves(program, machine, asked));
     let holds = claims.iter().all(|claim| claim.state != State::Fails);
     let mut not_checked: Vec<String> = NEVER_CHECKED.iter().map(|&said| said.to_string()).collect();
+    not_checked.extend(motion::under_the_approach(program, asked));
     not_checked.extend(program.assumed.iter().map(|said| format!("taken for granted: {said}")));
     if sketch.sampling_mm > 0.0 {
         not_checked.push(format!(

@@ -2,9 +2,9 @@
 
 use kurbo::{Rect, Vec2};
 
-use super::Asked;
 use super::claim::{Claim, Spot, Worst};
-use crate::gcode::read::Program;
+use super::{Asked, KeepOut};
+use crate::gcode::read::{Program, What};
 use crate::machine::{Axes, Machine};
 use crate::toolpath::Move;
 
@@ -28,6 +28,22 @@ pub(super) fn judge(program: &Program, machine: &Machine, asked: &Asked) -> Vec<
     walk.conclude(machine, asked)
 }
 
+/// What is as high as the way across that starts where the program does not state: it may lead over anything.
+pub(super) fn under_the_approach(program: &Program, asked: &Asked) -> Option<String> {
+    let low = |keep_out: &&KeepOut| {
+        program.events.iter().any(|event| match event.what {
+            What::Approach { moved: [x, y, _], to: [.., Some(z)], .. } => (x || y) && z <= keep_out.top,
+            _ => false,
+        })
+    };
+    asked.keep_out.iter().find(low).map(|keep_out| {
+        format!(
+            "that the way to the first cut, from a place that the program does not state, keeps clear of {}",
+            keep_out.name
+        )
+    })
+}
+
 struct Walk<'a> {
     machine: &'a Machine,
     asked: &'a Asked,
@@ -43,7 +59,8 @@ struct Walk<'a> {
     rpm_low: Worst,
     rpm_high: Worst,
     rapid: Worst,
-    inside: Worst,
+    /// The first move that comes into what must be kept clear of, with its name.
+    inside: Option<(Spot, String)>,
 }
 
 impl<'a> Walk<'a> {
@@ -63,7 +80,7 @@ impl<'a> Walk<'a> {
             rpm_low: none,
             rpm_high: none,
             rapid: none,
-            inside: none,
+            inside: None,
         }
     }
 
@@ -79,8 +96,8 @@ impl<'a> Walk<'a> {
             let room = keep_out.outline.inflate(self.asked.cutter / 2.0, self.asked.cutter / 2.0);
             // A rapid may take any way within the box of its ends; the box of a cut is a first sieve.
             let hit = overlaps(m.span().bbox(), room) && (m.is_rapid() || enters(m, room));
-            if hit {
-                self.inside.note(1.0, || Spot::end_of(m));
+            if hit && self.inside.is_none() {
+                self.inside = Some((Spot::end_of(m), keep_out.name.clone()));
             }
         }
     }
@@ -140,11 +157,13 @@ impl<'a> Walk<'a> {
                 Claim { value: Some(-self.lowest.value), ..Claim::open(LOWEST, "no depth was asked for") }
             }
         });
-        let hits = usize::from(self.inside.at.is_some());
         claims.push(if asked.keep_out.is_empty() {
             Claim::open(CLEAR, "no clamps were declared")
         } else {
-            Claim::none_of(CLEAR, hits, self.inside.at).because("the cutter runs into what was declared")
+            let (at, name) = self.inside.unzip();
+            let hits = usize::from(at.is_some());
+            Claim::none_of(CLEAR, hits, at)
+                .because(format!("the cutter runs into {}", name.unwrap_or_default()))
         });
         claims
     }
@@ -152,6 +171,9 @@ impl<'a> Walk<'a> {
     /// The axis that is nearest to its travel, or furthest beyond it.
     fn travel_claim(&self, machine: &Machine) -> Claim {
         let extent = self.extent.unwrap_or(Rect::ZERO);
+        if let Some(off) = self.asked.zero_at.and_then(|zero| off_the_machine(extent + zero, machine)) {
+            return off;
+        }
         let height = (self.heights.1 - self.heights.0).max(0.0);
         let travel = &machine.travel;
         let axes = [(extent.width(), travel.x), (extent.height(), travel.y), (height, travel.z)];
@@ -185,6 +207,17 @@ impl<'a> Walk<'a> {
         let worse = if high.state == super::State::Fails { high } else { low };
         worse.because("a cut runs with the spindle stopped, or at a speed it does not have")
     }
+}
+
+/// The claim about travel for moves that leave it, by their place on the machine.
+fn off_the_machine(on_machine: Rect, machine: &Machine) -> Option<Claim> {
+    let (travel, slack) = (&machine.travel, machine.last_place());
+    let least = on_machine.x0.min(on_machine.y0);
+    let low = Claim::at_least(TRAVEL, "mm", Worst { value: -least, at: None }, 0.0, slack);
+    let high = |value, limit| Claim::at_most(TRAVEL, "mm", Worst { value, at: None }, limit, slack);
+    let claims = [low, high(on_machine.x1, travel.x), high(on_machine.y1, travel.y)];
+    let off = claims.into_iter().find(|claim| claim.state == super::State::Fails);
+    off.map(|claim| claim.because("the moves leave the machine where the stock lies"))
 }
 
 /// Overlap that has an area, or touches along a side.

@@ -58,6 +58,16 @@ pub(super) const CLEARANCE: Bound = Bound {
     reason: "closer above the stock chips are hit",
 };
 
+pub(super) const STOCK: Bound =
+    Bound { name: "stock", unit: "mm", least: 1.0, most: 1e5, reason: "no router takes such stock" };
+pub(super) const STOCK_AT: Bound =
+    Bound { name: "stock-at", unit: "mm", least: -1e5, most: 1e5, reason: "no machine reaches so far" };
+pub(super) const PARTS_AT: Bound =
+    Bound { name: "parts-at", unit: "mm", least: -1e5, most: 1e5, reason: "no stock is so large" };
+pub(super) const CLAMP: Bound =
+    Bound { name: "clamp", unit: "mm", least: -1e5, most: 1e5, reason: "no machine reaches so far" };
+pub(super) const CLAMP_HEIGHT: Bound =
+    Bound { name: "clamp", unit: "mm high", least: 0.0, most: 500.0, reason: "no clamp rises so far" };
 pub(super) const GAP: Bound =
     Bound { name: "gap", unit: "mm", least: 0.0, most: 1e4, reason: "no machine holds copies so far apart" };
 pub(super) const TURN: Bound = Bound {

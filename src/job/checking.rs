@@ -4,9 +4,9 @@ use clap::Args;
 
 use super::{
     DrawingArgs, DrawingSettings, Layout, LayoutArgs, SettingUpArgs, Side, Stock, Units, bounds, cutter,
-    machine, stock,
+    machine,
 };
-use crate::error::Error;
+use crate::error::{Error, Kind};
 use crate::machine::Machine;
 use crate::num::{Length, Tolerance};
 
@@ -25,7 +25,7 @@ pub struct CheckArgs {
     /// The side of the contour that must be cut on [default: on]
     #[arg(long, value_enum, help_heading = "Cut")]
     pub side: Option<Side>,
-    /// The cutter, where a side is cut: its diameter, or a name in the machine profile [default: the profile's first]
+    /// The cutter, where a side is cut or clamps are declared: its diameter, or a name in the machine profile [default: the profile's first]
     #[arg(long, value_name = "DIAMETER or NAME", help_heading = "Cut")]
     pub cutter: Option<String>,
     /// Material left on the drawn edge [default: none]
@@ -40,7 +40,7 @@ pub struct CheckArgs {
     /// How the drawing is laid on the stock.
     #[command(flatten)]
     pub layout: LayoutArgs,
-    /// Zero and stock.
+    /// Zero, stock and clamps.
     #[command(flatten)]
     pub setting_up: SettingUpArgs,
 }
@@ -56,7 +56,7 @@ pub struct CheckJob {
     pub tolerance: Tolerance,
     /// The side of the contours that must be cut on.
     pub side: Side,
-    /// The cutter's diameter, where a side is cut.
+    /// The cutter's diameter, where a side is cut or clamps are declared.
     pub cutter_mm: Option<f64>,
     /// Material left on the drawn edge; negative for a looser fit.
     pub allowance_mm: f64,
@@ -66,7 +66,7 @@ pub struct CheckJob {
     pub pass_mm: Option<f64>,
     /// How the drawing is laid on the stock.
     pub layout: Layout,
-    /// Zero, stock and the height of travel.
+    /// Zero, stock, clamps and the height of travel.
     pub stock: Stock,
 }
 
@@ -80,7 +80,12 @@ impl CheckJob {
         let mm = Units { machine: machine.unit };
         let tolerance = mm.length(&bounds::TOLERANCE, typed.tolerance)?.and_then(Tolerance::new);
         let side = typed.side.unwrap_or_default();
-        let needed = typed.cutter.is_some() || side != Side::On;
+        let clamps = typed.setting_up.clamp.is_some();
+        if typed.setting_up.stock_at.is_some() && typed.setting_up.origin.is_none() {
+            let what = "--stock-at is given, and not where on the stock X and Y are zero";
+            return Err(Error::new(Kind::Settings, what).remedy("give --origin, such as --origin lower-left"));
+        }
+        let needed = typed.cutter.is_some() || side != Side::On || clamps;
         let cutter = needed.then(|| cutter(typed.cutter.as_deref(), &machine, mm)).transpose()?;
         Ok(Self {
             side,
@@ -91,7 +96,7 @@ impl CheckJob {
             depth_mm: mm.length(&bounds::DEPTH, typed.depth)?,
             pass_mm: mm.length(&bounds::PASS, typed.pass)?,
             layout: Layout::new(&typed.layout, mm)?,
-            stock: stock(&typed.setting_up, mm)?,
+            stock: Stock::new(&typed.setting_up, None, mm)?,
             machine,
         })
     }

@@ -2,7 +2,8 @@
 
 use super::bounds::{self, at_most};
 use super::{
-    Corners, CutArgs, Direction, Entry, Held, LayerSettings, Settings, Side, Stock, TabsWanted, Units,
+    Corners, CutArgs, Direction, Entry, Held, LayerSettings, Settings, Side, Stock, TabsWanted, Thickness,
+    Units,
 };
 use crate::error::{Error, Kind};
 use crate::machine::{Cutter, Machine};
@@ -109,11 +110,11 @@ impl Maker<'_> {
 
     fn depth(&self, cut: &CutArgs) -> Result<f64, Error> {
         let depth = match (cut.through == Some(true), self.mm.length(&bounds::SKIN, cut.skin)?) {
-            (true, _) => self.thickness("--through")? + PAST_THROUGH_MM.min(self.stock.bed_cut_mm),
+            (true, _) => self.through()?,
             (false, Some(skin)) => {
                 let thickness = self.thickness("--skin")?;
-                at_most("skin", skin, thickness, "mm", "the stock's thickness")?;
-                thickness - skin
+                at_most("skin", skin, thickness.thinnest, "mm", "the stock's thickness")?;
+                thickness.thickest - self.stock.play_mm() - skin
             }
             (false, None) => self.mm.length(&bounds::DEPTH, cut.depth)?.ok_or_else(|| {
                 Error::new(Kind::Settings, "how deep to cut is not given")
@@ -129,9 +130,27 @@ impl Maker<'_> {
         Ok(depth)
     }
 
+    /// The depth that goes through the thickest stock and a little further, but not too far into a bed that lies higher
+    /// under the thinnest.
+    fn through(&self) -> Result<f64, Error> {
+        let Thickness { thinnest, thickest } = self.thickness("--through")?;
+        let (play, allowed) = (self.stock.play_mm(), self.stock.bed_cut_mm);
+        // Differences of decimal lengths, without the last bit's noise.
+        let play = (play * 1e9).round() / 1e9;
+        if play <= allowed {
+            return Ok(thickest + PAST_THROUGH_MM.min(allowed - play));
+        }
+        let what = format!(
+            "a cut through stock of {thickest} mm goes {play} mm into the bed under stock of {thinnest} mm, and {allowed} \
+             mm is allowed"
+        );
+        Err(Error::new(Kind::Refused, what)
+            .remedy("set zero on the bed with --zero bed, or allow a deeper --bed-cut"))
+    }
+
     /// The stock's thickness, which `option` needs.
-    fn thickness(&self, option: &str) -> Result<f64, Error> {
-        self.stock.thickness_mm.ok_or_else(|| {
+    fn thickness(&self, option: &str) -> Result<Thickness, Error> {
+        self.stock.thickness.ok_or_else(|| {
             let what = format!("{option} needs to know how thick the stock is");
             Error::new(Kind::Settings, what).remedy("give --thickness, such as --thickness 18mm")
         })
@@ -166,7 +185,7 @@ impl Maker<'_> {
         Ok(Some(Tabs {
             number,
             length_mm: length.unwrap_or(TAB_MM.0),
-            height_mm: height.unwrap_or(TAB_MM.1.min(thickness / 2.0)),
+            height_mm: height.unwrap_or(TAB_MM.1.min(thickness.thinnest / 2.0)),
         }))
     }
 

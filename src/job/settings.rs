@@ -7,6 +7,7 @@ use schemars::JsonSchema;
 use serde::{Deserialize, Serialize};
 
 use super::laying::LayoutArgs;
+use super::stock::SettingUpArgs;
 use super::wishes::CutArgs;
 use crate::num::Length;
 
@@ -48,7 +49,7 @@ pub struct Settings {
     /// Deepest cut into the bed under the stock [default: 0.3mm]
     #[arg(long, value_name = "LEN", help_heading = "Setting up")]
     pub bed_cut: Option<Length>,
-    /// Zero and stock.
+    /// Zero, stock and clamps.
     #[command(flatten)]
     #[serde(flatten)]
     pub setting_up: SettingUpArgs,
@@ -73,24 +74,6 @@ pub struct DrawingArgs {
     /// Join ends that are at most this far apart [default: the tolerance]
     #[arg(long, value_name = "LEN", help_heading = "Drawing")]
     pub join: Option<Length>,
-}
-
-/// Zero, stock and the height of travel.
-#[derive(Args, Clone, Debug, Default, Deserialize, Serialize, PartialEq)]
-#[serde(default, rename_all = "kebab-case")]
-pub struct SettingUpArgs {
-    /// Where Z is zero [default: stock-top]
-    #[arg(long, value_enum, help_heading = "Setting up")]
-    pub zero: Option<Zero>,
-    /// Thickness of the stock
-    #[arg(long, value_name = "LEN", help_heading = "Setting up")]
-    pub thickness: Option<Length>,
-    /// Height above the stock at which the cutter travels [default: the profile's]
-    #[arg(long, value_name = "LEN", help_heading = "Setting up")]
-    pub clearance: Option<Length>,
-    /// Where X and Y are zero [default: lower-left]
-    #[arg(long, value_enum, help_heading = "Setting up")]
-    pub origin: Option<Origin>,
 }
 
 /// What a bare number in a drawing means.
@@ -127,6 +110,8 @@ pub enum Origin {
     Centre,
     /// Where the drawing has it
     Drawing,
+    /// At the lower left corner of the stock
+    Stock,
 }
 
 impl Zero {
@@ -146,6 +131,7 @@ impl Origin {
             Self::LowerLeft => "the lower left corner of the finished parts",
             Self::Centre => "the middle of the finished parts",
             Self::Drawing => "the drawing's own zero",
+            Self::Stock => "the lower left corner of the stock",
         }
     }
 }
@@ -192,17 +178,6 @@ impl DrawingArgs {
             fit_width: if self.scale.is_some() { self.fit_width } else { self.fit_width.or(other.fit_width) },
             layers: self.layers.or(other.layers),
             join: self.join.or(other.join),
-        }
-    }
-}
-
-impl SettingUpArgs {
-    fn or(self, other: Self) -> Self {
-        Self {
-            zero: self.zero.or(other.zero),
-            thickness: self.thickness.or(other.thickness),
-            clearance: self.clearance.or(other.clearance),
-            origin: self.origin.or(other.origin),
         }
     }
 }

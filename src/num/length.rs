@@ -164,7 +164,8 @@ enum Written {
     Text(String),
 }
 
-fn from_written<'de, D, T>(input: D) -> Result<T, D::Error>
+/// A quantity from a settings file, which may hold it as a number or as a text.
+pub(crate) fn from_written<'de, D, T>(input: D) -> Result<T, D::Error>
 where
     D: Deserializer<'de>,
     T: FromStr<Err = String>,

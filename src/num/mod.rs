@@ -5,5 +5,6 @@ mod length;
 mod tolerance;
 
 pub use banded::{BlockTridiagonal, Factored};
+pub(crate) use length::from_written;
 pub use length::{Feed, Length, LengthUnit};
 pub use tolerance::{Deviation, Tolerance};

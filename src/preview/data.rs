@@ -4,6 +4,7 @@ use super::Scene;
 use super::chord::Lap;
 use super::layers::Drawn;
 use super::markup::number;
+use super::pace::paces;
 use super::tour::Kind;
 use crate::feed;
 
@@ -20,7 +21,7 @@ pub(super) fn data(scene: &Scene, drawn: &Drawn, magnification: f64) -> String {
     let kinds: String = drawn.stages.iter().map(|stage| kind_number(stage.kind).to_string()).collect();
     let names: Vec<&str> = Kind::ALL.into_iter().map(Kind::words).collect();
     let worst = scene.worst().map_or("null".into(), |at| list([at.x, at.y], 4));
-    let around = scene.extent();
+    let around = scene.whole();
     let fields = [
         ("tolerance", number(scene.report.tolerance_mm, 6)),
         ("cutter", number(scene.report.setup.cutter_mm, 4)),
@@ -37,6 +38,7 @@ pub(super) fn data(scene: &Scene, drawn: &Drawn, magnification: f64) -> String {
         ("feed", list(moves.iter().map(|m| m.feed.unwrap_or(0.0)), 2)),
         ("line", list(moves.iter().map(|m| m.line as f64), 0)),
         ("ended", list(ended, 3)),
+        ("paces", paces(scene)),
         ("kinds", string(&kinds)),
         ("names", strings(&names)),
         ("laps", laps(scene, drawn)),

@@ -8,8 +8,9 @@ use super::chord::{Chord, Lap};
 use super::curvature::{Combs, combs};
 use super::markup::{mm, paths, place};
 use super::palette::{STEPS, step};
+use super::setting::frame;
 use super::tour::{Kind, Stage, restarts, stages};
-use super::{Scene, figures};
+use super::{Scene, figures, setting};
 use crate::geom::Span;
 use crate::toolpath::Move;
 
@@ -37,6 +38,8 @@ pub(super) struct Layer {
     pub(super) group: Group,
     /// True when it is shown unasked.
     pub(super) shown: bool,
+    /// The class of the line that stands for it in the legend.
+    pub(super) key: Option<&'static str>,
     /// Its elements.
     pub(super) svg: String,
 }
@@ -82,7 +85,28 @@ pub(super) fn draw(scene: &Scene) -> Drawn {
 }
 
 fn layer(id: &'static str, name: &'static str, group: Group, shown: bool, svg: String) -> Layer {
-    Layer { id, name, group, shown, svg }
+    Layer { id, name, group, shown, key: key(id), svg }
+}
+
+/// The line that stands for a layer in the legend; none for one that is no line.
+fn key(layer: &str) -> Option<&'static str> {
+    const KEYS: [(&str, &str); 14] = [
+        ("stock", "stock"),
+        ("clamps", "clamp"),
+        ("part", "part"),
+        ("extents", "extents"),
+        ("zero", "zero"),
+        ("cutter", "cutter"),
+        ("rapids", "rapid"),
+        ("entries", "entry"),
+        ("uncut", "uncut"),
+        ("tabs", "tab"),
+        ("trace", "trace"),
+        ("comb", "comb"),
+        ("before", "before"),
+        ("after", "after"),
+    ];
+    KEYS.into_iter().find(|(id, _)| *id == layer).map(|(_, class)| class)
 }
 
 /// The spans of the moves of some kinds.
@@ -119,6 +143,7 @@ fn ground(scene: &Scene, stages: &[Stage]) -> Vec<Layer> {
     let extents = paths(frame(path_box(&scene.program.toolpath.moves)), "extents");
     let cutter = paths(seen_from_above, "cutter");
     vec![
+        layer("stock", "Stock", Group::Zero, true, setting::stock(scene)),
         layer("swept", "Width that the cutter sweeps", Group::Cut, true, swept),
         layer("part", "Box around the finished parts", Group::Zero, true, part),
         layer("extents", "Box around the cutter's path", Group::Zero, true, extents),
@@ -132,6 +157,7 @@ fn marks(scene: &Scene, stages: &[Stage], chord: &Chord) -> Vec<Layer> {
     let ramps = of(scene, stages, |kind| kind == Kind::Ramp);
     let entries = format!("{}{}", paths(ramps, "entry"), dots(plunges, "plunge"));
     let rapids = paths(of(scene, stages, |kind| kind == Kind::Rapid), "rapid");
+    let clamps = setting::clamps(scene, figures::diagonal(scene.extent()) / 50.0);
     let tabs = paths(of(scene, stages, |kind| kind == Kind::Tab), "tab");
     let uncut = paths(chord.laps.iter().flat_map(|lap| lap.uncut.iter().copied()), "uncut");
     vec![
@@ -139,6 +165,7 @@ fn marks(scene: &Scene, stages: &[Stage], chord: &Chord) -> Vec<Layer> {
         layer("entries", "Ways down into the stock", Group::Cut, true, entries),
         layer("uncut", "What stays uncut", Group::Cut, true, uncut),
         layer("tabs", "Tabs", Group::Hold, true, tabs),
+        layer("clamps", "Clamps to keep clear of", Group::Hold, true, clamps),
         layer("starts", "Starts and directions", Group::Cut, true, starts(scene, stages)),
         layer("zero", "Zero", Group::Zero, true, zero(scene)),
         layer("worst", "Worst place", Group::Compare, true, worst(scene)),
@@ -288,14 +315,6 @@ fn worst(scene: &Scene) -> String {
         r = mm(r),
         d = mm(2.0 * r)
     )
-}
-
-/// The sides of a box.
-fn frame(around: Rect) -> [Span; 4] {
-    let corner = |x, y| Point::new(x, y);
-    let (a, b) = (corner(around.x0, around.y0), corner(around.x1, around.y0));
-    let (c, d) = (corner(around.x1, around.y1), corner(around.x0, around.y1));
-    [Span::line(a, b), Span::line(b, c), Span::line(c, d), Span::line(d, a)]
 }
 
 /// The box around the moves.

@@ -9,8 +9,10 @@ mod data;
 mod figures;
 mod layers;
 mod markup;
+mod pace;
 mod page;
 mod palette;
+mod setting;
 mod sheet;
 mod still;
 mod terminal;
@@ -49,8 +51,6 @@ pub struct Scene<'a> {
     pub limits: Limits,
     /// The height of the stock's top.
     pub stock_top: f64,
-    /// The stock's thickness, where it is given.
-    pub thickness_mm: Option<f64>,
 }
 
 impl Scene<'_> {
@@ -65,6 +65,13 @@ impl Scene<'_> {
         let radius = self.report.setup.cutter_mm / 2.0;
         let moves = self.program.toolpath.moves.iter().map(|m| m.span().bbox().inflate(radius, radius));
         moves.fold(self.part().union_pt(Point::ORIGIN), |all, one| all.union(one))
+    }
+
+    /// All that is shown from above: what the cutter does, the stock, and the clamps.
+    fn whole(&self) -> Rect {
+        let setup = &self.report.setup;
+        let boxes = setup.stock.iter().map(|stock| stock.box_mm).chain(setup.clamps.iter().map(|c| c.box_mm));
+        boxes.map(setting::rect).fold(self.extent(), |all, one| all.union(one))
     }
 
     /// Where the deviation is largest, in the program's coordinates.

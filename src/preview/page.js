@@ -370,17 +370,44 @@ function moveNow(time) {
   }
   return low;
 }
+// How far along a move the cutter is after so many seconds, as a share of its length: waiting comes first, then parts
+// of even acceleration, each with its length and the speed at its end.
+function along(i, since, lasting) {
+  const pace = data.paces[i];
+  if (!pace) return {t: lasting > 0 ? Math.min(1, since / lasting) : 1};
+  const parts = [];
+  let from = pace[0], long = 0, running = 0;
+  for (let k = 1; k < pace.length; k += 2) {
+    const [length, to] = [pace[k], pace[k + 1]], lasts = from + to > 0 ? 2 * length / (from + to) : 0;
+    parts.push({length, from, to, lasts});
+    long += length;
+    running += lasts;
+    from = to;
+  }
+  let left = since - Math.max(0, lasting - running), done = 0;
+  if (left <= 0) return {t: 0, speed: 0};
+  for (const {length, from, to, lasts} of parts) {
+    if (left < lasts) {
+      const gained = (to - from) * left / lasts;
+      return {t: (done + (from + gained / 2) * left) / long, speed: (from + gained) * 60};
+    }
+    left -= lasts;
+    done += length;
+  }
+  return {t: 1, speed: from * 60};
+}
 function cutter() {
   if (!count) return;
   const time = Number(now.value), i = moveNow(time), begun = i ? data.ended[i - 1] : 0;
-  const lasting = data.ended[i] - begun;
-  const p = at(shape(i), lasting > 0 ? Math.min(1, (time - begun) / lasting) : 1);
+  const {t, speed: momentary} = along(i, time - begun, data.ended[i] - begun);
+  const p = at(shape(i), t);
   const disc = get("disc");
   disc.setAttribute("cx", p.x.toFixed(3));
   disc.setAttribute("cy", (-p.y).toFixed(3));
   disc.style.display = "inline";
   const where = ["x", "y", "z"].map(axis => axis.toUpperCase() + " " + length(p[axis], 2)).join("  ");
-  get("clock").textContent = `${clock(time)} of ${clock(lasts)}, line ${data.line[i]}, ${data.names[kind(i)]}, ${where}`;
+  const pace = momentary === undefined ? "" : " at " + speed(momentary);
+  get("clock").textContent = `${clock(time)} of ${clock(lasts)}, line ${data.line[i]}, ${data.names[kind(i)]}${pace}, ${where}`;
   now.setAttribute("aria-valuetext", clock(time));
 }
 now.addEventListener("input", cutter);

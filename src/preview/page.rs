@@ -6,7 +6,7 @@ use sha2::{Digest, Sha256};
 use super::layers::{Drawn, Group, draw};
 use super::markup::{escaped, mm};
 use super::palette::{Medium, STEPS, style, variables};
-use super::{Scene, data, figures, sheet};
+use super::{Scene, data, figures, setting, sheet};
 use crate::error::{Error, Kind};
 
 /// A page shows programs of up to so many moves. It then takes some 300 bytes a move, the program's own text and 2 MB.
@@ -84,7 +84,7 @@ fn header(scene: &Scene) -> String {
 
 /// The drawing with its controls.
 fn view(scene: &Scene, drawn: &Drawn) -> String {
-    let around = scene.extent();
+    let around = scene.whole();
     let layers = drawn.layers.iter().map(|layer| {
         let hidden = if layer.shown { "" } else { " style=\"display:none\"" };
         format!("<g id=\"layer-{}\"{hidden}>\n{}</g>\n", layer.id, layer.svg)
@@ -130,11 +130,15 @@ fn side(scene: &Scene, drawn: &Drawn) -> String {
          <p class=\"ends\"><span>0</span><span>{} mm, the tolerance</span><span>over</span></p>\n\
          <label for=\"enlarge\">Comb, enlarged <span id=\"enlarged\"></span> times\
          <input type=\"range\" id=\"enlarge\" min=\"0\" max=\"3.5\" step=\"0.05\"></label>\n{bends}</section>\n\
-         <section><h2>Layers</h2>\n{}</section>\n<section><h2>Figures</h2>\n{}</section>\n\
+         <section><h2>Layers</h2>\n{}</section>\n<section><h2>Setting up</h2>\n<dl class=\"setting\">\n{}</dl></section>\n<section><h2>Figures</h2>\n{}</section>\n\
          <section><h2>Notes</h2>\n<ul>{}</ul></section>\n<section><h2>Keys</h2>\n{KEYS}</section>\n</aside>\n",
         swatches.collect::<String>(),
         scene.report.tolerance_mm,
         Group::ALL.iter().map(|&group| switches(group, drawn)).collect::<String>(),
+        setting::terms(&scene.report.setup, usize::MAX)
+            .iter()
+            .map(|(term, told)| format!("<dt>{term}</dt><dd>{}</dd>\n", escaped(told)))
+            .collect::<String>(),
         figures::list(scene.report),
         notes.collect::<String>(),
     )
@@ -150,11 +154,20 @@ fn switches(group: Group, drawn: &Drawn) -> String {
     let boxes = filled.iter().map(|layer| {
         let checked = if layer.shown { " checked" } else { "" };
         format!(
-            "<label><input type=\"checkbox\" data-layer=\"{}\"{checked}> {}</label>\n",
-            layer.id, layer.name
+            "<label><input type=\"checkbox\" data-layer=\"{}\"{checked}> {}{}</label>\n",
+            layer.id,
+            layer.key.map_or_else(String::new, key),
+            layer.name
         )
     });
     format!("<fieldset><legend>{}</legend>\n{}</fieldset>\n", group.words(), boxes.collect::<String>())
+}
+
+/// A sample of a layer's line.
+fn key(class: &str) -> String {
+    format!(
+        "<svg class=\"key\" viewBox=\"0 0 28 12\" aria-hidden=\"true\"><path class=\"{class}\" d=\"M2 6h24\"/></svg> "
+    )
 }
 
 const KEYS: &str = "<dl class=\"keys\"><dt>Arrows</dt><dd>move</dd><dt>+ and &minus;</dt><dd>closer, farther</dd>\

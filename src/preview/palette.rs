@@ -72,6 +72,8 @@ const STROKES: &[Stroke] = &[
     stroke("arrow", "mark", 1.6, &[]),
     stroke("zero", "mark", 1.6, &[]),
     stroke("part", "mark", 0.8, &[2.0, 3.0]),
+    stroke("stock", "soft", 2.2, &[]),
+    stroke("clamp", "over", 1.8, &[]),
     stroke("extents", "rapid", 0.8, &[8.0, 3.0, 2.0, 3.0]),
     stroke("uncut", "over", 6.0, &[1.5, 2.5]),
     stroke("comb", "accent", 0.8, &[]),

@@ -3,11 +3,11 @@
 use kurbo::{Point, Rect, Vec2};
 use sha2::{Digest, Sha256};
 
-use super::Scene;
 use super::chord::Chord;
 use super::figures::length;
 use super::markup::{escaped, mm, paths, place};
 use super::tour::{Kind, Stage, restarts, stages};
+use super::{Scene, setting};
 use crate::cautions::CAUTIONS;
 use crate::gcode::read::What;
 use crate::geom::Span;
@@ -21,6 +21,7 @@ const PICTURE: (f64, f64) = (186.0, 98.0);
 /// Lists that could run over the paper end after so many items, and say so.
 const RESTARTS: usize = 14;
 const NOTES: usize = 6;
+const CLAMPS: usize = 4;
 /// Longer texts are cut off there.
 const LONGEST: usize = 150;
 
@@ -99,28 +100,26 @@ fn setting(scene: &Scene) -> String {
     let setup = &scene.report.setup;
     let show = |mm: f64| length(mm, setup.unit == "in");
     let [x0, y0, z0, x1, y1, z1] = setup.extents_mm.map(show);
-    let clamps = "none declared".to_owned();
-    terms(
-        "Setting up",
-        &[
-            ("Machine", short(&setup.machine)),
-            ("Program in", setup.unit.clone()),
-            ("Zero of X and Y", setup.origin.words().into()),
-            ("Zero of Z", setup.zero.words().into()),
-            ("Cutter's path", format!("X {x0} to {x1}<br>Y {y0} to {y1}<br>from that zero")),
-            ("Lowest Z", z0),
-            ("Highest Z", z1),
-            (
-                "Stock",
-                scene.thickness_mm.map_or("thickness not given".into(), |mm| format!("{} thick", show(mm))),
-            ),
-            ("Clamps", clamps),
-            (
-                "Part as drawn",
-                format!("{} x {}", show(scene.report.drawing.width_mm), show(scene.report.drawing.height_mm)),
-            ),
-        ],
-    )
+    let mut rows = vec![("Machine", short(&setup.machine)), ("Program in", setup.unit.clone())];
+    rows.extend(setting::terms(setup, CLAMPS).into_iter().map(|(term, told)| (term, escaped(&told))));
+    rows.extend([
+        ("Cutter's path", format!("X {x0} to {x1}<br>Y {y0} to {y1}<br>from that zero")),
+        ("Lowest Z", z0),
+        ("Highest Z", z1),
+        (
+            "Part as drawn",
+            format!("{} x {}", show(scene.report.drawing.width_mm), show(scene.report.drawing.height_mm)),
+        ),
+    ]);
+    rows.extend(laid_out(scene).map(|told| ("Laid out", told)));
+    terms("Setting up", &rows)
+}
+
+/// How the drawing is laid out, where it is not once as drawn.
+fn laid_out(scene: &Scene) -> Option<String> {
+    let setup = &scene.report.setup;
+    let words = setup.layout.words(|mm| length(mm, setup.unit == "in"));
+    (!words.is_empty()).then_some(words)
 }
 
 fn cutting(scene: &Scene) -> String {
@@ -273,14 +272,15 @@ fn cautions() -> String {
 
 /// The part from above with its size, the starts numbered in the order of the cuts, and zero.
 fn picture(scene: &Scene, stages: &[Stage], chord: &Chord) -> String {
-    let around = scene.extent();
+    let around = scene.whole();
     let scale = (around.width() / (PICTURE.0 - 24.0)).max(around.height() / (PICTURE.1 - 16.0));
     let pad = 12.0 * scale;
     let (width, height) = (around.width() + 2.0 * pad, around.height() + 1.4 * pad);
     let part = scene.part();
     format!(
-        "<svg class=\"drawing\" role=\"img\" aria-label=\"The part from above with its size and zero\" \
-         viewBox=\"{} {} {} {}\" font-size=\"{}\" style=\"width:{}mm;height:{}mm\">\n{}{}{}{}</svg>\n",
+        "<svg class=\"drawing\" role=\"img\" aria-label=\"{}\" \
+         viewBox=\"{} {} {} {}\" font-size=\"{}\" style=\"width:{}mm;height:{}mm\">\n{}{}{}{}{}{}</svg>\n",
+        picture_words(scene),
         mm(around.x0 - pad),
         mm(-around.y1 - 0.4 * pad),
         mm(width),
@@ -288,11 +288,25 @@ fn picture(scene: &Scene, stages: &[Stage], chord: &Chord) -> String {
         mm(3.2 * scale),
         mm(width / scale),
         mm(height / scale),
+        setting::stock(scene),
+        setting::clamps(scene, 2.8 * scale),
         outline(scene, chord, scale),
         dimensions(scene, part, around, scale),
         start_numbers(scene, stages, scale),
         zero(scale),
     )
+}
+
+/// What the picture shows, for those who hear it.
+fn picture_words(scene: &Scene) -> String {
+    let setup = &scene.report.setup;
+    let stock = if setup.stock.is_some() { ", on its stock" } else { "" };
+    let clamps = match setup.clamps.len() {
+        0 => String::new(),
+        1 => ", with a clamp".into(),
+        count => format!(", with {count} clamps"),
+    };
+    format!("The part from above with its size and zero{stock}{clamps}")
 }
 
 /// The paths that are cut last, no finer than paper shows.

@@ -23,7 +23,7 @@ const TEETH: usize = 4000;
 /// The program in `scene` as an SVG picture whose millimetres are millimetres.
 pub fn still(scene: &Scene) -> String {
     let drawn = draw(scene);
-    let around = scene.extent().inflate(MARGIN, MARGIN);
+    let around = scene.whole().inflate(MARGIN, MARGIN);
     let (width, height) = (around.width().max(LEAST_WIDTH), around.height() + LEGEND);
     let name = escaped(&scene.report.drawing.file);
     let mut svg = format!(

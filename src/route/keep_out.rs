@@ -12,7 +12,9 @@ use super::setup::{KeepOut, Setup, refused};
 pub(super) fn check(toolpath: &Toolpath, radius: f64, setup: &Setup) -> Result<(), Error> {
     for keep_out in &setup.keep_outs {
         let top = setup.heights().top + keep_out.height_mm;
-        let around = keep_out.place.inflate(radius, radius);
+        // The program's numbers are rounded by less than a step.
+        let (reach, top) = (radius + setup.step_mm, top + setup.step_mm);
+        let around = keep_out.place.inflate(reach, reach);
         for m in toolpath.moves.iter().filter(|m| m.from.z.min(m.to.z) < top) {
             if let Some(at) = meets(m, around, setup.step_mm) {
                 return Err(in_the_way(m, keep_out, at));
@@ -51,7 +53,12 @@ fn overlaps(a: Rect, b: Rect) -> bool {
 }
 
 fn in_the_way(m: &Move, keep_out: &KeepOut, at: Point) -> Error {
-    let what = if m.is_rapid() { "a rapid, which may run anywhere in its rectangle," } else { "a cut" };
+    let (what, remedy) = if m.is_rapid() {
+        let remedy = "move the clamp or the drawing, or raise --clearance above the clamp";
+        ("a rapid, which may run anywhere in its rectangle,", remedy)
+    } else {
+        ("a cut", "move the clamp, or the drawing")
+    };
     let place = keep_out.place;
     refused(
         format!(
@@ -64,6 +71,6 @@ fn in_the_way(m: &Move, keep_out: &KeepOut, at: Point) -> Error {
             place.x1,
             place.y1
         ),
-        "move the clamp or the drawing, or raise --clearance above the clamp",
+        remedy,
     )
 }

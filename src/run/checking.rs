@@ -6,7 +6,7 @@ use super::siding::Sides;
 use crate::check::{self, Asked, Claim, Feeds, State, Verdict};
 use crate::error::{Error, Kind};
 use crate::gcode::Program;
-use crate::job::{self, CheckJob, Cutting, Job};
+use crate::job::{self, CheckJob, Clamp, Cutting, Job, Stock};
 use crate::route::{Cut, Routed, Setup};
 use crate::sketch::{Contour, Sketch};
 
@@ -47,6 +47,8 @@ fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
         leave: job.cuttings().map(leave).fold(0.0, f64::max),
         layout: for_check(&job.layout),
         drawing_at: Some(plan.placing.drawing_at),
+        zero_at: plan.placing.zero_at,
+        keep_out: keep_outs(&job.stock),
         stock_top: heights.top,
         clearance: Some(heights.clearance),
         lowest: Some(heights.top - job.cutting.depth_mm),
@@ -59,10 +61,14 @@ fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
 }
 
 /// Checks a program that exists already, whoever wrote it.
-pub(super) fn check_existing(job: &CheckJob, program: &Program, sketch: &Sketch) -> Verdict {
+///
+/// # Errors
+/// [`Kind::Refused`] when the drawing as it is laid out does not fit the stock.
+pub(super) fn check_existing(job: &CheckJob, program: &Program, sketch: &Sketch) -> Result<Verdict, Error> {
     let top = job.stock.top_mm();
     let contours = &sketch.contours[..];
-    let place = |origin| Placing::new(&job.layout, origin, (contours, contours)).drawing_at;
+    let placing = Placing::new(&job.layout, &job.stock, (contours, contours));
+    placing.fits_stock()?;
     let asked = Asked {
         side: match job.side {
             job::Side::On => check::Side::On,
@@ -72,14 +78,26 @@ pub(super) fn check_existing(job: &CheckJob, program: &Program, sketch: &Sketch)
         cutter: job.cutter_mm.unwrap_or(0.0),
         allowance: job.allowance_mm,
         layout: for_check(&job.layout),
-        drawing_at: job.stock.origin.map(place),
+        drawing_at: job.stock.origin.map(|_| placing.drawing_at),
+        zero_at: placing.zero_at,
+        keep_out: keep_outs(&job.stock),
         stock_top: top,
         clearance: job.stock.clearance_mm.map(|clearance| top + clearance),
         lowest: job.depth_mm.map(|depth| top - depth),
         pass: job.pass_mm,
         ..Asked::new(job.tolerance)
     };
-    check::check(program, sketch, &job.machine, &asked)
+    Ok(check::check(program, sketch, &job.machine, &asked))
+}
+
+/// The clamps in the check's words.
+fn keep_outs(stock: &Stock) -> Vec<check::KeepOut> {
+    let keep_out = |(number, clamp): (usize, &Clamp)| check::KeepOut {
+        name: format!("clamp {number}"),
+        outline: clamp.place,
+        top: stock.top_mm() + clamp.height_mm,
+    };
+    (1..).zip(&stock.clamps).map(keep_out).collect()
 }
 
 /// Refuses a program for which a claim fails.

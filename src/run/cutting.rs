@@ -10,7 +10,8 @@ use crate::job::{self, Cutting, Job, Origin};
 use crate::num::Tolerance;
 use crate::offset::Corners;
 use crate::route::{
-    self, Cut, Direction, Entry, Held, Outline, Routed, Setup, Sided, TabNumber, Tabs, Thickness, Work, Zero,
+    self, Cut, Direction, Entry, Held, KeepOut, Outline, Routed, Setup, Sided, TabNumber, Tabs, Thickness,
+    Work, Zero,
 };
 use crate::sketch::Contour;
 
@@ -23,13 +24,21 @@ pub(super) fn setup(job: &Job, placing: &Placing) -> Setup {
             job::Zero::StockTop => Zero::StockTop,
             job::Zero::Bed => Zero::Bed,
         },
-        thickness: job.stock.thickness_mm.map(|mm| Thickness { thinnest: mm, thickest: mm }),
+        thickness: job
+            .stock
+            .thickness
+            .map(|stock| Thickness { thinnest: stock.thinnest, thickest: stock.thickest }),
         clearance_mm: job.stock.clearance_mm(),
         bed_cut_mm: job.stock.bed_cut_mm,
         park,
         step_mm: job.machine.last_place(),
+        keep_outs: job.stock.clamps.iter().map(keep_out).collect(),
         ..Setup::default()
     }
+}
+
+fn keep_out(clamp: &job::Clamp) -> KeepOut {
+    KeepOut { place: clamp.place, height_mm: clamp.height_mm }
 }
 
 /// The line of the cutter's centre for each contour's path of every copy, in the program's coordinates, with how it is cut.

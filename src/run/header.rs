@@ -2,16 +2,24 @@
 
 use std::path::Path;
 
+use kurbo::Rect;
+
 use crate::cautions;
 use crate::gcode::Header;
-use crate::job::{Job, Layout, Side};
+use crate::job::{Clamp, Job, Layout, Side};
 use crate::machine::{ArcStyle, Machine};
 use crate::num::Tolerance;
 use crate::route::Setup;
 
 /// The header of the program for the drawing called `name`, whose bytes have that digest. It holds no time, so that
 /// the same job gives the same text.
-pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup, sha256: &str) -> Header {
+pub(super) fn header(
+    job: &Job,
+    name: &str,
+    (tolerance, stock): (Tolerance, Option<Rect>),
+    setup: &Setup,
+    sha256: &str,
+) -> Header {
     let file = Path::new(name).file_name().map_or_else(|| name.into(), |file| file.to_string_lossy());
     let cutting = &job.cutting;
     let mut notes = vec![
@@ -26,6 +34,7 @@ pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup,
         format!("drawing sha256 {sha256}"),
     ];
     notes.extend(laid_out(job));
+    notes.extend(set_up(job, stock));
     notes.extend(cautions::SHORT.map(str::to_owned));
     Header {
         title: file.into_owned(),
@@ -37,6 +46,23 @@ pub(super) fn header(job: &Job, name: &str, tolerance: Tolerance, setup: &Setup,
         notes,
         marks: Vec::new(),
     }
+}
+
+/// Stock and clamps, as far as they are given.
+fn set_up(job: &Job, stock: Option<Rect>) -> Vec<String> {
+    let unit = job.machine.unit;
+    let show = |mm: f64| format!("{}", (mm / unit.mm() * 1e4).round() / 1e4);
+    let range = |axis: &str, from, to| format!("{axis} {} to {}", show(from), show(to));
+    let place = |r: Rect| format!("{}, {}", range("X", r.x0, r.x1), range("Y", r.y0, r.y1));
+    let thickness = job.stock.thickness.map(|thickness| thickness.words(show, unit.symbol()));
+    let stock = stock.map(|stock| format!("{} from zero", place(stock)));
+    let told: Vec<String> = [thickness, stock].into_iter().flatten().collect();
+    let clamp = |(number, clamp): (usize, &Clamp)| {
+        let height = show(clamp.height_mm);
+        format!("clamp {number}: {}, {height} {} above the stock", place(clamp.place), unit.symbol())
+    };
+    let stock = (!told.is_empty()).then(|| format!("stock {}", told.join(", ")));
+    stock.into_iter().chain((1..).zip(&job.stock.clamps).map(clamp)).collect()
 }
 
 /// How the drawing is laid out, where it is not once as drawn.

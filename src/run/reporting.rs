@@ -10,8 +10,10 @@ use crate::check::{self, Verdict};
 use crate::clean::Roughness;
 use crate::files::Target;
 use crate::fit::Fitted;
-use crate::job::{Cutting, Job, Side};
-use crate::report::{AsDrawn, Check, Claim, Contour, Drawing, Layout, Part, Program, Report, Setup, State};
+use crate::job::{self, Cutting, Job, Side, Zero};
+use crate::report::{
+    AsDrawn, Check, Claim, Clamp, Contour, Drawing, Layout, Part, Program, Report, Setup, State, Stock,
+};
 use crate::sketch;
 use crate::toolpath::{Move, Toolpath};
 
@@ -104,14 +106,22 @@ fn setup(job: &Job, plan: &Plan) -> Setup {
     let beside = job.cuttings().any(|cutting| cutting.side != Side::On);
     let mixed = beside && job.cuttings().any(|cutting| cutting.side == Side::On);
     let cuts = || plan.routed.iter().map(|routed| &routed.cut);
+    let extents = extents(&plan.program.toolpath);
     let most = |figure: fn(&crate::route::Cut) -> f64| cuts().map(figure).fold(0.0, f64::max);
     Setup {
         machine: job.machine.name.clone(),
         unit: job.machine.unit.symbol().into(),
         zero: job.stock.zero,
         origin: job.stock.origin(),
+        thickness_mm: job.stock.thickness.map(|stock| [stock.thinnest, stock.thickest]),
+        bed_cut_mm: bed_cut(job, extents[2]),
+        stock: plan.stock.map(|stock| Stock {
+            box_mm: sides(stock),
+            on_machine_mm: job.stock.sheet.and_then(|sheet| sheet.at).map(|at| [at.x, at.y]),
+        }),
+        clamps: job.stock.clamps.iter().map(clamp).collect(),
         layout: layout(job, plan),
-        extents_mm: extents(&plan.program.toolpath),
+        extents_mm: extents,
         cutter_mm: job.cutter_mm,
         side: match (beside, mixed) {
             (false, _) => Side::On.name().into(),
@@ -127,15 +137,33 @@ fn setup(job: &Job, plan: &Plan) -> Setup {
     }
 }
 
+/// How deep the text cuts into the bed under the thinnest stock.
+fn bed_cut(job: &Job, lowest: f64) -> Option<f64> {
+    let underside = job.stock.thickness.map(|stock| match job.stock.zero {
+        Zero::StockTop => -stock.thinnest,
+        Zero::Bed => 0.0,
+    });
+    // Differences of decimal lengths, without the last bit's noise.
+    underside.map(|underside| ((underside - lowest).max(0.0) * 1e9).round() / 1e9)
+}
+
+fn clamp(clamp: &job::Clamp) -> Clamp {
+    Clamp { box_mm: sides(clamp.place), height_mm: clamp.height_mm }
+}
+
+fn sides(r: Rect) -> [f64; 4] {
+    [r.x0, r.y0, r.x1, r.y1]
+}
+
 fn layout(job: &Job, plan: &Plan) -> Layout {
-    let (asked, parts) = (job.layout, plan.parts_box);
+    let asked = job.layout;
     Layout {
         mirrored: asked.mirror,
         turn_deg: asked.turn_deg,
         columns: asked.copies.columns,
         rows: asked.copies.rows,
         gap_mm: asked.gap_mm,
-        parts_mm: [parts.x0, parts.y0, parts.x1, parts.y1],
+        parts_mm: sides(plan.parts_box),
     }
 }
 

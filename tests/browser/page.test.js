@@ -11,6 +11,11 @@ before(async () => {
 });
 after(() => browser.close());
 
+/** A long straight cut on clamped stock. */
+let slotMade;
+const slot = () => slotMade ??= make("slot", drawing("slot.csv", "0,0\n200,0\n"), "--entry", "plunge", "--feed", "3000mm/min",
+  "--stock", "320x80mm", "--origin", "stock", "--thickness", "12mm", "--clamp", "10,50,40,70,4mm");
+
 /** Opens the template's page, does something with it, and holds that it stayed silent. */
 async function onPage(act, options, made = template) {
   const { page, heard, close } = await open(browser, made.url, options);
@@ -251,6 +256,34 @@ describe("what it does", () => {
     near(Math.max(...at100) / 100, template.report.check.deviation_mm, 0.1 * template.report.tolerance_mm, "the longest tooth");
   }));
 
+  test("stock, zero and clamps are drawn where they lie, with a legend, a switch and words", () => onPage(async page => {
+    const { setup } = slot().report;
+    for (const [layer, [x0, y0, x1, y1]] of [["stock", setup.stock.box_mm], ["clamps", setup.clamps[0].box_mm]]) {
+      const box = await pathBox(page, `#layer-${layer} path`);
+      assert.deepEqual(box, { x: x0, y: -y1, width: x1 - x0, height: y1 - y0 }, layer);
+      assert.ok(await page.isVisible(`#layer-${layer} path`));
+      // The legend shows the line that is drawn.
+      const inks = await page.$$eval(`#layer-${layer} path, label:has([data-layer=${layer}]) .key path`, all =>
+        all.map(path => getComputedStyle(path).stroke));
+      assert.ok(inks.length >= 2 && new Set(inks).size === 1, `${layer}: ${inks}`);
+      await page.click(`[data-layer=${layer}]`);
+      assert.ok(!await page.isVisible(`#layer-${layer} path`), layer);
+    }
+    assert.equal(await page.getByRole("checkbox", { name: "Clamps to keep clear of", exact: true }).count(), 1);
+    assert.ok(await page.isVisible("#layer-zero path >> nth=0"));
+    const groups = await page.$$eval("legend", all => all.map(legend => legend.textContent));
+    assert.deepEqual(groups, ["Set zero", "Hold", "Cut", "Path against trace"]);
+    const words = await page.$$eval("aside dl.setting dd", all => all.map(dd => dd.textContent));
+    assert.deepEqual(words, [
+      "the lower left corner of the stock", "the top of the stock",
+      "320 x 80 mm, 12 mm thick, its lower left corner at X 0 Y 0 from zero", "the bed is not cut",
+      "X 10 to 40, Y 50 to 70, 4 mm above the stock",
+    ]);
+    // All of the stock is in sight at first.
+    const [left, top, width, height] = await sight(page);
+    assert.ok(left <= 0 && top <= -80 && left + width >= 320 && top + height >= 0);
+  }, {}, slot()));
+
   test("every switch shows and hides its layer", () => onPage(async page => {
     const switches = await page.$$eval("[data-layer]", all => all.map(box => box.dataset.layer));
     assert.ok(switches.length >= 12, switches.join());
@@ -295,6 +328,28 @@ describe("what it does", () => {
     await frames(page);
     assert.equal(await page.inputValue("#now"), stopped);
   }));
+
+  test("within a move the cutter gathers and loses speed as planned", () => onPage(async page => {
+    const data = await page.$eval("#data", e => JSON.parse(e.textContent));
+    const i = data.x.findIndex((x, i) => data.feed[i] > 0 && x === 260);
+    const [begun, ended] = [data.ended[i - 1], data.ended[i]];
+    const placeAt = async time => {
+      await page.$eval("#now", (slider, time) => {
+        slider.value = time;
+        slider.dispatchEvent(new Event("input"));
+      }, time);
+      return { x: Number(await page.getAttribute("#disc", "cx")), said: await page.textContent("#clock") };
+    };
+    // Half of the shop router's 800 mm/s2 times the time squared, and at most the 10 mm/s of a corner to a plunge more.
+    for (const time of [0.02, 0.04]) {
+      const way = 400 * time * time;
+      const gained = (await placeAt(begun + time)).x - 60, left = 260 - (await placeAt(ended - time)).x;
+      for (const moved of [gained, left]) assert.ok(moved > way && moved < way + 10 * time, `${moved} mm in ${time} s`);
+    }
+    const middle = await placeAt((begun + ended) / 2);
+    near(middle.x, 160, 0.1, "half way in half the time");
+    assert.ok(middle.said.includes("cut at 3000 mm/min"), middle.said);
+  }, {}, slot()));
 
   test("everything is reached by keyboard and has a name", () => onPage(async page => {
     const unnamed = await page.$$eval("button, input, select, [tabindex]", all => all

@@ -75,6 +75,29 @@ test("the sheet says what the report and the program say", async () => {
   await close();
 });
 
+test("the sheet draws and tells stock, zero and clamps", async () => {
+  const plate = drawing("plate.csv", "0,0\n120,0\n120,80\n0,80\n0,0\n");
+  const clamps = ["--clamp", "0,40,12,60,4mm", "--clamp", "148,40,160,60,4mm"];
+  const made = make("clamped", plate, "--stock", "160x120mm", "--origin", "stock", "--thickness", "11.8..12.2mm", ...clamps);
+  const { page, heard, close } = await open(browser, made.sheet);
+  const pages = await printed(page, "clamped", "A4");
+  assert.ok(pages.length <= 2);
+  const text = flat(pages.join(" "));
+  for (const said of [
+    "the lower left corner of the stock", "160 x 120 mm, 11.8 to 12.2 mm thick", "the bed is not cut",
+    "X 0 to 12, Y 40 to 60, 4 mm above the stock", "clamp 1, 4 mm high", "clamp 2, 4 mm high",
+  ]) assert.ok(text.includes(said), `${said} in ${text}`);
+  const box = selector => page.$eval(selector, path => {
+    const { x, y, width, height } = path.getBBox();
+    return [x, -y - height, x + width, -y];
+  });
+  assert.deepEqual(await box(".drawing path.stock"), made.report.setup.stock.box_mm);
+  assert.deepEqual(await box(".drawing path.clamp"), made.report.setup.clamps[0].box_mm);
+  assert.match(await page.getAttribute(".drawing", "aria-label"), /on its stock, with 2 clamps/);
+  assert.deepEqual(heard, []);
+  await close();
+});
+
 test("the sheet is black on white whatever the screen is", async () => {
   const { page, close } = await open(browser, template.url, { colorScheme: "dark" });
   await page.emulateMedia({ media: "print", colorScheme: "dark" });

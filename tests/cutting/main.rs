@@ -4,4 +4,5 @@ mod layers;
 mod laying;
 mod programs;
 mod refused;
+mod setting;
 mod shop;

@@ -1,6 +1,7 @@
 //! Pictures of a program: what they show, held against the program and the report.
 
 mod page;
+mod setting;
 mod still;
 mod terminal;
 
