@@ -30,6 +30,26 @@ fn a_point_beyond_an_end_is_nearest_to_that_end() {
 }
 
 #[test]
+fn places_beside_nearly_straight_arcs_are_on_their_side() {
+    // A square of 40 whose sides bulge out, or in, by 20 times the bulge.
+    let corners = [(0.0, 0.0), (40.0, 0.0), (40.0, 40.0), (0.0, 40.0)].map(Point::from);
+    for bulge in BULGES.into_iter().filter(|&b| b < 0.5).flat_map(|b| [b, -b]) {
+        let mut square = ArcSpline::polyline(corners, true);
+        square.vertices.iter_mut().for_each(|v| v.bulge = bulge);
+        let sagitta = 20.0 * bulge;
+        for off in [1e-9, 1e-3, 1.0, 4.0] {
+            for (p, within) in
+                [(Point::new(40.0 + sagitta - off, 20.0), 1), (Point::new(40.0 + sagitta + off, 20.0), 0)]
+            {
+                assert_eq!(square.winding(p), within, "bulge {bulge}, {off} mm off");
+                let crossed = square.spans().filter(|span| span.crosses_level_ray(p)).count();
+                assert_eq!(crossed % 2, within as usize, "bulge {bulge}, {off} mm off, by a ray");
+            }
+        }
+    }
+}
+
+#[test]
 fn boxes_and_areas_of_arcs_tend_to_those_of_the_line() {
     for bulge in BULGES {
         let span = Span::arc(Point::new(0.0, 0.0), Point::new(20.0, 0.0), bulge);

@@ -29,22 +29,6 @@ impl Region {
     /// True when a ray from `p` crosses the border an odd number of times.
     pub(super) fn contains(&self, p: Point) -> bool {
         let ray = self.index.meeting(p, Point::new(f64::MAX, p.y));
-        ray.filter(|span| crosses(span, p)).count() % 2 == 1
+        ray.filter(|span| span.crosses_level_ray(p)).count() % 2 == 1
     }
-}
-
-/// True when the ray from `p` towards larger x crosses the span an odd number of times: once for the chord, and once
-/// more when `p` lies between chord and arc.
-fn crosses(span: &Span, p: Point) -> bool {
-    let (a, b) = (span.start, span.end);
-    let spanned = (a.y > p.y) != (b.y > p.y);
-    // Ends as high as `p` count as lower; so a place on a level chord counts as a hair above it.
-    let across = (b - a).cross(p - a);
-    let left_of = across > 0.0 || (across == 0.0 && b.x > a.x);
-    let chord = spanned && (left_of == (b.y > a.y));
-    let between = span.centre().is_some_and(|centre| {
-        let on_arc_side = left_of != (span.bulge > 0.0);
-        on_arc_side && p.distance(centre) < span.radius()
-    });
-    chord != between
 }

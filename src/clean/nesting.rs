@@ -6,7 +6,6 @@ use kurbo::Point;
 use rstar::primitives::{GeomWithData, Rectangle};
 use rstar::{AABB, RTree};
 
-use crate::geom::Span;
 use crate::sketch::Contour;
 
 /// What a contour bounds.
@@ -112,25 +111,10 @@ impl Ray {
         let mut odd: BTreeMap<usize, bool> = BTreeMap::new();
         for item in self.tree.locate_in_envelope_intersecting(ray) {
             let (i, k) = item.data;
-            if changes_side(&contours[i].path.span(k), p) {
+            if contours[i].path.span(k).crosses_level_ray(p) {
                 *odd.entry(i).or_default() ^= true;
             }
         }
         odd.into_iter().filter(|&(_, odd)| odd).map(|(i, _)| i).collect()
     }
-}
-
-/// True when the span puts `p` on its other side: the ray meets the chord, or else `p` is between chord and arc.
-fn changes_side(span: &Span, p: Point) -> bool {
-    let (a, b) = (span.start, span.end);
-    let spans_level = (a.y > p.y) != (b.y > p.y);
-    let meets_chord = spans_level && (p.x < a.x + (p.y - a.y) / (b.y - a.y) * (b.x - a.x));
-    meets_chord != between_chord_and_arc(span, p)
-}
-
-fn between_chord_and_arc(span: &Span, p: Point) -> bool {
-    let Some(centre) = span.centre() else { return false };
-    // A left-turning arc bulges to the right of its chord.
-    let bulges_this_way = span.chord().cross(p - span.start) * span.bulge < 0.0;
-    bulges_this_way && p.distance(centre) < span.radius()
 }

@@ -27,18 +27,16 @@ pub enum Direction {
     Climb,
 }
 
-/// On which side of a contour the cutter runs.
+/// On which side the cutter runs of the region that contours bound together by even and odd.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
 pub enum Side {
     /// Its centre on the contour: the part comes out smaller by the cutter's radius.
     #[default]
     On,
-    /// Inside.
+    /// Within the region, which is a hole or a pocket: outer contours inside, islands in them outside.
     Inside,
-    /// Outside.
+    /// Outside the region, which is the part: outer contours outside, holes inside, islands in holes outside.
     Outside,
-    /// By nesting: outer contours outside, holes inside, islands in holes outside.
-    Auto,
 }
 
 /// How a part that is cut free is held.

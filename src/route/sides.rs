@@ -42,10 +42,8 @@ struct Group<'a> {
 
 /// Puts the cutter on its side of every outline.
 ///
-/// With `auto`, all such outlines bound one region together: outer ones are cut outside, holes inside, islands in
-/// holes outside. With `inside` or `outside`, outlines that lie equally deep in each other do. Lines keep clear of
-/// every outline of their region, so that close neighbours are not cut into. `tolerance` mm is what may stay uncut
-/// without being told.
+/// Outlines of one side bound one region together. Lines keep clear of every outline of their region, so that close
+/// neighbours are not cut into. `tolerance` mm is what may stay uncut without being told.
 ///
 /// # Errors
 /// Refused for an open contour with a side, for one that cannot be followed without a doubt, and when the cutter is
@@ -68,6 +66,7 @@ pub fn beside(outlines: &[Outline], tolerance: f64) -> Result<Sided, Error> {
     let (drilled, followed): (Vec<_>, Vec<_>) =
         cut_beside.into_iter().zip(depths).partition(|(o, depth)| o.is_drilled(*depth, tolerance));
     sided.routed.extend(drilled.iter().map(|(o, _)| o.routed(o.path.clone(), Work::Drill)));
+    let followed: Vec<&Outline> = followed.into_iter().map(|(o, _)| o).collect();
     for group in groups(&followed) {
         group.follow(&all, tolerance, &mut sided)?;
     }
@@ -92,17 +91,12 @@ fn depths(outlines: &[&Outline]) -> Vec<usize> {
 }
 
 /// The outlines that bound regions together.
-fn groups<'a>(outlines: &[(&'a Outline, usize)]) -> Vec<Group<'a>> {
-    let of = |side: Side, depth: Option<usize>| -> Vec<&'a Outline> {
-        let fits = |&&(o, d): &&(&Outline, usize)| o.cut.side == side && depth.is_none_or(|depth| d == depth);
-        outlines.iter().filter(fits).map(|&(o, _)| o).collect()
-    };
-    let deepest = outlines.iter().map(|&(_, depth)| depth).max().unwrap_or(0);
-    let mut groups = vec![Group { outlines: of(Side::Auto, None), side: offset::Side::Outside }];
-    for depth in 0..=deepest {
-        groups.push(Group { outlines: of(Side::Inside, Some(depth)), side: offset::Side::Inside });
-        groups.push(Group { outlines: of(Side::Outside, Some(depth)), side: offset::Side::Outside });
-    }
+fn groups<'a>(outlines: &[&'a Outline]) -> Vec<Group<'a>> {
+    let of = |side: Side| outlines.iter().copied().filter(|o| o.cut.side == side).collect();
+    let mut groups = vec![
+        Group { outlines: of(Side::Inside), side: offset::Side::Inside },
+        Group { outlines: of(Side::Outside), side: offset::Side::Outside },
+    ];
     groups.retain(|group| !group.outlines.is_empty());
     groups
 }
@@ -235,9 +229,9 @@ impl Outline {
     /// True for a hole that is a circle of the cutter's own diameter within the tolerance.
     fn is_drilled(&self, depth: usize, tolerance: f64) -> bool {
         let is_hole = match self.cut.side {
-            Side::Inside => true,
-            Side::Auto => depth % 2 == 1,
-            Side::On | Side::Outside => false,
+            Side::Inside => depth.is_multiple_of(2),
+            Side::Outside => !depth.is_multiple_of(2),
+            Side::On => false,
         };
         let Some(bbox) = self.path.bbox() else { return false };
         let radius = self.cut.distance();

@@ -36,8 +36,23 @@ pub(super) fn sides(job: &Job, prepared: &Prepared) -> Result<Sides, Error> {
         }
     }
     let region = region(contours, &asked)?;
+    if region != check::Side::On {
+        can_be_judged(job, prepared)?;
+    }
     let each = asked.iter().map(|&side| for_route(side, region)).collect();
     Ok(Sides { each, region, notes })
+}
+
+/// A cutter that may be off by its own radius has no side.
+fn can_be_judged(job: &Job, prepared: &Prepared) -> Result<(), Error> {
+    let (tolerance, distance) = (prepared.tolerance.mm(), job.cutter_mm / 2.0 + job.allowance_mm);
+    if tolerance < distance {
+        return Ok(());
+    }
+    let what = format!(
+        "with a tolerance of {tolerance} mm a cutter whose centre runs {distance} mm beside the drawing has no side"
+    );
+    Err(Error::new(Kind::Refused, what).remedy("take a larger --cutter, or ask for a finer --tolerance"))
 }
 
 /// Only `auto` takes an open contour, and only one that is not meant to be closed.
@@ -85,13 +100,11 @@ fn two_regions(one: usize, other: usize) -> Error {
         .remedy("use --side auto, which goes by nesting, or write a program for each with --layers")
 }
 
-/// A region that is kept is cut as one: so every line keeps clear of all of it.
+/// A region is cut as one: so every line keeps clear of all of its border.
 fn for_route(side: Side, region: check::Side) -> route::Side {
     match (side, region) {
         (Side::On, _) => route::Side::On,
-        (_, check::Side::Outside) => route::Side::Auto,
-        (Side::Inside, _) => route::Side::Inside,
-        (Side::Outside, _) => route::Side::Outside,
-        (Side::Auto, _) => route::Side::Auto,
+        (_, check::Side::Inside) => route::Side::Inside,
+        _ => route::Side::Outside,
     }
 }

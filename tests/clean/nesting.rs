@@ -72,6 +72,19 @@ fn places_between_chord_and_arc_are_told_from_places_beyond() {
     assert_eq!(depths, [0, 1, 0, 0]);
 }
 
+/// A disc of two half arcs has its chords on a level line, and so does a contour within it that has edges at that
+/// height.
+#[test]
+fn a_contour_as_high_as_the_chords_of_the_arcs_around_it_lies_within_them() {
+    let level = ring(&[(-2.0, 0.0), (-1.0, 0.0), (1.0, 0.0), (2.0, 0.0), (2.0, 2.0), (-2.0, 2.0)]);
+    for path in [level.clone(), level.reversed()] {
+        for disc in [circle(0.0, 0.0, 10.0), circle(0.0, 0.0, 10.0).reversed()] {
+            let nests = nesting(&contours([disc, path.clone()]));
+            assert_eq!((nests[0].depth, nests[1].depth), (0, 1));
+        }
+    }
+}
+
 #[test]
 fn nesting_agrees_with_winding_numbers() {
     let mut dice = Dice(7);

@@ -61,11 +61,16 @@ impl Contours {
 
     /// As one LWPOLYLINE a contour, with `$INSUNITS` 4 (mm).
     pub(crate) fn dxf(&self) -> String {
+        self.dxf_on(std::iter::repeat("cut"))
+    }
+
+    /// The same, each contour on its layer.
+    pub(crate) fn dxf_on<'a>(&self, layers: impl Iterator<Item = &'a str>) -> String {
         let mut text =
             String::from("0\nSECTION\n2\nHEADER\n9\n$INSUNITS\n70\n4\n0\nENDSEC\n0\nSECTION\n2\nENTITIES\n");
-        for (points, closed) in &self.0 {
+        for ((points, closed), layer) in self.0.iter().zip(layers) {
             let flags = u8::from(*closed);
-            write!(text, "0\nLWPOLYLINE\n8\ncut\n90\n{}\n70\n{flags}\n", points.len())
+            write!(text, "0\nLWPOLYLINE\n8\n{layer}\n90\n{}\n70\n{flags}\n", points.len())
                 .expect("a string takes all");
             for p in points {
                 write!(text, "10\n{}\n20\n{}\n", p.x, p.y).expect("a string takes all");

@@ -1,6 +1,7 @@
 //! The command line from outside: statuses, messages, files.
 
 mod bad;
+mod beside;
 mod condensing;
 mod demo;
 mod formats;

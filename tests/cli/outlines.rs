@@ -8,7 +8,7 @@ use rayon::prelude::*;
 use serde_json::Value;
 
 use crate::formats::Contours;
-use crate::reading::{Chain, Cuts, SAGITTA, cuts, distance};
+use crate::reading::{Chain, Cuts, cuts, distance};
 
 fn outlines() -> PathBuf {
     Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures/outlines")
@@ -31,6 +31,9 @@ fn manifest() -> Vec<Outline> {
     };
     manifest["outlines"].as_array().expect("a list").iter().map(outline).collect()
 }
+
+/// How finely arcs are sampled, in mm of chord error: what a sampled deviation may be off by.
+const SAGITTA: f64 = 1e-5;
 
 /// What `post` made of a drawing.
 struct Posted {
@@ -107,7 +110,7 @@ fn figures(outline: &Outline) -> Figures {
     let drawing = Contours::from_csv(&text);
     let posted = post(&outline.csv, outline.tolerance);
     let certified = posted.report["check"]["deviation_mm"].as_f64().expect("a deviation");
-    let cuts = cuts(&posted.program);
+    let cuts = cuts(&posted.program, SAGITTA);
     // What two readings may differ by: rounded arcs, this reader's sampling, the grid of 2^-20 mm of coordinates.
     let reading = cuts.mismatch + SAGITTA + 1e-6;
     let sampled = sampled_deviation(cuts, &drawing, outline.tolerance);

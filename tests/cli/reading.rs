@@ -2,24 +2,24 @@
 
 use kurbo::Point;
 
-/// How finely arcs are sampled, in mm of chord error: what a sampled deviation may be off by.
-pub(crate) const SAGITTA: f64 = 1e-5;
-
 /// What a program cuts.
 pub(crate) struct Cuts {
     /// Chains of points at its lowest height, each from where the cutter goes down to where it leaves, arcs sampled.
     pub(crate) chains: Vec<Vec<Point>>,
+    /// Every move that is somewhere below zero, arcs sampled.
+    pub(crate) sunk: Vec<Vec<Point>>,
     /// The largest difference between an arc's radius at its start and at its end: numbers that are rounded describe
     /// no exact arc, and two readings of them may be that far apart.
     pub(crate) mismatch: f64,
 }
 
-/// Reads what `program` cuts.
-pub(crate) fn cuts(program: &str) -> Cuts {
+/// Reads what `program` cuts, arcs sampled within `sagitta` mm.
+pub(crate) fn cuts(program: &str, sagitta: f64) -> Cuts {
     let mut at = Point::ORIGIN;
     let (mut z, mut motion) = (f64::INFINITY, 0);
     let mut mismatch = 0.0;
     let mut moves: Vec<(f64, i32, Vec<Point>)> = Vec::new();
+    let mut sunk = Vec::new();
     for line in program.lines() {
         let words = words(line);
         let of = |letter| words.iter().rev().find(|w| w.0 == letter).map(|w| w.1);
@@ -31,13 +31,17 @@ pub(crate) fn cuts(program: &str) -> Cuts {
             continue;
         }
         let to = Point::new(of('X').unwrap_or(at.x), of('Y').unwrap_or(at.y));
+        let from_z = z;
         z = of('Z').unwrap_or(z);
         let centre = Point::new(at.x + of('I').unwrap_or(0.0), at.y + of('J').unwrap_or(0.0));
         let is_arc = motion >= 2 && (of('I').is_some() || of('J').is_some());
         if is_arc {
             mismatch = f64::max(mismatch, (at.distance(centre) - to.distance(centre)).abs());
         }
-        let points = if is_arc { arc(at, to, centre, motion == 3) } else { vec![at, to] };
+        let points = if is_arc { arc(at, to, (centre, sagitta), motion == 3) } else { vec![at, to] };
+        if z.min(from_z) < 0.0 {
+            sunk.push(points.clone());
+        }
         moves.push((z, motion, points));
         at = to;
     }
@@ -53,7 +57,7 @@ pub(crate) fn cuts(program: &str) -> Cuts {
         }
         cutting = cuts;
     }
-    Cuts { chains, mismatch }
+    Cuts { chains, sunk, mismatch }
 }
 
 /// The words of a line outside its comments.
@@ -72,7 +76,7 @@ fn words(line: &str) -> Vec<(char, f64)> {
 }
 
 /// Points on the arc, its ends among them.
-fn arc(from: Point, to: Point, centre: Point, left: bool) -> Vec<Point> {
+fn arc(from: Point, to: Point, (centre, sagitta): (Point, f64), left: bool) -> Vec<Point> {
     let (a, b) = (from - centre, to - centre);
     let radius = a.hypot();
     let turn = b.atan2() - a.atan2();
@@ -81,7 +85,7 @@ fn arc(from: Point, to: Point, centre: Point, left: bool) -> Vec<Point> {
         (false, turn) if turn >= 0.0 => turn - std::f64::consts::TAU,
         (_, turn) => turn,
     };
-    let pieces = (sweep.abs() / (2.0 * (1.0 - SAGITTA / radius).clamp(-1.0, 1.0).acos())).ceil().max(1.0);
+    let pieces = (sweep.abs() / (2.0 * (1.0 - sagitta / radius).clamp(-1.0, 1.0).acos())).ceil().max(1.0);
     let at = |k: f64| {
         let angle = a.atan2() + sweep * k / pieces;
         centre + kurbo::Vec2::from_angle(angle) * (radius + (b.hypot() - radius) * k / pieces)

@@ -92,6 +92,24 @@ fn convex_shapes_follow_steiner() {
     }
 }
 
+/// What rounding leaves of a line, an arc with its centre light years away, has its sides all the same.
+#[test]
+fn sides_that_are_straight_but_for_rounding_are_followed() {
+    for bulge in [1e-12, 3e-15, 2.142e-16, 4e-17, 1e-300].into_iter().flat_map(|b| [b, -b]) {
+        for turn in 0..8 {
+            let across = Vec2::from_angle(0.3 + f64::from(turn)) * 13.0;
+            let corner = |x: f64, y: f64| {
+                let at = Point::new(37.0, 9.9) + across * x + Vec2::new(-across.y, across.x) * y;
+                vertex(at.x, at.y, bulge)
+            };
+            let vertices = vec![corner(0.0, 0.0), corner(1.0, 0.0), corner(1.0, 1.0), corner(0.0, 1.0)];
+            let square = [ArcSpline { vertices, closed: true }];
+            assert_one(&outside(&square, 0.5), 52.0 + PI, 169.0 + 26.0 + PI / 4.0);
+            assert_one(&inside(&square, 0.5), 48.0, 144.0);
+        }
+    }
+}
+
 #[test]
 fn lines_run_with_the_outline_on_their_right() {
     let turns = |lines: &Compensated| lines.lines.iter().map(|l| l.path.area() > 0.0).collect::<Vec<_>>();

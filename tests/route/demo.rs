@@ -22,7 +22,7 @@ fn cut_out(name: &str, tabs: usize) -> (Sided, Routing) {
     let setup = Setup { thickness: Some(Thickness { thinnest: 12.0, thickest: 12.0 }), ..Setup::default() };
     let tabs = Some(Tabs { number: TabNumber::Count(tabs), length_mm: 5.0, height_mm: 1.5 });
     let depth_mm = setup.depth_through(0.2).expect("the thickness is known");
-    let cut = Cut { side: Side::Auto, depth_mm, pass_mm: 3.0, tabs, entry: Entry::Ramp, ..cut() };
+    let cut = Cut { side: Side::Outside, depth_mm, pass_mm: 3.0, tabs, entry: Entry::Ramp, ..cut() };
     let outline = |contour: &ribband::sketch::Contour| Outline {
         id: contour.id,
         path: fit(&contour.path, tolerance).path,

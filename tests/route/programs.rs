@@ -50,7 +50,7 @@ fn through(side: Side) -> Cut {
 
 #[test]
 fn a_nested_part() {
-    let cut = through(Side::Auto);
+    let cut = through(Side::Outside);
     let paths = [box_of(0.0, 0.0, 80.0, 60.0), circle(40.0, 30.0, 20.0), box_of(34.0, 24.0, 12.0, 12.0)];
     let outlines: Vec<Outline> =
         paths.into_iter().zip(1..).map(|(path, id)| Outline { id, path, cut: cut.clone() }).collect();
@@ -75,10 +75,13 @@ fn a_ramped_slot() {
 #[test]
 fn a_drilled_plate() {
     let holes = [(10.0, 10.0), (50.0, 10.0), (10.0, 30.0)];
-    let mut outlines: Vec<Outline> =
-        holes.into_iter().zip(2..).map(|((x, y), id)| outline(id, circle(x, y, 3.0), Side::Auto)).collect();
-    outlines.push(outline(1, box_of(0.0, 0.0, 60.0, 40.0), Side::Auto));
-    outlines.iter_mut().for_each(|o| o.cut = through(Side::Auto));
+    let mut outlines: Vec<Outline> = holes
+        .into_iter()
+        .zip(2..)
+        .map(|((x, y), id)| outline(id, circle(x, y, 3.0), Side::Outside))
+        .collect();
+    outlines.push(outline(1, box_of(0.0, 0.0, 60.0, 40.0), Side::Outside));
+    outlines.iter_mut().for_each(|o| o.cut = through(Side::Outside));
     assert_snapshot!(program("drilled plate", &beside(&outlines, 0.01).expect("it has sides").routed));
 }
 

@@ -27,10 +27,10 @@ fn square(id: usize, (x, y): (f64, f64), size: f64, side: Side) -> Outline {
 /// A plate with a round hole, an island in the hole, and a second plate beside it.
 fn nested() -> Vec<Outline> {
     vec![
-        square(1, (10.0, 10.0), 100.0, Side::Auto),
-        outline(2, circle(60.0, 60.0, 30.0), Side::Auto),
-        square(3, (50.0, 50.0), 20.0, Side::Auto),
-        square(4, (130.0, 10.0), 40.0, Side::Auto),
+        square(1, (10.0, 10.0), 100.0, Side::Outside),
+        outline(2, circle(60.0, 60.0, 30.0), Side::Outside),
+        square(3, (50.0, 50.0), 20.0, Side::Outside),
+        square(4, (130.0, 10.0), 40.0, Side::Outside),
     ]
 }
 
@@ -67,6 +67,18 @@ fn nested_contours_are_cut_on_the_waste_side_inner_ones_first() {
         let apart = routing.order[0] == 4 || routing.order[3] == 4;
         assert!(apart, "the other plate before or after: {:?}", routing.order);
     }
+}
+
+#[test]
+fn a_pocket_keeps_clear_of_its_island() {
+    let outlines = [square(1, (0.0, 0.0), 60.0, Side::Inside), square(2, (12.0, 12.0), 36.0, Side::Inside)];
+    let lines = sided(&outlines);
+    let areas: Vec<f64> = lines.routed.iter().map(|line| line.path.area().abs()).collect();
+    let rounded = 36.0 * 36.0 + 4.0 * 36.0 * 3.0 + std::f64::consts::PI * 9.0;
+    assert!(areas.len() == 2 && (areas[0] - 54.0 * 54.0).abs() < 1e-9, "{areas:?}");
+    assert!((areas[1] - rounded).abs() < 1e-9, "{areas:?} for {rounded}");
+    let routing = route(&lines.routed, &Setup::default()).expect("a pocket routes");
+    assert_clear(&routing.toolpath, &outlines, 3.0);
 }
 
 #[test]
@@ -156,10 +168,10 @@ fn a_relieved_corner_seats_a_sharp_one() {
 #[test]
 fn holes_of_the_cutters_size_are_drilled() {
     let plate = [
-        square(1, (0.0, 0.0), 60.0, Side::Auto),
-        outline(2, circle(15.0, 15.0, 3.0), Side::Auto),
-        outline(3, circle(45.0, 45.0, 3.4), Side::Auto),
-        outline(4, circle(15.0, 45.0, 2.5), Side::Auto),
+        square(1, (0.0, 0.0), 60.0, Side::Outside),
+        outline(2, circle(15.0, 15.0, 3.0), Side::Outside),
+        outline(3, circle(45.0, 45.0, 3.4), Side::Outside),
+        outline(4, circle(15.0, 45.0, 2.5), Side::Outside),
     ];
     let lines = sided(&plate);
     let drilled: Vec<usize> = lines.routed.iter().filter(|r| r.work == Work::Drill).map(|r| r.id).collect();
