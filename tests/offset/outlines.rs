@@ -175,19 +175,19 @@ fn assert_agree(largest: u64, nth: usize, prepare: Prepare) -> usize {
     };
     let compared: Vec<Option<String>> = names.par_iter().flat_map_iter(compare).collect();
     let failures: Vec<&String> = compared.iter().flatten().collect();
-    assert!(compared.len() > 100, "the comparison is not empty");
+    assert!(compared.len() > 50, "the comparison is not empty");
     assert!(failures.is_empty(), "{failures:#?}");
     compared.len()
 }
 
 #[test]
 fn outlines_as_drawn_agree_with_an_independent_buffer() {
-    assert_agree(1000, 2, as_drawn);
+    assert_agree(1000, 4, as_drawn);
 }
 
 #[test]
 fn outlines_as_fitted_agree_with_an_independent_buffer() {
-    assert_agree(700, 4, as_fitted);
+    assert_agree(600, 8, as_fitted);
 }
 
 #[test]
