@@ -1,6 +1,7 @@
 //! How fast a program is read and checked: `cargo bench --bench check`.
 //!
-//! A million straight blocks against a drawing of a million vertices, on one core; the best of five runs.
+//! A million straight blocks against a drawing of a million vertices, on one core; the best of five runs, and the most
+//! memory that was held, the text and the drawing with it.
 
 #![expect(clippy::print_stdout, reason = "a benchmark prints its figures")]
 
@@ -26,14 +27,24 @@ fn main() {
     let mut best = f64::INFINITY;
     for _ in 0..5 {
         let start = Instant::now();
-        let words = read(&text).expect("a program");
-        let program = interpret(&words, &Dialect::of(&machine)).expect("a program");
+        let program =
+            read(&text).and_then(|words| interpret(&words, &Dialect::of(&machine))).expect("a program");
         let verdict = check(&program, &sketch, &machine, &asked);
         assert!(verdict.holds, "the program is good: {:?}", verdict.claims);
         best = best.min(start.elapsed().as_secs_f64());
     }
     println!("{BLOCKS} blocks against as many vertices: {:.0} ms", best * 1e3);
     println!("read and checked at {:.1} million blocks a second", BLOCKS as f64 / best / 1e6);
+    if let Some(kibibytes) = most_memory() {
+        println!("at most {:.0} bytes a block", kibibytes * 1024.0 / BLOCKS as f64);
+    }
+}
+
+/// The most memory that this process held, in KiB; `None` where the system does not say.
+fn most_memory() -> Option<f64> {
+    let status = std::fs::read_to_string("/proc/self/status").ok()?;
+    let line = status.lines().find_map(|line| line.strip_prefix("VmHWM:"))?;
+    line.split_whitespace().next()?.parse().ok()
 }
 
 /// Place `k` of a wavy ring.

@@ -143,8 +143,9 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     placing.stays_on_machine(&routing.toolpath, &job.machine)?;
 
     let sha256 = digest(source.bytes);
-    let header = header::header(job, source.name, (prepared.tolerance, placing.stock), &setup, &sha256);
+    let mut header = header::header(job, source.name, (prepared.tolerance, placing.stock), &setup, &sha256);
     let feeds = clock.time("feed", || feeding::suit(&mut routing.toolpath, &header, job));
+    let lifts = splitting::lift(job, &mut routing.toolpath, &mut header)?;
     let text = clock.time("write", || gcode::write(&routing.toolpath, &header, &job.machine))?;
     let program = clock.time("read back", || read_back(&text, &job.machine))?;
     let intended = Intended { routed: &sided.routed, setup: &setup, sides: &sides, placing: &placing };
@@ -166,6 +167,7 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     warnings.extend(routing.notes.iter().cloned());
     warnings.extend(placing.over_the_edge(&routing.toolpath, job.cutter_mm));
     warnings.extend(feeds);
+    warnings.extend(lifts);
     once_each(&mut warnings);
     Ok(Plan {
         drawn: placing.drawn(&prepared.sketch.contours),
@@ -225,7 +227,7 @@ pub fn check(job: &CheckJob, program: Source, drawing: Source) -> Result<report:
     let sketch = read::read(drawing.name, drawing.bytes, &prepare::scale(&job.drawing))?;
     // Comments may be in any encoding; what a controller executes is ASCII.
     let text = String::from_utf8_lossy(program.bytes);
-    let read = read_back(&text, &job.machine).map_err(|error| error.in_file(program.name))?;
+    let read = checking::Existing::read(&text, &job.machine).map_err(|error| error.in_file(program.name))?;
     Ok(reporting::check_of(&checking::check_existing(job, &read, &sketch)?))
 }
 

@@ -6,6 +6,7 @@ use std::path::Path;
 
 use rayon::prelude::*;
 use ribband::job::{CutArgs, DrawingArgs, DrawingUnit, Job, JobFile, Settings};
+use ribband::machine;
 use ribband::num::Length;
 use ribband::run::{Source, Unwatched, plan};
 use serde_json::Value;
@@ -68,13 +69,13 @@ fn starved(times: &[f64]) -> usize {
 /// One outline on the machine.
 struct Cut {
     id: String,
+    arcs: usize,
     drawn_starved: usize,
     ratio: f64,
 }
 
-/// The cut of an outline of the manifest; `None` where it is larger than the machine or its memory, or a
-/// computed curve.
-fn cut(folder: &Path, entry: &Value) -> Option<Cut> {
+/// The cut of an outline of the manifest on `machine`; `None` where it is larger than that, or a computed curve.
+fn cut(folder: &Path, entry: &Value, machine: &str) -> Option<Cut> {
     let tolerance = entry["tolerance_mm"].as_f64().expect("a tolerance");
     let corner = |i: usize| entry["bbox_mm"][i].as_f64().expect("a corner");
     let size = (corner(2) - corner(0)).max(corner(3) - corner(1));
@@ -83,7 +84,7 @@ fn cut(folder: &Path, entry: &Value) -> Option<Cut> {
     }
     let (id, csv) = (entry["id"].as_str().expect("an id"), entry["csv"].as_str().expect("a file"));
     let settings = Settings {
-        machine: Some("old-controller".into()),
+        machine: Some(machine.into()),
         cut: CutArgs {
             depth: Some(Length::from_mm(3.0)),
             feed: Some("3000mm/min".parse().expect("a feed")),
@@ -96,11 +97,7 @@ fn cut(folder: &Path, entry: &Value) -> Option<Cut> {
     let job = Job::new(&settings, &JobFile::default()).expect("a job");
     let bytes = fs::read(folder.join(csv)).expect("the outline");
     let planned = plan(&job, Source { name: csv, bytes: &bytes }, &Unwatched);
-    let plan = match planned {
-        // One contour, longer than the memory by itself.
-        Err(why) if why.what.contains("longer than the controller's 32768 bytes") => return None,
-        planned => planned.unwrap_or_else(|why| panic!("{id}: {why}")),
-    };
+    let plan = planned.unwrap_or_else(|why| panic!("{id}: {why}"));
     assert!(plan.text.len() <= 32768 || plan.parts.len() > 1, "{id}: {} bytes", plan.text.len());
     let texts: Vec<&str> = if plan.parts.is_empty() {
         vec![&plan.text]
@@ -108,6 +105,7 @@ fn cut(folder: &Path, entry: &Value) -> Option<Cut> {
         plan.parts.iter().map(|part| part.text.as_str()).collect()
     };
     for text in texts {
+        assert!(text.len() <= 32768, "{id}: a part of {} bytes", text.len());
         assert!(block_times(text, 1.0).len() > 5, "{id}: blocks are found");
         assert_eq!(starved(&block_times(text, 1.0)), 0, "{id}: by the text alone");
         let highest = f64::from(plan.highest_override) / 100.0;
@@ -118,19 +116,41 @@ fn cut(folder: &Path, entry: &Value) -> Option<Cut> {
     let drawn = &plan.as_drawn.times;
     Some(Cut {
         id: id.into(),
+        arcs: plan.text.lines().filter(|line| line.contains("G2X") || line.contains("G3X")).count(),
         drawn_starved: drawn.starved_blocks,
         ratio: plan.times.cut_time_s / drawn.cut_time_s,
     })
 }
 
-#[test]
-fn ours_starve_nowhere_and_take_half_the_time() {
+/// Every `nth` outline of the manifest on `machine`.
+fn cuts(machine: &str, nth: usize) -> Vec<Cut> {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("fixtures/outlines");
     let manifest = fs::read(folder.join("manifest.json")).expect("the manifest");
     let manifest: Value = serde_json::from_slice(&manifest).expect("JSON");
-    let outlines = manifest["outlines"].as_array().expect("a list");
-    let mut cuts: Vec<Cut> = outlines.par_iter().filter_map(|entry| cut(&folder, entry)).collect();
-    assert!(cuts.len() >= 70, "{} traces", cuts.len());
+    let outlines: Vec<&Value> =
+        manifest["outlines"].as_array().expect("a list").iter().step_by(nth).collect();
+    outlines.par_iter().filter_map(|entry| cut(&folder, entry, machine)).collect()
+}
+
+/// A controller without arcs gets chords, and feeds that its queue sustains all the same.
+#[test]
+fn programs_of_chords_alone_starve_nowhere() {
+    let folder = tempfile::tempdir().expect("a folder");
+    let profile = folder.path().join("chords.toml");
+    let text = machine::built_in("old-controller").expect("built in");
+    fs::write(&profile, text.replace("style = \"radius\"", "style = \"none\"")).expect("a profile");
+    let cuts = cuts(&profile.display().to_string(), 6);
+    assert!(cuts.len() >= 10, "{} traces", cuts.len());
+    assert!(cuts.iter().all(|cut| cut.arcs == 0), "no arcs are written");
+    let drawn: usize = cuts.iter().map(|cut| cut.drawn_starved).sum();
+    assert!(drawn > 2_000, "as drawn {drawn} blocks starve");
+}
+
+#[test]
+fn ours_starve_nowhere_and_take_half_the_time() {
+    let mut cuts = cuts("old-controller", 1);
+    assert!(cuts.len() >= 75, "{} traces", cuts.len());
+    assert!(cuts.iter().all(|cut| cut.arcs > 0), "arcs are written");
     let drawn: usize = cuts.iter().map(|cut| cut.drawn_starved).sum();
     assert!(drawn > 20_000, "as drawn {drawn} blocks starve");
     cuts.sort_by(|a, b| a.ratio.total_cmp(&b.ratio));

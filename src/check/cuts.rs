@@ -3,7 +3,7 @@
 use kurbo::{Point, Rect};
 
 use crate::geom::{ArcSpline, Span};
-use crate::toolpath::Move;
+use crate::toolpath::{Move, Position};
 
 /// All cuts of a program.
 pub(super) struct Cuts<'a> {
@@ -15,12 +15,28 @@ pub(super) struct Cuts<'a> {
     pub(super) plunges: Vec<&'a Move>,
 }
 
+/// How things stood when the cutter left the work.
+struct Lifted {
+    at: Position,
+    floor: f64,
+    open: bool,
+}
+
+impl Lifted {
+    /// True when the next cut only goes straight down to where the cutter left: the cut goes on as if it had not.
+    fn comes_back_by(&self, m: &Move) -> bool {
+        m.to == self.at && m.from.xy == m.to.xy && m.from.z > m.to.z
+    }
+}
+
 /// A run of moves at one depth. It may rise and come down again, as over a tab, but not below that depth.
 pub(super) struct Pass<'a> {
     /// The moves that go along.
     pub(super) moves: Vec<&'a Move>,
     /// The height of its floor, in mm.
     pub(super) z: f64,
+    /// True when the cutter went up and straight down again where the pass before it ends.
+    goes_on: bool,
 }
 
 impl<'a> Cuts<'a> {
@@ -29,11 +45,19 @@ impl<'a> Cuts<'a> {
         let mut cuts = Self { passes: Vec::new(), ramps: Vec::new(), plunges: Vec::new() };
         let mut floor = f64::INFINITY;
         let mut open = false;
+        let (mut lifted, mut goes_on) = (None, false);
         for m in moves {
             let low = m.from.z.min(m.to.z);
+            if m.is_rapid() && floor < f64::INFINITY {
+                lifted = Some(Lifted { at: m.from, floor, open });
+            }
             if low >= top || m.is_rapid() {
                 floor = f64::INFINITY;
-                open = false;
+                (open, goes_on) = (false, false);
+                continue;
+            }
+            if let Some(before) = lifted.take().filter(|lifted| lifted.comes_back_by(m)) {
+                (floor, goes_on) = (before.floor, before.open);
                 continue;
             }
             if floor == f64::INFINITY {
@@ -42,23 +66,23 @@ impl<'a> Cuts<'a> {
             let along = m.from.xy != m.to.xy;
             if m.to.z < floor {
                 floor = m.to.z;
-                open = false;
+                (open, goes_on) = (false, false);
                 if along { &mut cuts.ramps } else { &mut cuts.plunges }.push(m);
             } else if along {
                 if !open && cuts.plunges.last().is_some_and(|plunge| plunge.to == m.from) {
                     cuts.plunges.pop();
                 }
-                cuts.push(m, floor, open);
-                open = true;
+                cuts.push(m, floor, open, goes_on);
+                (open, goes_on) = (true, false);
             }
         }
         cuts
     }
 
-    fn push(&mut self, m: &'a Move, z: f64, open: bool) {
+    fn push(&mut self, m: &'a Move, z: f64, open: bool, goes_on: bool) {
         match self.passes.last_mut() {
             Some(pass) if open => pass.moves.push(m),
-            _ => self.passes.push(Pass { moves: vec![m], z }),
+            _ => self.passes.push(Pass { moves: vec![m], z, goes_on }),
         }
     }
 
@@ -69,7 +93,19 @@ impl<'a> Cuts<'a> {
     }
 }
 
-impl Pass<'_> {
+impl<'a> Pass<'a> {
+    /// Passes in groups: each with those that go on where it ends.
+    pub(super) fn groups<'b>(passes: &'b [Pass<'a>]) -> impl Iterator<Item = &'b [Pass<'a>]> {
+        passes.chunk_by(|_, next| next.goes_on)
+    }
+
+    /// The passes of a group as one; `None` for a single one.
+    pub(super) fn joined(group: &[Pass<'a>]) -> Option<Self> {
+        let first = group.first().filter(|_| group.len() > 1)?;
+        let moves = group.iter().flat_map(|pass| pass.moves.iter().copied()).collect();
+        Some(Pass { moves, z: first.z, goes_on: false })
+    }
+
     /// The way of the cutter from above, and whether it comes back to within `gap` mm of its start.
     pub(super) fn chain(&self, gap: f64) -> ArcSpline {
         let spans: Vec<Span> = self.moves.iter().map(|m| m.span()).collect();

@@ -45,12 +45,19 @@ pub(super) fn judge<'a, 'b>(
 ) -> (Shape, Vec<&'b Pass<'a>>) {
     let mut comparison = Comparison::new(contours, asked);
     let mut others = Vec::new();
-    for pass in &cuts.passes {
-        let chain = pass.chain(comparison.tolerance / 100.0);
-        if !comparison.take(pass, &chain) {
-            others.push(pass);
-            if alone {
-                comparison.take_unfitting(pass, &chain);
+    for group in Pass::groups(&cuts.passes) {
+        let whole = Pass::joined(group);
+        let gap = comparison.tolerance / 100.0;
+        if whole.is_some_and(|whole| comparison.take(&whole, &whole.chain(gap))) {
+            continue;
+        }
+        for pass in group {
+            let chain = pass.chain(gap);
+            if !comparison.take(pass, &chain) {
+                others.push(pass);
+                if alone {
+                    comparison.take_unfitting(pass, &chain);
+                }
             }
         }
     }

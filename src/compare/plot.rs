@@ -105,7 +105,7 @@ impl Comparison {
         let _ = writeln!(
             svg,
             "<path class=\"drawn\" d=\"M{LEFT} {y:.1}H{RIGHT}\"/><text class=\"soft end\" x=\"{RIGHT}\" \
-             y=\"{:.1}\">as drawn</text>",
+             y=\"{:.1}\">as drawn {drawn:.0}</text>",
             y + 15.0
         );
         let mut curve = String::new();

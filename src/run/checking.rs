@@ -5,8 +5,9 @@ use super::prepare::Prepared;
 use super::siding::Sides;
 use crate::check::{self, Asked, Claim, Feeds, State, Verdict};
 use crate::error::{Error, Kind};
-use crate::gcode::Program;
+use crate::gcode::{self, Dialect, Program};
 use crate::job::{self, CheckJob, Clamp, Cutting, Job, Stock};
+use crate::machine::Machine;
 use crate::route::{Cut, Routed, Setup};
 use crate::sketch::{Contour, Sketch};
 
@@ -60,16 +61,66 @@ fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
     }
 }
 
-/// Checks a program that exists already, whoever wrote it.
+/// A program that exists already, read both ways where a switch of the controller decides whether lines that start
+/// with a slash are run or skipped.
+pub(super) struct Existing {
+    run: Program,
+    skipped: Option<Program>,
+}
+
+impl Existing {
+    /// What `text` says on the machine's controller.
+    pub(super) fn read(text: &str, machine: &Machine) -> Result<Self, Error> {
+        let words = gcode::read(text)?;
+        let dialect = |skip_optional| Dialect { skip_optional, ..Dialect::of(machine) };
+        let run = gcode::interpret(&words, &dialect(false))?;
+        let skipped = || {
+            gcode::interpret(&words, &dialect(true)).map_err(|error| {
+                let what = format!("with the lines that start with a slash skipped, {}", error.what);
+                Error { what, ..error }
+            })
+        };
+        let optional = words.blocks.iter().any(|block| block.optional);
+        Ok(Self { run, skipped: optional.then(skipped).transpose()? })
+    }
+}
+
+/// Checks a program that exists already, whoever wrote it: it must hold both ways.
 ///
 /// # Errors
 /// [`Kind::Refused`] when the drawing as it is laid out does not fit the stock.
-pub(super) fn check_existing(job: &CheckJob, program: &Program, sketch: &Sketch) -> Result<Verdict, Error> {
+pub(super) fn check_existing(job: &CheckJob, program: &Existing, sketch: &Sketch) -> Result<Verdict, Error> {
+    let asked = asked_of_existing(job, sketch)?;
+    let mut verdict = check::check(&program.run, sketch, &job.machine, &asked);
+    if let Some(skipped) = &program.skipped {
+        let skipped = check::check(skipped, sketch, &job.machine, &asked);
+        verdict.claims.push(holds_skipped(&skipped));
+        verdict.holds &= skipped.holds;
+    }
+    Ok(verdict)
+}
+
+/// The claim that all else holds with the lines that start with a slash skipped, of which `skipped` is the verdict.
+fn holds_skipped(skipped: &Verdict) -> Claim {
+    let failed: Vec<&Claim> = skipped.claims.iter().filter(|claim| claim.state == State::Fails).collect();
+    Claim {
+        name: "all else holds too with the lines that start with a slash skipped",
+        state: if failed.is_empty() { State::Holds } else { State::Fails },
+        value: Some(failed.len() as f64),
+        limit: Some(0.0),
+        least: false,
+        unit: "",
+        at: failed.first().and_then(|claim| claim.at),
+        note: failed.first().map(|claim| in_words(claim)).unwrap_or_default(),
+    }
+}
+
+fn asked_of_existing(job: &CheckJob, sketch: &Sketch) -> Result<Asked, Error> {
     let top = job.stock.top_mm();
     let contours = &sketch.contours[..];
     let placing = Placing::new(&job.layout, &job.stock, (contours, contours));
     placing.fits_stock()?;
-    let asked = Asked {
+    Ok(Asked {
         side: match job.side {
             job::Side::On => check::Side::On,
             job::Side::Inside => check::Side::Inside,
@@ -86,8 +137,7 @@ pub(super) fn check_existing(job: &CheckJob, program: &Program, sketch: &Sketch)
         lowest: job.depth_mm.map(|depth| top - depth),
         pass: job.pass_mm,
         ..Asked::new(job.tolerance)
-    };
-    Ok(check::check(program, sketch, &job.machine, &asked))
+    })
 }
 
 /// The clamps in the check's words.

@@ -2,9 +2,25 @@
 
 use super::{Part, checking, read_back};
 use crate::error::{Error, Kind};
-use crate::gcode::{Header, Program, write_parts};
+use crate::gcode::{self, Header, Program, write_parts};
 use crate::job::Job;
 use crate::toolpath::{Move, Toolpath};
+
+/// Lets the cutter go up and down again wherever what is cut in one go is longer than the controller's memory; tells
+/// where.
+pub(super) fn lift(job: &Job, toolpath: &mut Toolpath, header: &mut Header) -> Result<Option<String>, Error> {
+    let lifts = gcode::lift(toolpath, header, &job.machine)?;
+    let Some(first) = lifts.first() else { return Ok(None) };
+    let unit = job.machine.unit;
+    Ok(Some(format!(
+        "a cut is longer than the controller's memory: the cutter goes up and down again at {} (first at X {:.1} Y {:.1} \
+         {}), where the next part goes on; leave the work and every zero as they are between the parts",
+        if lifts.len() == 1 { "one place".into() } else { format!("{} places", lifts.len()) },
+        first.xy.x / unit.mm(),
+        first.xy.y / unit.mm(),
+        unit.symbol()
+    )))
+}
 
 /// The parts of a program whose `text` is longer than the controller's memory, each checked for what holds without the
 /// drawing, and all together for making the cuts of the whole `program`; none where the whole fits.

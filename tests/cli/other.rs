@@ -58,6 +58,32 @@ fn check_holds_what_post_wrote_and_refutes_what_was_changed() {
     assert_eq!(check("none.nc", &[]).status, 3);
 }
 
+/// A switch at the machine decides on lines that start with a slash: the program must hold both ways.
+#[test]
+fn check_holds_a_program_with_and_without_its_optional_lines() {
+    let shop = Shop::new();
+    let judge = |deep: &str, then: &str| {
+        let text = format!(
+            "G17 G21 G90 G94\nG0 Z5\nG0 X0 Y0\nS18000 M3\n/G1 Z-1 F500\n{deep}G1 Z-3 F500\nX20 F900\nY20\nX0\nY0\n\
+             G0 Z5\n{then}M5\nM30\n"
+        );
+        shop.put("p.nc", text);
+        shop.run(&["check", "p.nc", "--against", "square.csv", "--drawing-unit", "mm", "--depth", "3"])
+    };
+    let held = judge("", "/M9\n");
+    assert_eq!(held.status, 0, "{}{}", held.out, held.err);
+    for (deep, then, run_too) in [("/", "", false), ("", "/G1 X40 Z-1\n/G0 Z5\n", true)] {
+        let refuted = judge(deep, then);
+        assert_eq!(refuted.status, 1, "{}{}", refuted.out, refuted.err);
+        let failed: Vec<&str> = refuted.out.lines().filter(|line| line.starts_with("fails")).collect();
+        let by_skipping = failed.iter().any(|line| line.contains("lines that start with a slash skipped"));
+        assert_eq!(by_skipping, !run_too, "{failed:?}");
+        assert!(refuted.out.starts_with("checked against the drawing: does not hold\n"), "{}", refuted.out);
+    }
+    let odd = judge("", "/G77\n");
+    assert!(odd.status == 1 && odd.err.contains("p.nc, line 12: G77"), "{}", odd.err);
+}
+
 #[test]
 fn check_writes_its_verdict() {
     let shop = Shop::new();

@@ -70,6 +70,53 @@ fn a_program_longer_than_the_memory_is_numbered_parts_that_make_every_cut() {
     assert!(!shop.path("F.nc").exists(), "the whole stands nowhere");
 }
 
+/// A saw of so many teeth round a square of 400 mm: every vertex is a corner.
+fn saw(teeth: u32) -> String {
+    let mut text = String::new();
+    let side = teeth / 4;
+    let place = |k: u32| (400.0 * f64::from(k / 2 % side) / f64::from(side), f64::from(k % 2) * 1.5);
+    for k in 0..=8 * side {
+        let (along, in_by) = place(k);
+        let (x, y) = match k / (2 * side) % 4 {
+            0 => (along, in_by),
+            1 => (400.0 - in_by, along),
+            2 => (400.0 - along, 400.0 - in_by),
+            _ => (in_by, 400.0 - along),
+        };
+        writeln!(text, "{x:.3},{y:.3}").expect("a string takes it");
+    }
+    text
+}
+
+#[test]
+fn a_pass_longer_than_the_memory_goes_on_where_it_was_left() {
+    let shop = shop();
+    shop.put("SAW.csv", saw(2400));
+    let typed = ["post", "SAW.csv", "-o", "S.nc", "--report", "r.json", "--tolerance", "0.05mm"];
+    let ended = shop.run(&[&typed, &TYPED[..6]].concat());
+    assert_eq!(ended.status, 0, "{}", ended.err);
+    assert!(
+        ended.out.contains("goes up and down again") && ended.out.contains("next part goes on"),
+        "{}",
+        ended.out
+    );
+    let report: Value = serde_json::from_str(&shop.text("r.json")).expect("JSON");
+    let parts = report["program"]["parts"].as_array().expect("a list").len();
+    assert!(parts >= 2, "{parts}");
+    assert_eq!(report["check"]["holds"], true);
+    assert_eq!(report["program"]["starved_blocks"], 0);
+    // One after the other, as they are run, they are a program that holds.
+    let texts = (1..=parts).map(|k| shop.text(&format!("S-{k}.nc")));
+    let blocks = texts.map(|text| {
+        let lines = text.lines().filter(|line| !["%", "M30", "M5", "M0"].contains(line));
+        lines.map(|line| format!("{line}\n")).collect::<String>()
+    });
+    shop.put("whole.nc", blocks.collect::<String>() + "M5\nM30\n");
+    let check = ["check", "whole.nc", "--against", "SAW.csv", "--tolerance", "0.05mm", "--clearance", "5"];
+    let held = shop.run(&[&check, &TYPED[..6]].concat());
+    assert_eq!(held.status, 0, "{}{}", held.out, held.err);
+}
+
 #[test]
 fn a_program_that_fits_is_one_file() {
     let shop = shop();

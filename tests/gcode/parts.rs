@@ -1,7 +1,7 @@
 //! Programs for a controller that holds little.
 
-use ribband::gcode::write_parts;
-use ribband::toolpath::Toolpath;
+use ribband::gcode::{Mark, lift, write_parts};
+use ribband::toolpath::{Position, Toolpath};
 
 use crate::common::{Path, at, header, machine, understood};
 
@@ -49,12 +49,56 @@ fn parts_fit_the_memory_and_make_every_cut_once() {
 }
 
 #[test]
-fn a_contour_longer_than_the_memory_is_refused() {
+fn a_contour_longer_than_the_memory_is_refused_as_it_is() {
     let error = write_parts(&zigzags(1, 5000), &header(), &machine("old-controller")).expect_err("too long");
     insta::assert_snapshot!(error, @r"
     what is cut in one go from X 0.0 Y 0.0 mm is longer than the controller's 32768 bytes
-      a wider tolerance gives fewer blocks; fewer passes are shorter too
+      a wider tolerance gives fewer blocks
     ");
+}
+
+#[test]
+fn with_lifts_each_part_goes_on_where_the_one_before_it_ended() {
+    let old = machine("old-controller");
+    let meant = zigzags(1, 5000);
+    let (mut lifted, mut header) = (meant.clone(), header());
+    header.marks.push(Mark { before: 4990, text: "almost through".into() });
+    let places = lift(&mut lifted, &mut header, &old).expect("it can be lifted");
+    let parts = write_parts(&lifted, &header, &old).expect("each fits");
+    // Some parts end between the two passes, the others at a lift.
+    assert!(places.len() >= 2 && parts.len() <= places.len() + 2, "{} parts", parts.len());
+    let mut ends: Vec<Position> = Vec::new();
+    let mut cut = Vec::new();
+    for part in &parts {
+        assert!(part.text.len() <= 32768, "{} bytes", part.text.len());
+        let moves = understood(&part.text, &old).toolpath.moves;
+        let first = moves.iter().find(|m| !m.is_rapid()).expect("a cut");
+        if let Some(end) = ends.last().filter(|end| places.iter().any(|place| near(**end, *place))) {
+            assert!(
+                near(first.to, *end) && first.from.xy == first.to.xy,
+                "straight down to {end:?}: {first:?}"
+            );
+            assert!(first.from.z >= header.clearance && first.feed == Some(400.0), "{first:?}");
+            cut.extend(moves.iter().filter(|m| !m.is_rapid()).skip(1).copied());
+        } else {
+            cut.extend(moves.iter().filter(|m| !m.is_rapid()).copied());
+        }
+        let up = moves.last().expect("a move");
+        assert!(up.is_rapid() && up.to.z >= header.clearance, "it ends raised: {up:?}");
+        ends.push(moves.iter().rfind(|m| !m.is_rapid()).expect("a cut").to);
+    }
+    let want: Vec<_> = meant.moves.iter().filter(|m| !m.is_rapid()).collect();
+    assert_eq!(cut.len(), want.len(), "every cut once");
+    assert!(cut.iter().zip(&want).all(|(cut, want)| near(cut.to, want.to) && cut.feed == want.feed));
+    assert_eq!(parts.iter().filter(|part| part.text.contains("almost through")).count(), 1);
+    let mut same = zigzags(3, 900);
+    assert_eq!(lift(&mut same, &mut header, &old).expect("nothing to do"), []);
+    assert_eq!(same, zigzags(3, 900));
+}
+
+/// True for one place within the last place of a program.
+fn near(a: Position, b: Position) -> bool {
+    a.xy.distance(b.xy) < 0.001 && (a.z - b.z).abs() < 0.001
 }
 
 #[test]

@@ -4,6 +4,7 @@ mod arc;
 mod count;
 mod decimal;
 mod header;
+mod lift;
 mod motion;
 mod parts;
 mod pen;
@@ -15,6 +16,7 @@ use crate::toolpath::Toolpath;
 
 pub use count::blocks_of;
 pub use header::{Header, Mark};
+pub use lift::lift;
 pub use parts::{Part, write_parts};
 pub use run::{Amid, run};
 
