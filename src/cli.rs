@@ -1,6 +1,7 @@
 //! The command line: what was typed, carried out, and told.
 
 mod args;
+mod batch;
 mod check;
 mod compare;
 mod condense;
@@ -35,7 +36,7 @@ pub fn main(typed: impl IntoIterator<Item = OsString>) -> u8 {
         }
     };
     match carry_out(arguments.command) {
-        Ok(()) => 0,
+        Ok(status) => status,
         Err(error) => {
             tell_error(&error);
             error.exit_status()
@@ -43,10 +44,11 @@ pub fn main(typed: impl IntoIterator<Item = OsString>) -> u8 {
     }
 }
 
-fn carry_out(command: Command) -> Result<(), Error> {
-    match command {
-        Command::Post(typed) => post::post(&typed),
-        Command::Measure(typed) => measure::measure(&typed),
+/// Carries out one command. Its exit status is not 0 where some of several drawings failed, which was told then.
+fn carry_out(command: Command) -> Result<u8, Error> {
+    let done = match command {
+        Command::Post(typed) => return post::posts(&typed),
+        Command::Measure(typed) => return measure::measure(&typed),
         Command::Check(typed) => check::check(&typed),
         Command::Preview(typed) => preview::preview(&typed),
         Command::Condense(typed) => condense::condense(&typed),
@@ -57,7 +59,8 @@ fn carry_out(command: Command) -> Result<(), Error> {
         Command::Cautions => print(&cautions::list()),
         Command::Completions { shell } => generate::completions(shell),
         Command::Manual => generate::manual(),
-    }
+    };
+    done.map(|()| 0)
 }
 
 /// Where a report goes, where one was asked for; refused now where writing would be refused later.

@@ -40,6 +40,24 @@ pub fn summary(report: &Report) -> String {
     text
 }
 
+/// The summary of `report` among others: the drawing, its program, and what the person at the machine should know.
+pub fn in_short(report: &Report) -> String {
+    let show = Show::new(&report.setup);
+    let mut text = format!(
+        "{}: {}\n  {}; {}; {}\n",
+        report.drawing.file,
+        program(report),
+        part(report, show),
+        deviation(report, show),
+        time(report)
+    );
+    for warning in &report.warnings {
+        // A string takes everything that is written to it.
+        let _ = writeln!(text, "  {warning}");
+    }
+    text
+}
+
 /// Shows lengths in the machine's unit.
 #[derive(Clone, Copy)]
 struct Show(LengthUnit);

@@ -26,8 +26,8 @@ const EXIT_STATUSES: &str = "Exit status:
 /// The commands.
 #[derive(Subcommand, Debug)]
 pub(super) enum Command {
-    /// Write the router program for a drawing
-    Post(Post),
+    /// Write the router program for a drawing, or for each of several
+    Post(Posts),
     /// Say what is in a drawing: size, contours, flaws, and the tolerance it supports
     Measure(Measure),
     /// Check any program against a drawing and a machine
@@ -79,6 +79,16 @@ Examples:
 /// `ribband post` as typed.
 #[derive(Args, Debug)]
 #[command(after_help = POST_EXAMPLES)]
+pub(super) struct Posts {
+    #[command(flatten)]
+    pub(super) first: Post,
+    /// Further drawings, each done or refused by itself; -o, --report and --setup-sheet name folders then
+    #[arg(value_name = "DRAWING")]
+    pub(super) more: Vec<PathBuf>,
+}
+
+/// What is planned for one drawing, as typed.
+#[derive(Args, Clone, Debug)]
 pub(super) struct Post {
     /// The drawing: SVG, DXF or a list of points
     pub(super) drawing: PathBuf,
@@ -102,6 +112,9 @@ pub(super) struct Post {
 pub(super) struct Measure {
     /// The drawing: SVG, DXF or a list of points
     pub(super) drawing: PathBuf,
+    /// Further drawings, each by itself; --report names a folder then
+    #[arg(value_name = "DRAWING")]
+    pub(super) more: Vec<PathBuf>,
     #[command(flatten)]
     pub(super) settings: DrawingArgs,
     /// Write the figures in JSON
@@ -197,5 +210,6 @@ pub(super) struct CondenseOutputs {
 
 const POST_EXAMPLES: &str = "Examples:
   ribband post sign.dxf --depth 3mm
+  ribband post sign.dxf blade.svg --depth 3mm -o programs
   ribband post blade.svg --depth 6 --tolerance 0.05mm --cutter 3.175mm --feed 1200mm/min -o blade.nc
   ribband post template.csv --drawing-unit mm --depth 1/4in --machine inch-gantry --report template.json";

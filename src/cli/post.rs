@@ -1,40 +1,88 @@
 //! `ribband post`: from a drawing to a program on disk.
 
-use super::args::Post;
+use std::collections::HashMap;
+use std::path::{Path, PathBuf};
+
+use super::args::{Post, Posts};
 use super::outputs::Targets;
 use super::progress::Bar;
-use super::{job_file, print, tell};
+use super::{batch, job_file, print, tell};
 use crate::cautions;
 use crate::error::{Error, Kind};
 use crate::files::{self, Staged, Target};
-use crate::job::Job;
+use crate::job::{Job, Outputs};
 use crate::machine::Machine;
+use crate::report::Report;
 use crate::run::{self, Part, Plan, Source};
-use crate::summary::summary;
+use crate::summary::{in_short, summary};
 
-/// Carries out `ribband post`.
-pub(super) fn post(typed: &Post) -> Result<(), Error> {
-    let job = Job::new(&typed.settings, &job_file(typed.job.as_deref())?)?;
+/// Carries out `ribband post`; returns the exit status.
+pub(super) fn posts(typed: &Posts) -> Result<u8, Error> {
+    let job = Job::new(&typed.first.settings, &job_file(typed.first.job.as_deref())?)?;
+    if typed.more.is_empty() { post(&typed.first, &job).map(|()| 0) } else { each(typed, &job) }
+}
+
+/// One drawing.
+fn post(typed: &Post, job: &Job) -> Result<(), Error> {
+    let (told, on_stdout) = write(typed, job)?;
+    if typed.quiet {
+        return Ok(());
+    }
+    let text = format!("{}\nCautions\n{}", summary(&told), cautions::list());
+    if on_stdout {
+        tell(&text);
+        return Ok(());
+    }
+    print(&text)
+}
+
+/// Several drawings, each by itself.
+fn each(typed: &Posts, job: &Job) -> Result<u8, Error> {
+    let first = &typed.first;
+    let drawings: Vec<&Path> =
+        std::iter::once(&first.drawing).chain(&typed.more).map(PathBuf::as_path).collect();
+    let alone = |drawing: &Path| {
+        let outputs = &first.outputs;
+        let place = |folder: &Option<PathBuf>, ending: &str, option: &str| {
+            batch::place(folder.as_deref(), drawing, ending, option)
+        };
+        let place_if = |folder: &Option<PathBuf>, ending: &str, option: &str| {
+            folder.is_some().then(|| place(folder, ending, option)).transpose()
+        };
+        let ending = job.machine.files.ending.trim_start_matches('.');
+        let output = Some(place(&outputs.output, ending, "-o")?);
+        let report = place_if(&outputs.report, "json", "--report")?;
+        let setup_sheet = place_if(&first.setup_sheet, "html", "--setup-sheet")?;
+        let outputs = Outputs { output, report, ..outputs.clone() };
+        Ok(Post { drawing: drawing.to_owned(), outputs, setup_sheet, quiet: true, ..first.clone() })
+    };
+    let posts = drawings.iter().map(|drawing| alone(drawing)).collect::<Result<Vec<Post>, Error>>()?;
+    let outputs: Vec<PathBuf> = posts.iter().filter_map(|post| post.outputs.output.clone()).collect();
+    batch::apart(&drawings, &outputs)?;
+    let posts: HashMap<&Path, &Post> = drawings.iter().copied().zip(&posts).collect();
+    let status = batch::each(&drawings, first.quiet, |drawing| {
+        let (told, _) = write(posts[drawing], job)?;
+        Ok(in_short(&told))
+    })?;
+    if !first.quiet {
+        print(&format!("\nCautions\n{}", cautions::list()))?;
+    }
+    Ok(status)
+}
+
+/// Plans one drawing and writes what was asked for; true when some of it went to standard output.
+fn write(typed: &Post, job: &Job) -> Result<(Report, bool), Error> {
     let ending = job.machine.files.ending.trim_start_matches('.');
     let program = Target::new(typed.outputs.output.as_deref(), &typed.drawing, ending);
     let targets = Targets::new(typed, program, "program")?;
     named_for(targets.main(), &job.machine)?;
     let name = typed.drawing.display().to_string();
     let bytes = files::read(&typed.drawing)?;
-    let plan = run::plan(&job, Source { name: &name, bytes: &bytes }, &Bar::new(typed.quiet))?;
-    let told = run::report(&job, &plan, &name, &targets.main().name());
+    let plan = run::plan(job, Source { name: &name, bytes: &bytes }, &Bar::new(typed.quiet))?;
+    let told = run::report(job, &plan, &name, &targets.main().name());
     let staged = staged_programs(&plan, targets.main(), &job.machine, typed.outputs.overwrite)?;
-    targets.write_staged(staged, &run::scene(&job, &plan, &told))?;
-
-    if typed.quiet {
-        return Ok(());
-    }
-    let text = format!("{}\nCautions\n{}", summary(&told), cautions::list());
-    if targets.use_stdout() {
-        tell(&text);
-        return Ok(());
-    }
-    print(&text)
+    targets.write_staged(staged, &run::scene(job, &plan, &told))?;
+    Ok((told, targets.use_stdout()))
 }
 
 /// The program's file, or those of its parts, ready to appear.

@@ -1,6 +1,7 @@
 //! The command line from outside: statuses, messages, files.
 
 mod bad;
+mod batch;
 mod beside;
 mod condensing;
 mod demo;
