@@ -345,13 +345,13 @@ impl Setup {
         })
     }
 
-    /// Each clamp in words, likewise.
+    /// Each clamp in words with its number, likewise.
     pub fn clamp_words(&self, show: impl Fn(f64) -> String) -> Vec<String> {
-        let words = |Clamp { box_mm: [x0, y0, x1, y1], height_mm }: &Clamp| {
+        let words = |(number, Clamp { box_mm: [x0, y0, x1, y1], height_mm }): (usize, &Clamp)| {
             let [x0, y0, x1, y1, height] = [*x0, *y0, *x1, *y1, *height_mm].map(&show);
-            format!("X {x0} to {x1}, Y {y0} to {y1}, {height} {} above the stock", self.unit)
+            format!("{number}: X {x0} to {x1}, Y {y0} to {y1}, {height} {} above the stock", self.unit)
         };
-        self.clamps.iter().map(words).collect()
+        (1..).zip(&self.clamps).map(words).collect()
     }
 }
 

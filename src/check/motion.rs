@@ -179,7 +179,10 @@ impl<'a> Walk<'a> {
         let axes = [(extent.width(), travel.x), (extent.height(), travel.y), (height, travel.z)];
         let (size, limit) =
             axes.into_iter().fold((0.0, travel.x), |a, b| if b.0 / b.1 > a.0 / a.1 { b } else { a });
-        let claim = Claim::at_most(TRAVEL, "mm", Worst { value: size, at: None }, limit, self.slack);
+        let mut claim = Claim::at_most(TRAVEL, "mm", Worst { value: size, at: None }, limit, self.slack);
+        if self.asked.zero_at.is_none() {
+            claim.note = "by size alone: where zero lies on the machine was not said".into();
+        }
         claim.because("the moves are larger than the machine")
     }
 

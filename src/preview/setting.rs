@@ -36,26 +36,20 @@ pub(super) fn clamps(scene: &Scene, letter: f64) -> String {
         let place = rect(clamp.box_mm);
         let [a, b, c, d] = corners(place);
         let crossed = frame(place).into_iter().chain([Span::line(a, c), Span::line(b, d)]);
-        let words = words(setup, number);
-        let at = Point::new(place.center().x, place.y1) + Vec2::new(0.0, 0.4 * letter);
+        let told = setup.clamp_words(|mm| shown(setup, mm));
+        let line = |y: f64, said: &str| {
+            let (x, y, size) = (mm(place.center().x), mm(-y), mm(letter));
+            format!("<text text-anchor=\"middle\" x=\"{x}\" y=\"{y}\" font-size=\"{size}\">{said}</text>")
+        };
         format!(
-            "<g><title>{}</title>{}<text text-anchor=\"middle\" x=\"{}\" y=\"{}\" font-size=\"{}\">clamp {number}, {} \
-             high</text></g>\n",
-            escaped(&words),
+            "<g><title>clamp {}</title>{}{}{}</g>\n",
+            escaped(told.get(number - 1).map_or("", String::as_str)),
             paths(crossed, "clamp"),
-            mm(at.x),
-            mm(-at.y),
-            mm(letter),
-            length(clamp.height_mm, setup.unit == "in")
+            line(place.y1 + 0.4 * letter, &format!("clamp {number}")),
+            line(place.y0 - 1.1 * letter, &format!("{} high", length(clamp.height_mm, setup.unit == "in")))
         )
     };
     (1..).zip(&setup.clamps).map(drawn).collect()
-}
-
-/// Clamp `number` in words.
-fn words(setup: &Setup, number: usize) -> String {
-    let told = setup.clamp_words(|mm| shown(setup, mm));
-    told.get(number - 1).map_or_else(String::new, |told| format!("clamp {number}: {told}"))
 }
 
 /// A length in the machine's unit, without it.
@@ -64,7 +58,8 @@ pub(super) fn shown(setup: &Setup, mm: f64) -> String {
     unit.split(' ').next().unwrap_or_default().to_owned()
 }
 
-/// Zero, stock, bed and clamps in words, each under its term: as far as they are known, and of the clamps so many.
+/// Zero, stock, bed and clamps in words, each under its term: as far as they are known, and of the clamps so many, each on
+/// a line of its own.
 pub(super) fn terms(setup: &Setup, clamps: usize) -> Vec<(&'static str, String)> {
     let show = |mm: f64| shown(setup, mm);
     let mut told = setup.clamp_words(show);
@@ -72,7 +67,7 @@ pub(super) fn terms(setup: &Setup, clamps: usize) -> Vec<(&'static str, String)>
         let more = told.split_off(clamps).len();
         told.push(format!("and {more} more in the program's opening comments"));
     }
-    let clamps = if told.is_empty() { "none declared".into() } else { told.join("; ") };
+    let clamps = if told.is_empty() { "none declared".into() } else { told.join("\n") };
     let mut terms = vec![
         ("Zero of X and Y", setup.origin.words().to_owned()),
         ("Zero of Z", setup.zero.words().to_owned()),

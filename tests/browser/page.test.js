@@ -277,7 +277,7 @@ describe("what it does", () => {
     assert.deepEqual(words, [
       "the lower left corner of the stock", "the top of the stock",
       "320 x 80 mm, 12 mm thick, its lower left corner at X 0 Y 0 from zero", "the bed is not cut",
-      "X 10 to 40, Y 50 to 70, 4 mm above the stock",
+      "1: X 10 to 40, Y 50 to 70, 4 mm above the stock",
     ]);
     // All of the stock is in sight at first.
     const [left, top, width, height] = await sight(page);

@@ -82,10 +82,11 @@ test("the sheet draws and tells stock, zero and clamps", async () => {
   const { page, heard, close } = await open(browser, made.sheet);
   const pages = await printed(page, "clamped", "A4");
   assert.ok(pages.length <= 2);
-  const text = flat(pages.join(" "));
+  const text = flat(await page.textContent(".sheet"));
+  for (const label of ["clamp 1", "clamp 2", "4 mm high"]) assert.ok(flat(pages[0]).includes(label), label);
   for (const said of [
     "the lower left corner of the stock", "160 x 120 mm, 11.8 to 12.2 mm thick", "the bed is not cut",
-    "X 0 to 12, Y 40 to 60, 4 mm above the stock", "clamp 1, 4 mm high", "clamp 2, 4 mm high",
+    "1: X 0 to 12, Y 40 to 60, 4 mm above the stock",
   ]) assert.ok(text.includes(said), `${said} in ${text}`);
   const box = selector => page.$eval(selector, path => {
     const { x, y, width, height } = path.getBBox();

@@ -114,6 +114,9 @@ fn travel_is_judged_by_place_once_the_stock_has_one() {
         assert!(ended.out.contains("fails       the moves fit the machine's travel"), "{at}: {}", ended.out);
         assert!(ended.out.contains("leave the machine where the stock lies"), "{at}: {}", ended.out);
     }
+    let by_size = shop.run(&["check", "out.nc", "--against", "bracket.csv", "--drawing-unit", "mm"]);
+    let note = "(by size alone: where zero lies on the machine was not said)";
+    assert!(by_size.out.contains(note) && !check("0,0").out.contains(note), "{}", by_size.out);
     let ended = shop.post("bracket.csv --depth 3mm --origin stock --stock 200x150 --stock-at 1171,0");
     assert_eq!(ended.status, 1, "{}", ended.err);
 }

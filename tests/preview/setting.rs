@@ -28,7 +28,10 @@ fn stock_and_clamps_are_drawn_where_they_lie_and_told_in_words() {
     for (drawn, start) in [(&page, "<g id=\"layer-stock\">"), (&still(&scene), "<g id=\"stock\">")] {
         assert!(layer(drawn, start).contains(stock), "{}", layer(drawn, start));
         let clamps = layer(drawn, &start.replace("stock", "clamps"));
-        assert!(clamps.contains(clamp) && clamps.contains(">clamp 1, 4 mm high<"), "{clamps}");
+        assert!(
+            clamps.contains(clamp) && clamps.contains(">clamp 1<") && clamps.contains(">4 mm high<"),
+            "{clamps}"
+        );
         assert!(
             clamps.contains("<title>clamp 1: X 0 to 20, Y 30 to 50, 4 mm above the stock</title>"),
             "{clamps}"
@@ -48,7 +51,7 @@ fn stock_and_clamps_are_drawn_where_they_lie_and_told_in_words() {
             "300 x 80 mm, 5.9 to 6.1 mm thick, its lower left corner at X 0 Y 0 from zero, on the machine at X 100 Y 50",
         ),
         ("Bed", "the bed is not cut"),
-        ("Clamps", "X 0 to 20, Y 30 to 50, 4 mm above the stock"),
+        ("Clamps", "1: X 0 to 20, Y 30 to 50, 4 mm above the stock"),
     ] {
         for shown in [&page, &sheet] {
             assert!(shown.contains(&format!("<dt>{term}</dt><dd>{told}</dd>")), "{term}: {told}");
