@@ -1,6 +1,6 @@
 //! What the machine is set up with, from above: the stock and the clamps that were declared.
 
-use kurbo::{Point, Rect, Vec2};
+use kurbo::{Point, Rect};
 
 use super::Scene;
 use super::figures::length;

@@ -181,11 +181,15 @@ fn ticks(scene: &Scene) -> String {
         let drawing = &scene.report.drawing;
         format!(", {} x {}", show(drawing.width_mm), show(drawing.height_mm))
     };
-    let list = [
+    let clamps =
+        (!setup.clamps.is_empty()).then(|| "Clamps stand as drawn, no nearer and no higher".to_owned());
+    let before = [
         "Spindle warmed up as its maker says".to_owned(),
         format!("Program {} loaded, {} bytes", shorter(&program.file, 60), program.bytes),
         format!("Cutter {} fitted: sharp, clean collet, tight", show(setup.cutter_mm)),
         "Stock flat and held: it can neither lift nor slide, to the end of the last pass".to_owned(),
+    ];
+    let after = [
         format!("X and Y zero set at {}, checked a second time", setup.origin.words()),
         format!("Z zero set at {}, checked a second time", setup.zero.words()),
         format!("X {x0} to {x1} and Y {y0} to {y1} are on the stock and clear of every clamp and screw"),
@@ -195,7 +199,8 @@ fn ticks(scene: &Scene) -> String {
         "Cut, staying with the machine".to_owned(),
         format!("Power off before touching the cutter; part measured{measured}"),
     ];
-    let items: String = list.iter().map(|item| format!("<li>{item}</li>\n")).collect();
+    let items: String =
+        before.iter().chain(&clamps).chain(&after).map(|item| format!("<li>{item}</li>\n")).collect();
     format!("<h2>In this order</h2>\n<ol class=\"ticks\">\n{items}</ol>\n")
 }
 

@@ -43,6 +43,7 @@ fn stock_and_clamps_are_drawn_where_they_lie_and_told_in_words() {
             "aria-label=\"The part from above with its size and zero, on its stock, with a clamp\""
         )
     );
+    assert!(sheet.contains("<li>Clamps stand as drawn"), "a box to tick");
     for (term, told) in [
         ("Zero of X and Y", "the lower left corner of the stock"),
         ("Zero of Z", "the top of the stock"),
