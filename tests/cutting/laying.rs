@@ -113,7 +113,7 @@ fn uncut_corners_of_copies_are_told_once_in_the_drawing_s_coordinates() {
     let (_, once) = shop.done(line);
     let (_, copies) = shop.done(&format!("{line} --turn 180 --copies 2x2 --gap 15mm"));
     let place = |told: &Value| {
-        let words = told.as_str().expect("words").replace('X', "").replace('Y', "");
+        let words = told.as_str().expect("words").replace(['X', 'Y'], "");
         words.split_whitespace().filter_map(|word| word.parse::<f64>().ok()).collect::<Vec<_>>()
     };
     let (once, copies) = (uncut(&once), uncut(&copies));
