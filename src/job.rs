@@ -1,5 +1,6 @@
 //! What is asked for: settings as typed, merged from all their sources in one place, and judged before any work.
 
+mod accuracy;
 mod bounds;
 mod checking;
 mod condensing;
@@ -20,6 +21,7 @@ use crate::files;
 use crate::machine::{Cutter, Machine, RetractBy};
 use crate::num::{Length, LengthUnit, Tolerance};
 
+pub use accuracy::{AccuracyArgs, Moves, ToleranceSide};
 pub use checking::{CheckArgs, CheckJob};
 pub use condensing::{CondenseArgs, CondenseJob};
 pub use cutting::{Cutting, TabNumber, Tabs};
@@ -40,6 +42,12 @@ pub struct Job {
     pub drawing: DrawingSettings,
     /// The tolerance asked for; `None` for the default.
     pub tolerance: Option<Tolerance>,
+    /// Where the tolerance may be used.
+    pub tolerance_side: ToleranceSide,
+    /// What curves are written as.
+    pub moves: Moves,
+    /// True when curvature along trace, fair curve and path is shown.
+    pub curvature: bool,
     /// The cutter's diameter.
     pub cutter_mm: f64,
     /// The cutter's entry in the profile, if it has one.
@@ -126,10 +134,14 @@ impl Job {
         {
             return Err(too_close(layout.gap_mm, needed_mm));
         }
+        all.accuracy.judge(&machine, std::iter::once(&cutting).chain(layers.values().flatten()))?;
         Ok(Self {
             drawing: drawing(&all.drawing, mm)?,
             layout,
             tolerance: tolerance.and_then(Tolerance::new),
+            tolerance_side: all.accuracy.tolerance_side.unwrap_or_default(),
+            moves: all.accuracy.moves.unwrap_or_default(),
+            curvature: all.accuracy.curvature == Some(true),
             cutter_mm,
             cutter,
             allowance_mm,
@@ -138,6 +150,22 @@ impl Job {
             stock,
             machine,
         })
+    }
+
+    /// True when the path is never to be on the side of the line that is kept.
+    pub fn keeps_to_waste(&self) -> bool {
+        self.tolerance_side == ToleranceSide::Waste
+    }
+
+    /// How much further than its radius the cutter's centre is meant to keep from the edge, in mm, where it cuts on one
+    /// side alone: for a cut on the line as much less.
+    pub fn edge_mm(&self) -> f64 {
+        if self.cuts_on_line_only() { -self.cutter_mm / 2.0 } else { self.allowance_mm }
+    }
+
+    /// True when no contour is cut beside its line.
+    pub fn cuts_on_line_only(&self) -> bool {
+        self.cuttings().all(|cutting| cutting.side == Side::On)
     }
 
     /// All ways in which contours may be cut.

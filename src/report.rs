@@ -8,7 +8,7 @@ use std::collections::BTreeMap;
 use schemars::JsonSchema;
 use serde::Serialize;
 
-use crate::job::{Origin, Zero};
+use crate::job::{Origin, ToleranceSide, Zero};
 
 /// A whole report.
 #[derive(Clone, Debug, Serialize, JsonSchema)]
@@ -17,6 +17,9 @@ pub struct Report {
     pub ribband: String,
     /// The tolerance the program was made to.
     pub tolerance_mm: f64,
+    /// `waste` where the path was held to the waste side; none where both sides were allowed.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub tolerance_side: Option<ToleranceSide>,
     /// What was drawn.
     pub drawing: Drawing,
     /// The contours that were cut, in the order of the drawing.
@@ -79,10 +82,39 @@ pub struct Contour {
     pub lines: usize,
     /// The arcs of that path.
     pub arcs: usize,
+    /// The cubic moves of that path; none where curves are written as arcs. Lines and arcs are then those that stood for
+    /// them while the path was planned.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub cubics: Option<usize>,
     /// The certified deviation between that path and the contour.
     pub deviation_mm: f64,
+    /// How trace, fair curve and path bend, where that was asked for.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub curvature: Option<Curvature>,
     /// What the cutter cannot reach, one sentence each.
     pub uncut: Vec<String>,
+}
+
+/// How a contour bends: as traced, as faired, as cut.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Curvature {
+    /// The trace: the turn at each vertex over half of the lengths beside it.
+    pub trace: Profile,
+    /// The least-bending curve within the tolerance, by the length of the trace.
+    pub fair: Profile,
+    /// The path, which steps at its joints.
+    pub path: Profile,
+}
+
+/// Curvature along a curve, place by place.
+#[derive(Clone, Debug, Default, Serialize, JsonSchema)]
+pub struct Profile {
+    /// The integral of the squared curvature, corners left out, in 1/mm.
+    pub bending: f64,
+    /// The length from the start to each place.
+    pub along_mm: Vec<f64>,
+    /// The curvature there in 1/mm, positive for a left turn.
+    pub per_mm: Vec<f64>,
 }
 
 /// What the machine must be set up as.
@@ -367,6 +399,16 @@ impl Layout {
             }),
         ];
         parts.into_iter().flatten().collect::<Vec<_>>().join(", ")
+    }
+}
+
+impl Profile {
+    /// Adds a place; none where the curvature is not a number.
+    pub(crate) fn note(&mut self, along_mm: f64, per_mm: f64) {
+        if per_mm.is_finite() {
+            self.along_mm.push(along_mm);
+            self.per_mm.push(per_mm);
+        }
     }
 }
 

@@ -2,7 +2,10 @@
 
 mod checking;
 mod clock;
+mod curvature;
+mod curving;
 mod cutting;
+mod fairing;
 mod feeding;
 mod header;
 mod placing;
@@ -22,6 +25,7 @@ use sha2::{Digest, Sha256};
 use crate::check::Verdict;
 use crate::clean::{Cleaned, Roughness};
 use crate::error::Error;
+use crate::fair;
 use crate::feed::{self, Limits, Times};
 use crate::fit::{self, Fitted};
 use crate::gcode::{self, Dialect, Header, Program};
@@ -29,13 +33,14 @@ use crate::job::{CheckJob, DrawingSettings, Job};
 use crate::machine::Machine;
 use crate::measure::{self, Measurement};
 use crate::num::Tolerance;
-use crate::preview::Scene;
+use crate::preview::{Bend, Scene};
 use crate::read;
 use crate::report::{self, Report};
 use crate::route::{self, Routed, Routing, Setup};
 use crate::sketch::{Contour, Sketch};
 use checking::Intended;
 use clock::Clock;
+use fairing::Cubics;
 use placing::Placing;
 use prepare::prepare;
 
@@ -63,8 +68,14 @@ pub struct Plan {
     pub part: Rect,
     /// The tolerance worked to.
     pub tolerance: Tolerance,
-    /// The path of each contour, in the drawing's coordinates.
+    /// The fair curve of each contour, in the drawing's coordinates, where it is shown or written; else none.
+    pub faired: Vec<fair::Outline>,
+    /// The path of each contour, in the drawing's coordinates; where cubic moves are written, the arcs that stood for them.
     pub fitted: Vec<Fitted>,
+    /// How many cubic moves there are on the path of each contour; none where arcs are written.
+    pub cubics: Vec<usize>,
+    /// How the fair curves bend, in the program's coordinates, copy by copy, where that is shown; else none.
+    pub bends: Vec<Bend>,
     /// The contours as they are drawn, in the program's coordinates, copy by copy.
     pub drawn: Vec<Contour>,
     /// The box around the finished parts of all copies, in the program's coordinates.
@@ -134,7 +145,9 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let contours = &prepared.cleaned.contours;
     let sides = siding::sides(job, &prepared)?;
     let fitting = prepare::left_for_fitting(job, &prepared)?;
-    let fitted = clock.time("fit", || fit(contours, fitting, progress));
+    let faired = clock.time("fair", || fairing::fair(job, &prepared, fitting))?;
+    let cubics = fairing::cubics(job, &faired, fitting);
+    let fitted = clock.time("fit", || fit(contours, &cubics, fitting, progress));
 
     let setup = cutting::setup(job, &placing);
     let sided = clock
@@ -144,6 +157,7 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
 
     let sha256 = digest(source.bytes);
     let mut header = header::header(job, source.name, (prepared.tolerance, placing.stock), &setup, &sha256);
+    header.curves = curving::curves(&routing.toolpath, &fairing::routed(&cubics, &sided.routed, &placing));
     let feeds = clock.time("feed", || feeding::suit(&mut routing.toolpath, &header, job));
     let lifts = splitting::lift(job, &mut routing.toolpath, &mut header)?;
     let text = clock.time("write", || gcode::write(&routing.toolpath, &header, &job.machine))?;
@@ -157,19 +171,13 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let limits = Limits::of(&job.machine);
     let times = clock.time("time", || feed::time(&program.toolpath, &limits));
     let highest_override = clock.time("override", || feed::highest_override(&program.toolpath, &limits));
-    // Both texts have the same lines but for their motion.
-    let still = text.lines().count() - program.motion_blocks;
-    let as_drawn = clock.time("as drawn", || as_drawn(job, contours, (&setup, &header, &placing), still))?;
-    let roughness = clock.time("measure", || prepare::roughness(contours));
-    let mut warnings = prepared.warnings;
-    warnings.extend(sides.notes);
-    warnings.extend(sided.notes);
-    warnings.extend(routing.notes.iter().cloned());
-    warnings.extend(placing.over_the_edge(&routing.toolpath, job.cutter_mm));
-    warnings.extend(feeds);
-    warnings.extend(lifts);
-    once_each(&mut warnings);
+    let meant = (&setup, &header, &placing);
+    let as_drawn = clock.time("as drawn", || as_drawn(job, contours, meant, (&text, &program)))?;
+    let over = placing.over_the_edge(&routing.toolpath, job.cutter_mm);
+    let late = over.into_iter().chain(feeds).chain(lifts).collect();
+    let notes = [prepared.warnings, sides.notes, sided.notes, routing.notes.clone(), late];
     Ok(Plan {
+        roughness: clock.time("measure", || prepare::roughness(contours)),
         drawn: placing.drawn(&prepared.sketch.contours),
         parts_box: placing.parts,
         stock: placing.stock,
@@ -177,7 +185,9 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
         cleaned: prepared.cleaned,
         part: prepared.part,
         tolerance: prepared.tolerance,
-        roughness,
+        cubics: cubics.iter().map(Cubics::count).collect(),
+        bends: curvature::fair_bends(job, &faired, &placing),
+        faired,
         fitted,
         routed: sided.routed,
         routing,
@@ -189,7 +199,7 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
         highest_override,
         as_drawn,
         sha256,
-        warnings,
+        warnings: once_each(notes.concat()),
         timings_ms: clock.times(),
     })
 }
@@ -199,12 +209,15 @@ fn as_drawn(
     job: &Job,
     contours: &[Contour],
     (setup, header, placing): (&Setup, &Header, &Placing),
-    still: usize,
+    (text, program): (&str, &Program),
 ) -> Result<AsDrawn, Error> {
+    // Both texts have the same lines but for their motion.
+    let still = text.lines().count() - program.motion_blocks;
     // It is never run: no clamp is in its way.
     let setup = Setup { keep_outs: Vec::new(), ..setup.clone() };
     let toolpath = route::route(&cutting::as_drawn(job, contours, placing), &setup)?.toolpath;
-    let text = gcode::write(&toolpath, header, &job.machine)?;
+    let header = Header { curves: Vec::new(), ..header.clone() };
+    let text = gcode::write(&toolpath, &header, &job.machine)?;
     let motion_blocks = text.lines().count() - still;
     Ok(AsDrawn { motion_blocks, times: feed::time(&toolpath, &Limits::of(&job.machine)) })
 }
@@ -242,13 +255,23 @@ pub fn scene<'a>(job: &Job, plan: &'a Plan, report: &'a Report) -> Scene<'a> {
 }
 
 /// Drops what was said before: copies are alike.
-fn once_each(told: &mut Vec<String>) {
+fn once_each(mut told: Vec<String>) -> Vec<String> {
     let mut said = HashSet::new();
     told.retain(|sentence| said.insert(sentence.clone()));
+    told
 }
 
-/// Every contour replaced by its path, in the contours' order however many cores work on them.
-fn fit(contours: &[Contour], tolerance: Tolerance, progress: &dyn Progress) -> Vec<Fitted> {
+/// Every contour replaced by its path, in the contours' order however many cores work on them; by the arcs that stand
+/// for its cubics where those are written.
+fn fit(
+    contours: &[Contour],
+    cubics: &[Cubics],
+    tolerance: Tolerance,
+    progress: &dyn Progress,
+) -> Vec<Fitted> {
+    if !cubics.is_empty() {
+        return cubics.iter().map(|cubics| cubics.fitted.clone()).collect();
+    }
     progress.begin(contours.iter().map(|contour| contour.path.vertices.len()).sum());
     let fit = |contour: &Contour| {
         let fitted = fit::fit(&contour.path, tolerance);

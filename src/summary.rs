@@ -3,7 +3,7 @@
 use std::fmt::Write;
 
 use crate::num::LengthUnit;
-use crate::report::{Check, Claim, Condensed, Layout, Report, Setup, State};
+use crate::report::{Check, Claim, Condensed, Contour, Layout, Report, Setup, State};
 
 /// The summary of `report`, in the machine's own unit, with a line end.
 pub fn summary(report: &Report) -> String {
@@ -248,13 +248,16 @@ fn cutter(setup: &Setup, show: Show) -> String {
 
 fn blocks(report: &Report) -> String {
     let program = &report.program;
-    let (lines, arcs) = report.contours.iter().fold((0, 0), |sum, c| (sum.0 + c.lines, sum.1 + c.arcs));
+    let sum = |count: fn(&Contour) -> usize| report.contours.iter().map(count).sum::<usize>();
+    let spans = match report.contours.iter().any(|contour| contour.cubics.is_some()) {
+        true => counted(sum(|contour| contour.cubics.unwrap_or(0)), "cubic"),
+        false => {
+            format!("{} and {}", counted(sum(|c| c.lines), "line"), counted(sum(|c| c.arcs), "arc"))
+        }
+    };
     format!(
-        "{} motion blocks, {} as drawn; contours of {} and {}",
-        program.motion_blocks,
-        program.as_drawn.motion_blocks,
-        counted(lines, "line"),
-        counted(arcs, "arc")
+        "{} motion blocks, {} as drawn; contours of {spans}",
+        program.motion_blocks, program.as_drawn.motion_blocks
     )
 }
 
@@ -266,7 +269,8 @@ fn deviation(report: &Report, show: Show) -> String {
     };
     let certified =
         report.check.deviation_mm.map_or("not found".into(), |mm| format!("{} certified", show.fine(mm)));
-    format!("within {tolerance}, as allowed ({certified})")
+    let waste = if report.tolerance_side.is_some() { " on the waste side, none on the other" } else { "" };
+    format!("within {tolerance}{waste}, as allowed ({certified})")
 }
 
 fn time(report: &Report) -> String {

@@ -2,6 +2,7 @@
 
 use kurbo::{Point, Rect};
 
+use crate::gcode::read::Program;
 use crate::geom::{ArcSpline, Span};
 use crate::toolpath::{Move, Position};
 
@@ -13,6 +14,8 @@ pub(super) struct Cuts<'a> {
     pub(super) ramps: Vec<&'a Move>,
     /// Moves straight down that no pass starts from.
     pub(super) plunges: Vec<&'a Move>,
+    /// How far the moves may be from what the text says, in mm.
+    pub(super) unsure: f64,
 }
 
 /// How things stood when the cutter left the work.
@@ -40,9 +43,11 @@ pub(super) struct Pass<'a> {
 }
 
 impl<'a> Cuts<'a> {
-    /// The cuts of `moves` in stock whose top is at the height `top`.
-    pub(super) fn of(moves: &'a [Move], top: f64) -> Self {
-        let mut cuts = Self { passes: Vec::new(), ramps: Vec::new(), plunges: Vec::new() };
+    /// The cuts of `program` in stock whose top is at the height `top`.
+    pub(super) fn of(program: &'a Program, top: f64) -> Self {
+        let moves = &program.toolpath.moves;
+        let unsure = program.approximated;
+        let mut cuts = Self { passes: Vec::new(), ramps: Vec::new(), plunges: Vec::new(), unsure };
         let mut floor = f64::INFINITY;
         let mut open = false;
         let (mut lifted, mut goes_on) = (None, false);

@@ -39,6 +39,8 @@ pub struct Asked {
     pub on_line: BTreeSet<usize>,
     /// How much further than its radius the cutter's centre keeps from the edge; negative for a looser fit.
     pub allowance: f64,
+    /// True when the cut beside the edge is never on the side that is kept, and within the tolerance on the other.
+    pub waste: bool,
     /// What the passes leave beside the edge for a last one at full depth.
     pub leave: f64,
     /// How the drawing is laid on the stock.
@@ -133,6 +135,7 @@ impl Asked {
             side: Side::On,
             on_line: BTreeSet::new(),
             allowance: 0.0,
+            waste: false,
             leave: 0.0,
             layout: Layout::default(),
             drawing_at: None,
@@ -171,7 +174,7 @@ pub struct Verdict {
 /// Contours are judged as they were read: each must be cut, in order from end to end, within the tolerance, and
 /// nothing may be cut elsewhere. Costs time in proportion to the program and the drawing.
 pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Asked) -> Verdict {
-    let cuts = cuts::Cuts::of(&program.toolpath.moves, asked.stock_top);
+    let cuts = cuts::Cuts::of(program, asked.stock_top);
     let placed = Placed::new(sketch, &asked.layout, asked.drawing_at, &cuts);
     let (shape, uncut) = match asked.side {
         Side::On => (shape::judge(&cuts, placed.contours.clone(), true, machine, asked).0, Vec::new()),

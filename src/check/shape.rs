@@ -43,7 +43,7 @@ pub(super) fn judge<'a, 'b>(
     machine: &Machine,
     asked: &Asked,
 ) -> (Shape, Vec<&'b Pass<'a>>) {
-    let mut comparison = Comparison::new(contours, asked);
+    let mut comparison = Comparison::new(contours, cuts.unsure, asked);
     let mut others = Vec::new();
     for group in Pass::groups(&cuts.passes) {
         let whole = Pass::joined(group);
@@ -68,7 +68,10 @@ pub(super) fn judge<'a, 'b>(
 }
 
 struct Comparison {
+    /// How far from the drawing a move may be as it was read.
     tolerance: f64,
+    /// How far that may be from what the text says.
+    unsure: f64,
     targets: Vec<Target>,
     /// The targets in the order of the left sides of their boxes.
     by_left: Vec<usize>,
@@ -79,7 +82,7 @@ struct Comparison {
 }
 
 impl Comparison {
-    fn new(contours: Vec<Drawn>, asked: &Asked) -> Self {
+    fn new(contours: Vec<Drawn>, unsure: f64, asked: &Asked) -> Self {
         let target = |Drawn { id, path, .. }: Drawn| {
             let bbox = path.bbox()?;
             let lowest = asked.lowest_of(id);
@@ -88,8 +91,9 @@ impl Comparison {
         let targets: Vec<Target> = contours.into_iter().filter_map(target).collect();
         let mut by_left: Vec<usize> = (0..targets.len()).collect();
         by_left.sort_by(|&a, &b| targets[a].bbox.x0.total_cmp(&targets[b].bbox.x0));
-        let tolerance = asked.tolerance.mm();
-        Self { tolerance, targets, by_left, index: None, stray: Worst::none(), worst: None }
+        let allowed = asked.tolerance.mm();
+        let tolerance = (allowed - unsure).max(allowed / 2.0);
+        Self { tolerance, unsure, targets, by_left, index: None, stray: Worst::none(), worst: None }
     }
 
     /// Compares one pass with the contours whose boxes it fits; true when it follows one.
@@ -191,29 +195,20 @@ impl Comparison {
         self.stray.note(distance, || Spot::on(m, at));
     }
 
-    fn conclude(self, machine: &Machine, asked: &Asked) -> Shape {
+    fn conclude(mut self, machine: &Machine, asked: &Asked) -> Shape {
+        let allowed = asked.tolerance.mm();
+        self.stray.value += self.unsure;
         let uncut: Vec<&Target> = self.targets.iter().filter(|target| target.floors.is_empty()).collect();
         let missed = uncut.iter().filter_map(|target| target.best);
         let worst = missed.chain(self.worst).reduce(|a, b| if b.0.mm > a.0.mm { b } else { a });
+        let worst = worst.map(|(found, spot)| (Deviation { mm: found.mm + self.unsure, ..found }, spot));
         let deviation = worst.map(|(deviation, _)| deviation);
-        let mut claims = vec![self.deviation_claim(worst), all_cut(&uncut)];
-        let strays = Claim::at_most(STRAY, "mm", self.stray, self.tolerance, 0.0);
+        let mut claims = vec![deviation_claim(worst, allowed), all_cut(&uncut)];
+        let strays = Claim::at_most(STRAY, "mm", self.stray, allowed, 0.0);
         claims.push(strays.because("the cutter goes down where nothing is drawn"));
         claims.push(self.depth_claim(machine, asked));
         claims.push(self.pass_claim(machine, asked));
         Shape { deviation, claims }
-    }
-
-    fn deviation_claim(&self, worst: Option<(Deviation, Spot)>) -> Claim {
-        let mut found = Worst::none();
-        if let Some((deviation, spot)) = worst {
-            found.note(deviation.mm, || spot);
-        }
-        let claim = Claim::at_most(DEVIATION, "mm", found, self.tolerance, 0.0);
-        if worst.is_none() {
-            return Claim { state: State::Fails, note: "no cut follows a contour".into(), ..claim };
-        }
-        claim.because("the cut leaves the contour")
     }
 
     /// The highest floor among the deepest passes of the contours: each must reach the height asked, none go below.
@@ -255,6 +250,18 @@ impl Comparison {
         let slack = 2.0 * machine.last_place();
         Claim::at_most(PASSES, "mm", step, pass, slack).because("a pass takes more than one pass may")
     }
+}
+
+fn deviation_claim(worst: Option<(Deviation, Spot)>, allowed: f64) -> Claim {
+    let mut found = Worst::none();
+    if let Some((deviation, spot)) = worst {
+        found.note(deviation.mm, || spot);
+    }
+    let claim = Claim::at_most(DEVIATION, "mm", found, allowed, 0.0);
+    if worst.is_none() {
+        return Claim { state: State::Fails, note: "no cut follows a contour".into(), ..claim };
+    }
+    claim.because("the cut leaves the contour")
 }
 
 fn all_cut(uncut: &[&Target]) -> Claim {

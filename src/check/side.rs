@@ -39,8 +39,8 @@ pub(super) fn judge(
     machine: &Machine,
     asked: &Asked,
 ) -> (Shape, Vec<Uncut>) {
-    let radius = asked.cutter / 2.0 + asked.allowance;
-    if asked.tolerance.mm() >= radius {
+    let band = Band::of(cuts, machine, asked);
+    if band.tolerance >= band.radius {
         let claims = vec![Claim::open(CLEARANCE, "a side needs a cutter larger than the tolerance")];
         let claims = claims.into_iter().map(|claim| Claim { state: State::Fails, ..claim }).collect();
         return (Shape { deviation: None, claims }, Vec::new());
@@ -60,9 +60,11 @@ pub(super) fn judge(
             (Some(shape), beside)
         }
     };
-    let judge = Judge::new(closed, radius, side, asked);
-    let clearance = judge.clearance(&beside, &ways_down);
-    let (coverage, uncut) = judge.coverage(&beside, &ways_down, (machine, asked));
+    let judge = Judge::new(closed, band, side, asked);
+    let mut clearance = judge.clearance(&beside, &ways_down);
+    let (mut coverage, uncut) = judge.coverage(&beside, &ways_down, (machine, asked));
+    clearance.value += cuts.unsure;
+    coverage.value += cuts.unsure;
     let mut claims = vec![judge.clearance_claim(clearance), judge.coverage_claim(coverage)];
     claims.push(judge.touch_claim(&beside));
     claims.push(depth_claim(&beside, machine, asked, &judge.owners));
@@ -89,10 +91,35 @@ fn bordering(placed: &Placed, asked: &Asked) -> (Vec<Drawn>, Vec<Drawn>) {
     (border, open)
 }
 
+/// How far from the edge the cutter's centre is to be.
+#[derive(Clone, Copy)]
+struct Band {
+    /// The distance meant, in mm.
+    radius: f64,
+    /// How far it may be off.
+    allowed: f64,
+    /// How far it may be off as it was read.
+    tolerance: f64,
+    /// How far from the edge the cutter's edge is meant to be.
+    beyond: f64,
+}
+
+impl Band {
+    fn of(cuts: &Cuts, machine: &Machine, asked: &Asked) -> Self {
+        let whole = asked.tolerance.mm();
+        // On the waste side all the tolerance lies beyond the edge, and a hair is kept so that no path touches it.
+        let (beyond, allowed) =
+            if asked.waste { (whole / 2.0, whole / 2.0 - machine.last_place()) } else { (0.0, whole) };
+        let radius = asked.cutter / 2.0 + asked.allowance + beyond;
+        Self { radius, allowed, tolerance: (allowed - cuts.unsure).max(allowed / 2.0), beyond }
+    }
+}
+
 struct Judge {
     /// The contour, and its copy, of each span of the region's border.
     owners: Vec<Owner>,
     region: Region,
+    band: Band,
     radius: f64,
     tolerance: f64,
     /// How much further the passes run that leave something for a last one.
@@ -114,7 +141,7 @@ struct Piece {
 }
 
 impl Judge {
-    fn new(closed: Vec<Drawn>, radius: f64, side: Side, asked: &Asked) -> Self {
+    fn new(closed: Vec<Drawn>, band: Band, side: Side, asked: &Asked) -> Self {
         let mut owners = Vec::new();
         let mut spans = Vec::new();
         for drawn in &closed {
@@ -124,8 +151,9 @@ impl Judge {
         Self {
             owners,
             region: Region::new(spans),
-            radius,
-            tolerance: asked.tolerance.mm(),
+            band,
+            radius: band.radius,
+            tolerance: band.tolerance,
             leave: asked.leave,
             side,
         }
@@ -317,20 +345,21 @@ impl Judge {
     }
 
     fn clearance_claim(&self, clearance: Worst) -> Claim {
-        let claim = Claim::at_least(CLEARANCE, "mm", clearance, self.radius - self.tolerance, 0.0);
+        let claim = Claim::at_least(CLEARANCE, "mm", clearance, self.radius - self.band.allowed, 0.0);
         claim.because("the cutter cuts into the part, or runs on its wrong side")
     }
 
     fn coverage_claim(&self, coverage: Worst) -> Claim {
-        let claim = Claim::at_most(COVERAGE, "mm", coverage, self.radius + self.tolerance, 0.0);
+        let claim = Claim::at_most(COVERAGE, "mm", coverage, self.radius + self.band.allowed, 0.0);
         claim.because("a part of the drawing that the cutter fits to is not cut to its edge")
     }
 
-    /// How far the cutter's edge is off at worst.
+    /// How far the cutter's edge is off the drawn one at worst.
     fn deviation(&self, clearance: Worst, coverage: Worst) -> Option<Deviation> {
+        let edge = self.radius - self.band.beyond;
         let place = |worst: Worst| worst.at.and_then(|spot| spot.at).map_or(Point::ZERO, |at| at.xy);
-        let into = Deviation { mm: self.radius + clearance.value, at: place(clearance), certified: true };
-        let short = Deviation { mm: coverage.value - self.radius, at: place(coverage), certified: true };
+        let into = Deviation { mm: edge + clearance.value, at: place(clearance), certified: true };
+        let short = Deviation { mm: coverage.value - edge, at: place(coverage), certified: true };
         let worse = if short.mm > into.mm { short } else { into };
         worse.mm.is_finite().then_some(Deviation { mm: worse.mm.max(0.0), ..worse })
     }

@@ -5,6 +5,8 @@
 //! couples neighbours only, so that a step costs time proportional to the stations. Steps are a predictor and a
 //! second-order corrector (Mehrotra 1992, for the quadratic constraints of discs).
 
+use std::ops::Range;
+
 use kurbo::{Point, Vec2};
 use nalgebra::{Matrix2, SMatrix, Vector4};
 
@@ -187,11 +189,20 @@ impl Beam {
             matrix.diagonal[j] += block([shear, -lean, -lean, 2.0 * turn], same);
             matrix.coupling[i] += block([-shear, -lean, lean, turn], into_frame(next, here));
         }
-        if let Ends::Clamped(..) = self.ends {
-            hold_slope(&mut matrix, 0);
-            hold_slope(&mut matrix, stations - 1);
+        if let Some(rows) = self.held() {
+            hold(&mut matrix, 0, rows.clone());
+            hold(&mut matrix, stations - 1, rows);
         }
         matrix
+    }
+
+    /// The unknowns that are prescribed at both ends: the place or the slope.
+    fn held(&self) -> Option<Range<usize>> {
+        match self.ends {
+            Ends::Pinned => Some(0..2),
+            Ends::Clamped(..) => Some(2..4),
+            Ends::Natural | Ends::Periodic => None,
+        }
     }
 
     /// What is missing from the balance of forces, from the discs' equations and from the products of pressure and slack.
@@ -206,9 +217,9 @@ impl Beam {
             force[i] += Vector4::new(third.x, third.y, -start.x, -start.y);
             force[j] += Vector4::new(-third.x, -third.y, end.x, end.y);
         }
-        if let (Ends::Clamped(..), [first, .., last]) = (self.ends, &mut force[..]) {
+        if let (Some(rows), [first, .., last]) = (self.held(), &mut force[..]) {
             for end in [first, last] {
-                end.fixed_rows_mut::<2>(2).fill(0.0);
+                end.rows_mut(rows.start, rows.len()).fill(0.0);
             }
         }
         Residual {
@@ -247,9 +258,9 @@ fn block(entries: [f64; 4], axis: Vec2) -> SMatrix<f64, 4, 4> {
     block
 }
 
-/// Takes a prescribed slope out of the unknowns: its row and column become those of the identity.
-fn hold_slope(matrix: &mut BlockTridiagonal<4>, station: usize) {
-    for row in 2..4 {
+/// Takes what is prescribed at a station out of the unknowns: its rows and columns become those of the identity.
+fn hold(matrix: &mut BlockTridiagonal<4>, station: usize, rows: Range<usize>) {
+    for row in rows {
         matrix.diagonal[station].row_mut(row).fill(0.0);
         matrix.diagonal[station].column_mut(row).fill(0.0);
         matrix.diagonal[station][(row, row)] = 1.0;

@@ -1,4 +1,4 @@
-//! Polyline to the least-bending cubic spline inside the tolerance: the fitter's starting guess.
+//! Polyline to the least-bending cubic spline inside the tolerance.
 //!
 //! The problem: among all curves over the chord length of the trace that stay, at every parameter, within the
 //! tolerance of the trace's point at that parameter, the one of least integral of the squared second derivative. Its
@@ -7,15 +7,19 @@
 //! solution bends less than the answer does, and the last one is the answer.
 
 mod bending;
+mod lean;
+mod outline;
 mod spline;
 mod trace;
 
+pub use outline::{Outline, outline};
 pub use spline::{CubicSpline, Ends, Local};
 
 use kurbo::Point;
 
 use crate::num::{Deviation, Tolerance};
 use bending::{Station, least_bending};
+use lean::lean;
 use trace::Trace;
 
 /// A fair curve and how good it is.
@@ -83,6 +87,9 @@ pub fn fair(points: &[Point], ends: Ends, tolerance: Tolerance, effort: Effort) 
         }
         stations = merged(&stations, &strays);
     }
+    if effort == Effort::Full {
+        best = best.map(|fair| lean(fair, &trace, ends, tolerance));
+    }
     best.or_else(|| {
         let centres: Vec<Point> = stations.iter().map(|station| station.at).collect();
         judged(&trace, &stations, (&centres, ends), tolerance).map(|(through, _)| through)
@@ -100,7 +107,7 @@ fn judged(
     let knots = stations.iter().map(|s| s.t).chain(closing).collect();
     let spline = CubicSpline::through(knots, places, ends)?;
     let strays = trace.strays(&spline, tolerance);
-    let (energy, excess) = (spline.energy(), excess(&spline, stations, tolerance));
+    let (energy, excess) = (spline.energy(), excess(&spline, stations, ends, tolerance));
     Some((
         Fair { spline, deviation: strays.deviation, energy, excess, steps: 0, capped: true },
         strays.stations,
@@ -109,8 +116,8 @@ fn judged(
 
 /// By how much the spline's energy may exceed the least, by convexity: the energy's derivative by the place of a
 /// station is twice the jump of the third derivative there, and no place inside its disc gains more than that derivative
-/// times the distance to the rim.
-fn excess(spline: &CubicSpline, stations: &[Station], tolerance: Tolerance) -> f64 {
+/// times the distance to the rim. Pinned ends cannot move.
+fn excess(spline: &CubicSpline, stations: &[Station], ends: Ends, tolerance: Tolerance) -> f64 {
     let pieces = stations.len() - usize::from(!spline.is_closed());
     let third = |i: usize| if i < pieces { spline.piece(i).third } else { kurbo::Vec2::ZERO };
     let mut before = if spline.is_closed() { third(pieces - 1) } else { kurbo::Vec2::ZERO };
@@ -118,8 +125,11 @@ fn excess(spline: &CubicSpline, stations: &[Station], tolerance: Tolerance) -> f
     for (i, station) in stations.iter().enumerate() {
         let after = third(i);
         let force = after - before;
-        excess += 2.0 * (force.hypot() * tolerance.mm() + force.dot(spline.places()[i] - station.at));
         before = after;
+        if ends == Ends::Pinned && (i == 0 || i + 1 == stations.len()) {
+            continue;
+        }
+        excess += 2.0 * (force.hypot() * tolerance.mm() + force.dot(spline.places()[i] - station.at));
     }
     excess
 }

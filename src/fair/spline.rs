@@ -1,6 +1,6 @@
 //! Parametric cubic splines: twice continuously differentiable, least bending through their points.
 
-use kurbo::{Point, Vec2};
+use kurbo::{CubicBez, Point, Vec2};
 use nalgebra::SMatrix;
 
 use crate::num::BlockTridiagonal;
@@ -12,6 +12,8 @@ pub enum Ends {
     Natural,
     /// The first derivative (length of the parameter's unit included) at the start and at the end.
     Clamped(Vec2, Vec2),
+    /// Free directions, at the trace's own ends. For a spline through given points the same as natural.
+    Pinned,
     /// A closed curve: the last point joins the first, which is not repeated.
     Periodic,
 }
@@ -74,6 +76,15 @@ impl CubicSpline {
     /// The places at the knots; a closed spline's last is its first again.
     pub fn places(&self) -> &[Point] {
         &self.places
+    }
+
+    /// The pieces between the knots, in order.
+    pub fn cubics(&self) -> impl Iterator<Item = CubicBez> + '_ {
+        let ends = self.places.windows(2).zip(self.slopes.windows(2)).zip(self.knots.windows(2));
+        ends.map(|((at, slope), knots)| {
+            let third = (knots[1] - knots[0]) / 3.0;
+            CubicBez { p0: at[0], p1: at[0] + slope[0] * third, p2: at[1] - slope[1] * third, p3: at[1] }
+        })
     }
 
     /// The spline at parameter `t`; beyond its ends the end pieces go on.

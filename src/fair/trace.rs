@@ -99,7 +99,7 @@ impl Trace {
     }
 
     /// The point of the trace at parameter `t`.
-    fn at(&self, t: f64) -> Station {
+    pub(super) fn at(&self, t: f64) -> Station {
         self.between(self.stations.partition_point(|s| s.t <= t).saturating_sub(1), t)
     }
 

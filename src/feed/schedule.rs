@@ -120,10 +120,16 @@ pub fn highest_override(toolpath: &Toolpath, limits: &Limits) -> u32 {
     let starves = |percent: u32| {
         let mut queue = Queue::full(limits.queue, limits.interval());
         let mut now = 0.0;
+        let mut line = 0;
         toolpath.moves.iter().filter(|m| m.length() > 0.0).any(|m| {
             let feed = m.feed.map(|feed| feed * f64::from(percent) / 100.0);
-            let waits = queue.wait(now) > 0.0;
-            queue.next(now);
+            // Moves that one line of the program makes are one block.
+            let same = m.line > 0 && m.line == line;
+            line = m.line;
+            let waits = !same && queue.wait(now) > 0.0;
+            if !same {
+                queue.next(now);
+            }
             now += least_time(&Move { feed, ..*m }, limits);
             waits
         })

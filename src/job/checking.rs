@@ -3,8 +3,8 @@
 use clap::Args;
 
 use super::{
-    DrawingArgs, DrawingSettings, Layout, LayoutArgs, SettingUpArgs, Side, Stock, Units, bounds, cutter,
-    machine,
+    DrawingArgs, DrawingSettings, Layout, LayoutArgs, SettingUpArgs, Side, Stock, ToleranceSide, Units,
+    bounds, cutter, machine,
 };
 use crate::error::{Error, Kind};
 use crate::machine::Machine;
@@ -22,6 +22,9 @@ pub struct CheckArgs {
     /// Largest distance allowed between cut path and drawing [default: 0.1mm]
     #[arg(long, value_name = "LEN", help_heading = "Accuracy")]
     pub tolerance: Option<Length>,
+    /// Where the tolerance may be used: on both sides of the line, or never inside the part [default: both]
+    #[arg(long, value_enum, help_heading = "Accuracy")]
+    pub tolerance_side: Option<ToleranceSide>,
     /// The side of the contour that must be cut on [default: on]
     #[arg(long, value_enum, help_heading = "Cut")]
     pub side: Option<Side>,
@@ -54,6 +57,8 @@ pub struct CheckJob {
     pub drawing: DrawingSettings,
     /// The tolerance that must hold.
     pub tolerance: Tolerance,
+    /// Where the tolerance may be used.
+    pub tolerance_side: ToleranceSide,
     /// The side of the contours that must be cut on.
     pub side: Side,
     /// The cutter's diameter, where a side is cut or clamps are declared.
@@ -88,6 +93,7 @@ impl CheckJob {
         let needed = typed.cutter.is_some() || side != Side::On || clamps;
         let cutter = needed.then(|| cutter(typed.cutter.as_deref(), &machine, mm)).transpose()?;
         Ok(Self {
+            tolerance_side: typed.tolerance_side.unwrap_or_default(),
             side,
             cutter_mm: cutter.map(|(diameter, _)| diameter),
             allowance_mm: mm.length(&bounds::ALLOWANCE, typed.allowance)?.unwrap_or(0.0),

@@ -6,6 +6,7 @@ use clap::{Args, ValueEnum};
 use schemars::JsonSchema;
 use serde::{Deserialize, Serialize};
 
+use super::accuracy::AccuracyArgs;
 use super::laying::LayoutArgs;
 use super::stock::SettingUpArgs;
 use super::wishes::CutArgs;
@@ -27,6 +28,10 @@ pub struct Settings {
     /// Largest distance allowed between cut path and drawing [default: 0.1mm, or what the trace supports]
     #[arg(long, value_name = "LEN", help_heading = "Accuracy")]
     pub tolerance: Option<Length>,
+    /// How the tolerance is used, and what curves become.
+    #[command(flatten)]
+    #[serde(flatten)]
+    pub accuracy: AccuracyArgs,
 
     /// How contours are cut.
     #[command(flatten)]
@@ -158,6 +163,7 @@ impl Settings {
             machine: self.machine.or(other.machine),
             drawing: self.drawing.or(other.drawing),
             tolerance: self.tolerance.or(other.tolerance),
+            accuracy: self.accuracy.or(other.accuracy),
             cut: self.cut.or(other.cut),
             allowance: self.allowance.or(other.allowance),
             bed_cut: self.bed_cut.or(other.bed_cut),

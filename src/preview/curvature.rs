@@ -18,12 +18,22 @@ pub(super) struct Combs {
     pub(super) before: Vec<Span>,
     /// As cut.
     pub(super) after: Vec<Span>,
+    /// As the fair curves bend; none where the scene has none.
+    pub(super) fair: Vec<Span>,
     /// The bend, in 1/mm, that has the longest tooth; stronger ones are cut off there.
     pub(super) strongest: f64,
 }
 
-/// A place, the direction to the left there, and the curvature.
-type Bend = (Point, Vec2, f64);
+/// How a curve bends at a place.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Bend {
+    /// The place, in the program's coordinates.
+    pub at: Point,
+    /// The direction to the left there.
+    pub left: Vec2,
+    /// Signed curvature in 1/mm, positive for a left turn.
+    pub curvature: f64,
+}
 
 /// The combs of the program in `scene`.
 pub(super) fn combs(scene: &Scene, chord: &Chord) -> Combs {
@@ -35,12 +45,14 @@ pub(super) fn combs(scene: &Scene, chord: &Chord) -> Combs {
         chord.laps.iter().flat_map(|lap| &lap.moves).flat_map(|&i| cut(&moves[i].span(), step)).collect();
     let strongest = usual_strongest(&cut);
     let scale = LONGEST * diagonal(scene.part()) / strongest;
-    Combs { before: teeth(&traced, scale, strongest), after: teeth(&cut, scale, strongest), strongest }
+    let comb = |bends: &[Bend]| teeth(bends, scale, strongest);
+    Combs { before: comb(&traced), after: comb(&cut), fair: comb(&scene.fair), strongest }
 }
 
 /// The bend that nineteen in twenty bent places of a cut stay below; never 0.
 fn usual_strongest(cut: &[Bend]) -> f64 {
-    let mut bends: Vec<f64> = cut.iter().map(|bend| bend.2.abs()).filter(|bend| *bend > 0.0).collect();
+    let mut bends: Vec<f64> =
+        cut.iter().map(|bend| bend.curvature.abs()).filter(|bend| *bend > 0.0).collect();
     bends.sort_by(f64::total_cmp);
     bends.get(bends.len() * 19 / 20).copied().unwrap_or(1.0)
 }
@@ -53,8 +65,11 @@ fn traced(path: &ArcSpline) -> Vec<Bend> {
         let before = path.span(if i == 0 { path.len() - 1 } else { i - 1 });
         let curvature = 2.0 * turn / (before.length() + here.length());
         let tangent = before.tangent(1.0) + here.tangent(0.0);
-        (curvature.is_finite() && tangent.hypot() > 0.0)
-            .then(|| (here.start, left(tangent.normalize()), curvature))
+        (curvature.is_finite() && tangent.hypot() > 0.0).then(|| Bend {
+            at: here.start,
+            left: left(tangent.normalize()),
+            curvature,
+        })
     };
     (0..path.len()).filter_map(bend).collect()
 }
@@ -65,20 +80,20 @@ fn cut(span: &Span, step: f64) -> Vec<Bend> {
     let curvature = span.curvature();
     let at = |k: usize| {
         let t = k as f64 / pieces as f64;
-        (span.at(t), left(span.tangent(t)), curvature)
+        Bend { at: span.at(t), left: left(span.tangent(t)), curvature }
     };
-    (0..=pieces).map(at).filter(|bend| bend.1.hypot().is_finite()).collect()
+    (0..=pieces).map(at).filter(|bend| bend.left.hypot().is_finite()).collect()
 }
 
 /// The teeth, towards the outside of each bend; where there are too many, the strongest of neighbours.
 fn teeth(bends: &[Bend], scale: f64, strongest: f64) -> Vec<Span> {
     let every = bends.len().div_ceil(TEETH).max(1);
-    let strong =
-        bends.chunks(every).filter_map(|few| few.iter().max_by(|a, b| a.2.abs().total_cmp(&b.2.abs())));
+    let stronger = |a: &&Bend, b: &&Bend| a.curvature.abs().total_cmp(&b.curvature.abs());
+    let strong = bends.chunks(every).filter_map(|few| few.iter().max_by(stronger));
     strong
-        .map(|(at, left, curvature)| {
-            let length = curvature.clamp(-strongest, strongest) * scale;
-            Span::line(*at, *at - *left * length)
+        .map(|bend| {
+            let length = bend.curvature.clamp(-strongest, strongest) * scale;
+            Span::line(bend.at, bend.at - bend.left * length)
         })
         .collect()
 }

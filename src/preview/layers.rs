@@ -175,14 +175,18 @@ fn marks(scene: &Scene, stages: &[Stage], chord: &Chord) -> Vec<Layer> {
 /// The layers that hold the path against the trace.
 fn comparison(scene: &Scene, chord: &Chord, combs: Combs, trace: String) -> Vec<Layer> {
     let group = Group::Compare;
-    vec![
+    let has_fair = !combs.fair.is_empty();
+    let fair = layer("fair", "Curvature of the fair curve", group, false, paths(combs.fair, "fair"));
+    let mut layers = vec![
         layer("trace", "Trace as drawn", group, true, trace),
         layer("error", "Chord error by colour", group, true, error(scene, chord)),
         layer("spans", "Path by span, joints", group, false, spans(scene, chord)),
         layer("comb", "Chord error as a comb", group, false, String::new()),
         layer("before", "Curvature of the trace", group, false, paths(combs.before, "before")),
         layer("after", "Curvature of the path", group, false, paths(combs.after, "after")),
-    ]
+    ];
+    layers.extend(has_fair.then_some(fair));
+    layers
 }
 
 /// The drawing; where it has too many vertices, every so many of them, which is then told.

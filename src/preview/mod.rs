@@ -27,6 +27,7 @@ use crate::report::Report;
 use crate::sketch::Contour;
 
 pub use chord::{Chord, Lap, Station};
+pub use curvature::Bend;
 pub(crate) use markup::escaped;
 pub use page::{MOST_MOVES, page};
 pub use sheet::setup_sheet;
@@ -51,6 +52,8 @@ pub struct Scene<'a> {
     pub limits: Limits,
     /// The height of the stock's top.
     pub stock_top: f64,
+    /// How the fair curves bend, where they are shown; else none.
+    pub fair: Vec<Bend>,
 }
 
 impl Scene<'_> {

@@ -79,6 +79,7 @@ const STROKES: &[Stroke] = &[
     stroke("comb", "accent", 0.8, &[]),
     stroke("before", "trace", 0.8, &[]),
     stroke("after", "accent", 1.0, &[]),
+    stroke("fair", "mark", 1.0, &[4.0, 2.0]),
     stroke("worst", "over", 2.0, &[]),
 ];
 

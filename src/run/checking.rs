@@ -6,7 +6,7 @@ use super::siding::Sides;
 use crate::check::{self, Asked, Claim, Feeds, State, Verdict};
 use crate::error::{Error, Kind};
 use crate::gcode::{self, Dialect, Program};
-use crate::job::{self, CheckJob, Clamp, Cutting, Job, Stock};
+use crate::job::{self, CheckJob, Clamp, Cutting, Job, Stock, ToleranceSide};
 use crate::machine::Machine;
 use crate::route::{Cut, Routed, Setup};
 use crate::sketch::{Contour, Sketch};
@@ -37,14 +37,16 @@ fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
         let cutting = job.cutting_of(&contour.layer).filter(|_| job.layers.contains_key(&contour.layer))?;
         Some((contour.id, heights.top - cutting.depth_mm))
     };
+    let waste = job.keeps_to_waste();
     let on_line = |contour: &&Contour| {
-        job.cutting_of(&contour.layer).is_none_or(|cutting| cutting.side == job::Side::On)
+        !waste && job.cutting_of(&contour.layer).is_none_or(|cutting| cutting.side == job::Side::On)
     };
     let leave = |cutting: &Cutting| cutting.leave_mm;
     Asked {
         side: plan.sides.region,
         on_line: prepared.sketch.contours.iter().filter(on_line).map(|contour| contour.id).collect(),
-        allowance: job.allowance_mm,
+        allowance: if waste { job.edge_mm() } else { job.allowance_mm },
+        waste,
         leave: job.cuttings().map(leave).fold(0.0, f64::max),
         layout: for_check(&job.layout),
         drawing_at: Some(plan.placing.drawing_at),
@@ -120,14 +122,19 @@ fn asked_of_existing(job: &CheckJob, sketch: &Sketch) -> Result<Asked, Error> {
     let contours = &sketch.contours[..];
     let placing = Placing::new(&job.layout, &job.stock, (contours, contours));
     placing.fits_stock()?;
+    let waste = job.tolerance_side == ToleranceSide::Waste;
+    let cutter = job.cutter_mm.unwrap_or(0.0);
     Ok(Asked {
         side: match job.side {
+            // On the line, what is kept and what is waste goes by nesting.
+            job::Side::On if waste => check::Side::Outside,
             job::Side::On => check::Side::On,
             job::Side::Inside => check::Side::Inside,
             job::Side::Outside | job::Side::Auto => check::Side::Outside,
         },
-        cutter: job.cutter_mm.unwrap_or(0.0),
-        allowance: job.allowance_mm,
+        cutter,
+        allowance: if waste && job.side == job::Side::On { -cutter / 2.0 } else { job.allowance_mm },
+        waste,
         layout: for_check(&job.layout),
         drawing_at: job.stock.origin.map(|_| placing.drawing_at),
         zero_at: placing.zero_at,

@@ -53,11 +53,25 @@ pub(super) fn sided(
     let outline = |((contour, fitted), side): &Ready, place: Affine| Outline {
         id: contour.id,
         path: fitted.path.transformed(place),
-        cut: Cut { side: **side, ..cut(job, job.cutting_of(&contour.layer).unwrap_or(&job.cutting)) },
+        cut: beyond(
+            job,
+            tolerance,
+            Cut { side: **side, ..cut(job, job.cutting_of(&contour.layer).unwrap_or(&job.cutting)) },
+        ),
     };
     let ready: Vec<Ready> = contours.iter().zip(fitted).zip(&sides.each).collect();
     let outlines: Vec<Outline> = placing.place(&ready, outline).collect();
     route::beside(&outlines, tolerance.mm())
+}
+
+/// The cut moved to the middle of its band where the whole tolerance lies on the waste side: off the line itself where
+/// the cutter's centre follows that, else further off the edge. A corner of the line stays one where it can.
+fn beyond(job: &Job, tolerance: Tolerance, cut: Cut) -> Cut {
+    if !job.keeps_to_waste() {
+        return cut;
+    }
+    let corners = if job.cuts_on_line_only() { Corners::Sharp } else { cut.corners };
+    Cut { allowance_mm: job.edge_mm() + tolerance.mm() / 2.0, corners, ..cut }
 }
 
 /// Each contour of every copy as it is drawn, cut on the line and held in some way: the job to compare with.

@@ -1,5 +1,6 @@
 //! Feeds and spindle speed that suit the machine, its controller and the cutter.
 
+use super::curving::share_feeds;
 use crate::feed::{self, Limits, hold_chip_load};
 use crate::gcode::{Header, blocks_of};
 use crate::job::Job;
@@ -9,7 +10,9 @@ use crate::toolpath::{Move, Toolpath};
 /// machine should know of it.
 pub(super) fn suit(toolpath: &mut Toolpath, header: &Header, job: &Job) -> Vec<String> {
     let blocks = blocks_of(toolpath, header, &job.machine);
+    // A cubic move is planned as the arcs that stand for it, which are more blocks than it is.
     let lowered = feed::schedule_blocks(toolpath, &blocks, &Limits::of(&job.machine));
+    share_feeds(toolpath, &header.curves);
     let mut told = Vec::new();
     if lowered > 0 {
         let cutting = toolpath.moves.iter().filter(|m| !m.is_rapid()).count();

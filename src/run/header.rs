@@ -4,6 +4,7 @@ use std::path::Path;
 
 use kurbo::Rect;
 
+use super::prepare::band;
 use crate::cautions;
 use crate::gcode::Header;
 use crate::job::{Clamp, Job, Layout, Side};
@@ -25,8 +26,9 @@ pub(super) fn header(
     let mut notes = vec![
         side(job).to_owned(),
         format!(
-            "tolerance {} mm, depth {} mm, pass {} mm at most",
+            "tolerance {} mm{}, depth {} mm, pass {} mm at most",
             tolerance.mm(),
+            if job.keeps_to_waste() { " on the waste side" } else { "" },
             cutting.depth_mm,
             cutting.pass_mm
         ),
@@ -42,9 +44,10 @@ pub(super) fn header(
         z_zero: job.stock.zero.words().into(),
         cutter: cutter(job),
         clearance: setup.heights().clearance,
-        chord_error: chord_error(&job.machine, tolerance),
+        chord_error: chord_error(&job.machine, band(job, tolerance)),
         notes,
         marks: Vec::new(),
+        curves: Vec::new(),
     }
 }
 

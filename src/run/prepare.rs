@@ -61,13 +61,23 @@ pub(super) fn roughness(contours: &[Contour]) -> Vec<Roughness> {
     contours.par_iter().map(|contour| clean::roughness(&contour.path)).collect()
 }
 
+/// How far a path may be off where it is meant to be: on the waste side alone it is meant half a tolerance beyond the
+/// line, and may be off by the other half.
+pub(super) fn band(job: &Job, tolerance: Tolerance) -> Tolerance {
+    let beyond = if job.keeps_to_waste() { tolerance.mm() / 2.0 } else { 0.0 };
+    tolerance.less(beyond).unwrap_or(tolerance)
+}
+
 /// What is left of the tolerance for fitting: rounding the program's numbers takes 1.5 units of their last place
 /// (and blocks for arcs their share, on a machine without arcs), sampling the drawing's free curves what the reader says, and the check settles no more than a five-hundredth.
 pub(super) fn left_for_fitting(job: &Job, prepared: &Prepared) -> Result<Tolerance, Error> {
-    let unsettled = prepared.tolerance.mm() / 500.0;
-    let written = 1.5 * job.machine.last_place() + chord_error(&job.machine, prepared.tolerance);
+    let band = band(job, prepared.tolerance);
+    let unsettled = band.mm() / 500.0;
+    // A path on the waste side alone keeps one place off the line, by which the check knows that it never crosses it.
+    let places = if job.keeps_to_waste() { 2.5 } else { 1.5 };
+    let written = places * job.machine.last_place() + chord_error(&job.machine, band);
     let spent = written + prepared.sketch.sampling_mm + unsettled;
-    prepared.tolerance.less(spent).ok_or_else(|| {
+    band.less(spent).ok_or_else(|| {
         let what = format!("rounding and the drawing's free curves take {spent:.4} mm, the whole tolerance");
         Error::new(Kind::Refused, what).remedy("ask for a wider --tolerance")
     })

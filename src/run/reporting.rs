@@ -4,8 +4,8 @@ use std::path::Path;
 
 use kurbo::Rect;
 
-use super::Plan;
 use super::feeding::spindle_rpm;
+use super::{Plan, curvature};
 use crate::check::{self, Verdict};
 use crate::clean::Roughness;
 use crate::files::Target;
@@ -22,8 +22,9 @@ pub(super) fn report(job: &Job, plan: &Plan, drawing: &str, program: &str) -> Re
     Report {
         ribband: env!("CARGO_PKG_VERSION").into(),
         tolerance_mm: plan.tolerance.mm(),
+        tolerance_side: Some(job.tolerance_side).filter(|_| job.keeps_to_waste()),
         drawing: drawing_of(plan, drawing),
-        contours: contours(plan, job.machine.last_place()),
+        contours: contours(job, plan),
         setup: setup(job, plan),
         program: program_of(plan, program),
         check: check_of(&plan.verdict),
@@ -47,14 +48,22 @@ fn drawing_of(plan: &Plan, file: &str) -> Drawing {
     }
 }
 
-fn contours(plan: &Plan, place_mm: f64) -> Vec<Contour> {
+fn contours(job: &Job, plan: &Plan) -> Vec<Contour> {
+    let place_mm = job.machine.last_place();
+    let reaching = if job.cuts_on_line_only() { "the path" } else { "the cutter" };
     let drawn = plan.cleaned.contours.iter().zip(&plan.roughness);
-    let told = |((drawn, rough), fitted): ((&sketch::Contour, &Roughness), &Fitted)| Contour {
+    let cubics = plan.cubics.iter().copied().map(Some).chain(std::iter::repeat(None));
+    let shown = if job.curvature { curvature::of(plan) } else { Vec::new() };
+    let curvature = shown.into_iter().map(Some).chain(std::iter::repeat_with(|| None));
+    type Figures<'a> = ((&'a sketch::Contour, &'a Roughness), &'a Fitted);
+    let told = |(((drawn, rough), fitted), (cubics, curvature)): (Figures, _)| Contour {
+        cubics,
+        curvature,
         roughness_mm: rough.sigma_mm,
-        uncut: uncut(plan, drawn.id),
+        uncut: uncut(plan, drawn.id, reaching),
         ..contour(drawn, fitted, place_mm)
     };
-    drawn.zip(&plan.fitted).map(told).collect()
+    drawn.zip(&plan.fitted).zip(cubics.zip(curvature)).map(told).collect()
 }
 
 fn contour(drawn: &sketch::Contour, fitted: &Fitted, place_mm: f64) -> Contour {
@@ -71,26 +80,28 @@ fn contour(drawn: &sketch::Contour, fitted: &Fitted, place_mm: f64) -> Contour {
         corners: fitted.path.corners(place_mm).count(),
         lines,
         arcs: fitted.path.len() - lines,
+        cubics: None,
         deviation_mm: fitted.deviation.mm,
+        curvature: None,
         uncut: Vec::new(),
     }
 }
 
-/// What the cutter does not reach of a contour: of copies, of the one that it reaches least of.
-fn uncut(plan: &Plan, contour: usize) -> Vec<String> {
+/// What the cutter, or the path, does not reach of a contour: of copies, of the one that it reaches least of.
+fn uncut(plan: &Plan, contour: usize, reaching: &str) -> Vec<String> {
     let of_contour = || plan.verdict.uncut.iter().filter(|uncut| uncut.contour == contour);
     let worst = of_contour().max_by(|a, b| a.gap.total_cmp(&b.gap)).map(|uncut| uncut.copy);
-    of_contour().filter(|uncut| Some(uncut.copy) == worst).map(stays).collect()
+    of_contour().filter(|uncut| Some(uncut.copy) == worst).map(|uncut| stays(reaching, uncut)).collect()
 }
 
-/// A stretch that the cutter does not reach, in one sentence.
-fn stays(uncut: &check::Uncut) -> String {
+/// A stretch that is not reached, in one sentence.
+fn stays(what: &str, uncut: &check::Uncut) -> String {
     let check::Uncut { length, at, gap, .. } = *uncut;
     if gap.is_infinite() {
-        return format!("nothing of it is cut: the cutter does not fit, by X {:.3} Y {:.3}", at.x, at.y);
+        return format!("nothing of it is cut: {what} does not fit, by X {:.3} Y {:.3}", at.x, at.y);
     }
     format!(
-        "the cutter does not reach {length:.2} mm of it, by {gap:.2} mm at most, at X {:.3} Y {:.3}",
+        "{what} does not reach {length:.2} mm of it, by {gap:.2} mm at most, at X {:.3} Y {:.3}",
         at.x, at.y
     )
 }

@@ -16,5 +16,6 @@ pub(super) fn scene<'a>(job: &Job, plan: &'a Plan, report: &'a Report) -> Scene<
         verdict: &plan.verdict,
         limits: Limits::of(&job.machine),
         stock_top: job.stock.top_mm(),
+        fair: plan.bends.clone(),
     }
 }

@@ -19,14 +19,21 @@ pub(super) struct Sides {
     pub(super) notes: Vec<String>,
 }
 
-/// Settles the sides. With `auto`, open strokes are cut on the line. All other contours must bound one region that is
-/// kept, or one that is cut: nothing else can be checked from the text.
+/// Settles the sides. With `auto`, open strokes are cut on the line; where the tolerance is for the waste side alone, the
+/// waste of a cut on the line goes by nesting. All other contours must bound one region that is kept, or one that is
+/// cut: nothing else can be checked from the text.
 pub(super) fn sides(job: &Job, prepared: &Prepared) -> Result<Sides, Error> {
     let contours = &prepared.cleaned.contours;
     let mut asked: Vec<Side> = contours
         .iter()
         .map(|contour| job.cutting_of(&contour.layer).map_or(Side::On, |cutting| cutting.side))
         .collect();
+    if job.keeps_to_waste() {
+        for (contour, side) in contours.iter().zip(&mut asked) {
+            must_have_waste(contour)?;
+            *side = if *side == Side::On { Side::Auto } else { *side };
+        }
+    }
     let mut notes = Vec::new();
     for (contour, side) in contours.iter().zip(&mut asked) {
         if !contour.path.closed && *side != Side::On {
@@ -36,7 +43,7 @@ pub(super) fn sides(job: &Job, prepared: &Prepared) -> Result<Sides, Error> {
         }
     }
     let region = region(contours, &asked)?;
-    if region != check::Side::On {
+    if region != check::Side::On && !job.keeps_to_waste() {
         can_be_judged(job, prepared)?;
     }
     let each = asked.iter().map(|&side| for_route(side, region)).collect();
@@ -53,6 +60,16 @@ fn can_be_judged(job: &Job, prepared: &Prepared) -> Result<(), Error> {
         "with a tolerance of {tolerance} mm a cutter whose centre runs {distance} mm beside the drawing has no side"
     );
     Err(Error::new(Kind::Refused, what).remedy("take a larger --cutter, or ask for a finer --tolerance"))
+}
+
+/// An open contour parts nothing from anything.
+fn must_have_waste(contour: &Contour) -> Result<(), Error> {
+    if contour.path.closed {
+        return Ok(());
+    }
+    let what = format!("contour {} is open: neither side of it is waste", contour.id);
+    Err(Error::new(Kind::Refused, what)
+        .remedy("close it in the drawing or with a larger --join, or use --tolerance-side both"))
 }
 
 /// Only `auto` takes an open contour, and only one that is not meant to be closed.

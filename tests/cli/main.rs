@@ -14,4 +14,6 @@ mod parts;
 mod posting;
 mod reading;
 mod schema;
+mod splines;
+mod waste;
 mod words;

@@ -57,12 +57,12 @@ fn post(drawing: &Path, tolerance: f64) -> Posted {
     }
 }
 
-fn closed_up((points, closed): &(Vec<Point>, bool)) -> Vec<Point> {
+pub(crate) fn closed_up((points, closed): &(Vec<Point>, bool)) -> Vec<Point> {
     points.iter().chain(points.iter().take(usize::from(*closed))).copied().collect()
 }
 
 /// The largest sampled distance between what the program cuts and the drawing, both ways.
-fn sampled_deviation(cuts: Cuts, drawing: &Contours, tolerance: f64) -> f64 {
+pub(crate) fn sampled_deviation(cuts: Cuts, drawing: &Contours, tolerance: f64) -> f64 {
     let chain = |points| Chain::new(points, 2.0 * tolerance);
     let cut: Vec<Chain> = cuts.chains.into_iter().map(chain).collect();
     assert_eq!(cut.len(), drawing.0.len(), "every contour is cut once");

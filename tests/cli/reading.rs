@@ -1,6 +1,6 @@
-//! A little reader of programs, apart from the one under test: absolute mm, G0 to G3 in XY, centres from the start.
+//! A little reader of programs, apart from the one under test: absolute mm, G0 to G3 and G5 in XY, centres from the start.
 
-use kurbo::Point;
+use kurbo::{Point, Vec2};
 
 /// What a program cuts.
 pub(crate) struct Cuts {
@@ -23,7 +23,7 @@ pub(crate) fn cuts(program: &str, sagitta: f64) -> Cuts {
     for line in program.lines() {
         let words = words(line);
         let of = |letter| words.iter().rev().find(|w| w.0 == letter).map(|w| w.1);
-        for code in words.iter().filter(|w| w.0 == 'G' && w.1 < 4.0) {
+        for code in words.iter().filter(|w| w.0 == 'G' && w.1 < 4.0 || **w == ('G', 5.0)) {
             motion = code.1 as i32;
         }
         let coordinate = words.iter().any(|w| "XYZ".contains(w.0));
@@ -34,11 +34,19 @@ pub(crate) fn cuts(program: &str, sagitta: f64) -> Cuts {
         let from_z = z;
         z = of('Z').unwrap_or(z);
         let centre = Point::new(at.x + of('I').unwrap_or(0.0), at.y + of('J').unwrap_or(0.0));
-        let is_arc = motion >= 2 && (of('I').is_some() || of('J').is_some());
+        let is_arc = (motion == 2 || motion == 3) && (of('I').is_some() || of('J').is_some());
         if is_arc {
             mismatch = f64::max(mismatch, (at.distance(centre) - to.distance(centre)).abs());
         }
-        let points = if is_arc { arc(at, to, (centre, sagitta), motion == 3) } else { vec![at, to] };
+        let [i, j, p, q] = ['I', 'J', 'P', 'Q'].map(of);
+        let points = match (motion, i, j, p, q) {
+            (5, Some(i), Some(j), Some(p), Some(q)) => {
+                cubic([at, at + Vec2::new(i, j), to + Vec2::new(p, q), to], sagitta)
+            }
+            (5, ..) => panic!("a cubic move without its four numbers: {line}"),
+            _ if is_arc => arc(at, to, (centre, sagitta), motion == 3),
+            _ => vec![at, to],
+        };
         if z.min(from_z) < 0.0 {
             sunk.push(points.clone());
         }
@@ -92,6 +100,20 @@ fn arc(from: Point, to: Point, (centre, sagitta): (Point, f64), left: bool) -> V
     };
     let inner = (1..pieces as usize).map(|k| at(k as f64));
     std::iter::once(from).chain(inner).chain([to]).collect()
+}
+
+/// Points on the cubic Bézier curve, its ends among them, by the Bernstein polynomials.
+fn cubic(control: [Point; 4], sagitta: f64) -> Vec<Point> {
+    let [a, b, c, d] = control.map(Point::to_vec2);
+    // A chord leaves a curve by an eighth of its second derivative over the squared step at most.
+    let second = (6.0 * (a - 2.0 * b + c)).hypot().max((6.0 * (b - 2.0 * c + d)).hypot());
+    let pieces = (second / (8.0 * sagitta)).sqrt().ceil().max(1.0);
+    let at = |t: f64| {
+        let s = 1.0 - t;
+        (a * (s * s * s) + b * (3.0 * s * s * t) + c * (3.0 * s * t * t) + d * (t * t * t)).to_point()
+    };
+    let inner = (1..pieces as usize).map(|k| at(k as f64 / pieces));
+    std::iter::once(control[0]).chain(inner).chain([control[3]]).collect()
 }
 
 /// A chain of straight pieces that is asked for distances, its pieces in the cells of a grid.

@@ -67,7 +67,7 @@ fn general_solver(points: &[Point], ends: Ends, radius: f64) -> f64 {
             let free_end = before.is_none() || after.is_none();
             let mut right = 0.0;
             match ends {
-                Ends::Natural if free_end => {
+                Ends::Natural | Ends::Pinned if free_end => {
                     rows.add(row, bend(i, axis), 1.0);
                     b.push(0.0);
                     continue;
@@ -92,7 +92,8 @@ fn general_solver(points: &[Point], ends: Ends, radius: f64) -> f64 {
     for (i, p) in points.iter().enumerate() {
         rows.add(b.len() + 1, place(i, 0), -1.0);
         rows.add(b.len() + 2, place(i, 1), -1.0);
-        b.extend([radius, -p.x, -p.y]);
+        let held = ends == Ends::Pinned && (i == 0 || i + 1 == n);
+        b.extend([if held { 1e-6 * radius } else { radius }, -p.x, -p.y]);
         cones.push(SecondOrderConeT(3));
     }
     let settings = DefaultSettingsBuilder::default().verbose(false).build().expect("settings");
@@ -146,6 +147,8 @@ fn as_fair_as_a_general_solver_finds() {
         (open, Ends::Natural, 0.1),
         (open, Ends::Natural, 0.3),
         (open, leaving, 0.1),
+        (open, Ends::Pinned, 0.1),
+        (open, Ends::Pinned, 0.3),
     ];
     for (points, ends, tolerance) in rows {
         let ours = fair(points, ends, mm(tolerance), Effort::Full).expect("a fair curve");

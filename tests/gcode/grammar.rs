@@ -63,7 +63,7 @@ const REFUSED: &[&str] = &[
     "G1 X1 F-5",
     "S-1",
     "G41 D1",
-    "G5 X1 Y1 I1 J1 P1 Q1",
+    "G5.1 X1 Y1 I1 J1",
     "G38.2 Z-1 F10",
     "G10 L2 P1 X0",
     "G33 X1",

@@ -1,6 +1,7 @@
 //! Programs: written, read back, and read from elsewhere.
 
 mod common;
+mod cubic;
 mod foreign;
 mod grammar;
 mod nist;

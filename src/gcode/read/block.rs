@@ -152,7 +152,7 @@ pub(super) fn unknown(word: &Word) -> Error {
             "compensation by the controller depends on its tables: compensate in the program"
         }
         (b'G', 100 | 382) => "it changes or reads what the program does not hold",
-        (b'G', 50 | 51) => "cubic moves are not read yet",
+        (b'G', 51) => "curves of other kinds than the cubic move (G5) are not read",
         (b'E', _) => "numbers have no exponents in this language",
         (b'M', 980 | 990) => "calls of other programs are not read",
         _ => "what a program does after a word that is not known cannot be told",
@@ -164,7 +164,7 @@ pub(super) fn unknown(word: &Word) -> Error {
 /// common practice).
 fn g_group(code: u16) -> Option<Group> {
     Some(match code {
-        0 | 10 | 20 | 30 | 800 | 810 | 820 | 830 => Group::Motion,
+        0 | 10 | 20 | 30 | 50 | 800 | 810 | 820 | 830 => Group::Motion,
         170 | 180 | 190 => Group::Plane,
         900 | 910 => Group::Distance,
         901 | 911 => Group::ArcCentre,

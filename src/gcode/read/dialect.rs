@@ -17,6 +17,8 @@ pub struct Dialect {
     pub dwell: Dwell,
     /// The words that the profile sets its path mode with; P and Q are read where they have them.
     pub path_word: Option<String>,
+    /// True when G5 is the cubic move by I, J, P and Q.
+    pub cubic_moves: bool,
     /// Where the cutter is before the first block; `None` when it can be anywhere.
     pub start: Option<Position>,
     /// True when lines that start with a slash are skipped.
@@ -32,6 +34,7 @@ impl Dialect {
             helix_feed: machine.arcs.helix_feed,
             dwell: machine.program.dwell,
             path_word: machine.path.word.clone(),
+            cubic_moves: machine.program.spline.is_some(),
             start: None,
             skip_optional: false,
         }

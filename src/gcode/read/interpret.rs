@@ -252,6 +252,7 @@ impl<'a> Controller<'a> {
             _ if by_machine => Err(wrong("G53 goes by rapid only here: put G0 on its line")),
             Some(code @ (0 | 10)) => self.line_to(code == 10, codes),
             Some(code @ (20 | 30)) => self.arc_to(code == 20, codes),
+            Some(50) => self.cubic_to(codes),
             Some(code @ (810 | 820 | 830)) => self.drill(code, codes),
             _ => Err(wrong("the line has axis words and no motion word is in force")),
         }

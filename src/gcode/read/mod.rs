@@ -4,6 +4,7 @@
 
 mod arc;
 mod block;
+mod cubic;
 mod cycle;
 mod dialect;
 mod functions;
@@ -12,6 +13,7 @@ mod moves;
 mod program;
 mod words;
 
+pub use cubic::CUBIC_ERROR;
 pub use dialect::Dialect;
 pub use interpret::interpret;
 pub use program::{ArcFlaw, Event, Program, What};

@@ -25,7 +25,7 @@ pub struct Program {
     /// inches (NISTIR 6556, 3.5.3.2).
     pub arc_flaws: Vec<ArcFlaw>,
     /// How far, in mm, moves may be from what the text says: 0 unless there are arcs across the XY plane,
-    /// which become straight moves.
+    /// which become straight moves, or cubic moves, which become arcs with the same line.
     pub approximated: f64,
     /// What was not in the text and taken from the profile or from the language, one sentence each.
     pub assumed: Vec<String>,

@@ -1,6 +1,8 @@
 //! What a program says about itself before it moves.
 
-use kurbo::Rect;
+use std::ops::Range;
+
+use kurbo::{Point, Rect};
 
 use super::decimal::{self, Grid};
 use crate::machine::{Machine, RetractBy, Unit};
@@ -26,6 +28,18 @@ pub struct Header {
     pub notes: Vec<String>,
     /// Comments on the way, in the order of their moves.
     pub marks: Vec<Mark>,
+    /// Moves that are one cubic together, in their order; for a machine with a word for it.
+    pub curves: Vec<Curve>,
+}
+
+/// Moves that follow a cubic in the plane from its start to its end, all at one height, feed and speed. They are written
+/// as one block.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Curve {
+    /// Indices of the moves in the toolpath, from 0.
+    pub moves: Range<usize>,
+    /// The first and the second control point, in mm.
+    pub control: [Point; 2],
 }
 
 /// A comment that stands before a move.

@@ -71,14 +71,19 @@ impl Lift {
     fn insert(self, toolpath: &mut Toolpath, header: &mut Header) {
         toolpath.moves.splice(self.before..self.before, self.moves);
         header.marks.iter_mut().filter(|mark| mark.before > self.before).for_each(|mark| mark.before += 2);
+        for curve in header.curves.iter_mut().filter(|curve| curve.moves.start >= self.before) {
+            curve.moves = curve.moves.start + 2..curve.moves.end + 2;
+        }
     }
 }
 
-/// True where two cuts meet below the clearance height that keep their height, or change it along the way.
+/// True where two cuts meet below the clearance height that keep their height, or change it along the way; not within a
+/// curve.
 fn may_lift(moves: &[Move], i: usize, header: &Header) -> bool {
     let along = |m: &Move| !m.is_rapid() && m.from.xy != m.to.xy;
     let marked = header.marks.iter().any(|mark| mark.before == i);
-    along(&moves[i - 1]) && along(&moves[i]) && moves[i].from.z < header.clearance && !marked
+    let in_curve = header.curves.iter().any(|curve| curve.moves.start < i && i < curve.moves.end);
+    along(&moves[i - 1]) && along(&moves[i]) && moves[i].from.z < header.clearance && !marked && !in_curve
 }
 
 /// True for the move down that ends a lift: straight down from the clearance height, where the move before it came up.

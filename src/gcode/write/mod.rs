@@ -15,7 +15,7 @@ use crate::machine::{Dwell, Machine, RetractBy};
 use crate::toolpath::Toolpath;
 
 pub use count::blocks_of;
-pub use header::{Header, Mark};
+pub use header::{Curve, Header, Mark};
 pub use lift::lift;
 pub use parts::{Part, write_parts};
 pub use run::{Amid, run};

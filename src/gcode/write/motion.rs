@@ -1,8 +1,11 @@
 //! The moves themselves, one block after the other, with no modal word said twice.
 
+use std::iter::Peekable;
+use std::slice::Iter;
+
 use super::arc::{Bend, Block, Rounder};
 use super::decimal::{Grid, Place};
-use super::header::{Header, Mark};
+use super::header::{Curve, Header, Mark};
 use super::pen::Pen;
 use super::{machine_retract, park, spin_up};
 use crate::error::{Error, Kind};
@@ -15,7 +18,8 @@ pub(super) struct Motion<'a> {
     machine: &'a Machine,
     grid: Grid,
     rounder: Rounder<'a>,
-    marks: std::iter::Peekable<std::slice::Iter<'a, Mark>>,
+    marks: Peekable<Iter<'a, Mark>>,
+    curves: Peekable<Iter<'a, Curve>>,
     clearance: i64,
     /// Where the controller stands.
     at: Place,
@@ -41,6 +45,7 @@ impl<'a> Motion<'a> {
             grid,
             rounder: Rounder::new(machine, header.chord_error),
             marks: header.marks.iter().peekable(),
+            curves: header.curves.iter().peekable(),
             clearance: grid.count(header.clearance),
             at: Place { x: 0, y: 0, z: 0 },
             xy_known: false,
@@ -87,6 +92,10 @@ impl<'a> Motion<'a> {
         }
         self.spindle(m.spindle_rpm.round() as i64);
         let Some(feed) = m.feed else { return self.rapid(m) };
+        if let Some(curve) = self.curves.next_if(|curve| curve.moves.start == i) {
+            self.covered = curve.moves.end;
+            return self.cubic(curve, self.grid.place(moves[self.covered - 1].to), feed);
+        }
         let mut blocks = std::mem::take(&mut self.blocks);
         let marked = self.marks.peek().is_some_and(|mark| mark.before == i + 1);
         let second = moves.get(i + 1).filter(|_| !marked);
@@ -207,12 +216,38 @@ impl<'a> Motion<'a> {
                 self.pen.word('J', j + from.1, decimals);
             }
         }
+        self.end_cut(feed, to);
+        Ok(())
+    }
+
+    /// One cubic move to `to`. Its word is said every time: whether it stays in force differs between controllers.
+    fn cubic(&mut self, curve: &Curve, to: Place, feed: f64) -> Result<(), Error> {
+        let Some(word) = &self.machine.program.spline else {
+            let what = format!("{} has no word for a cubic move", self.machine.name);
+            return Err(Error::new(Kind::Refused, what));
+        };
+        let feed = self.feed_count(feed)?;
+        let decimals = self.grid.decimals;
+        self.word = None;
+        self.pen.words(word);
+        self.plane_words(to, true);
+        for (point, from, letters) in
+            [(curve.control[0], self.at, ['I', 'J']), (curve.control[1], to, ['P', 'Q'])]
+        {
+            self.pen.word(letters[0], self.grid.count(point.x) - from.x, decimals);
+            self.pen.word(letters[1], self.grid.count(point.y) - from.y, decimals);
+        }
+        self.end_cut(feed, to);
+        Ok(())
+    }
+
+    /// The feed word, where it changes, and the end of a cutting block.
+    fn end_cut(&mut self, feed: i64, to: Place) {
         if self.feed.replace(feed) != Some(feed) {
             self.pen.word('F', feed, feed_decimals(self.machine.unit));
         }
         self.pen.end();
         self.at = to;
-        Ok(())
     }
 
     /// The X and Y words that `to` needs, or both.

@@ -4,7 +4,7 @@
 use std::ops::Range;
 
 use super::decimal::Grid;
-use super::header::{Header, Mark};
+use super::header::{Curve, Header, Mark};
 use super::lift::ends_lift;
 use super::write;
 use crate::error::{Error, Kind};
@@ -118,8 +118,15 @@ impl Cutter<'_> {
         let moves = start..start + part.moves.len();
         let marks = self.header.marks.iter().filter(|mark| moves.contains(&mark.before));
         let marks = marks.map(|mark| Mark { before: mark.before - moves.start, text: mark.text.clone() });
+        // Parts are cut at rapids, which no curve goes across.
+        let within = |curve: &&Curve| moves.start <= curve.moves.start && curve.moves.end <= moves.end;
+        let curves = self.header.curves.iter().filter(within).map(|curve| Curve {
+            moves: curve.moves.start - moves.start..curve.moves.end - moves.start,
+            control: curve.control,
+        });
         let mut header = self.header.clone();
         header.marks = marks.collect();
+        header.curves = curves.collect();
         header.title = format!("{}, {name}", header.title);
         write(part, &header, self.machine)
     }
