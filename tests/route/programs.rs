@@ -35,6 +35,7 @@ fn written(title: &str, toolpath: &Toolpath, clearance: f64, notes: Vec<String>)
         chord_error: 0.0,
         notes,
         marks: Vec::new(),
+        curves: Vec::new(),
     };
     let machine = Machine::named("shop-router").expect("it is built in");
     write(toolpath, &header, &machine).expect("it writes")
