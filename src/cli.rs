@@ -22,7 +22,8 @@ use clap::Parser;
 use crate::cautions;
 use crate::error::{Error, Kind};
 use crate::files::{self, Target, cannot_write};
-use crate::job::JobFile;
+use crate::job::{DrawingSettings, JobFile};
+use crate::read::{Limits, WAY_OUT};
 use args::{Arguments, Command};
 
 /// Carries out the command line `typed` (its first word is the program's name) and returns the exit status.
@@ -61,6 +62,11 @@ fn carry_out(command: Command) -> Result<u8, Error> {
         Command::Manual => generate::manual(),
     };
     done.map(|()| 0)
+}
+
+/// The bytes of a drawing, or of the program for it, within the limits.
+fn drawn(path: &Path, settings: &DrawingSettings) -> Result<Vec<u8>, Error> {
+    files::read_at_most(path, Limits::times(settings.size_limit).bytes(), WAY_OUT)
 }
 
 /// Where a report goes, where one was asked for; refused now where writing would be refused later.

@@ -28,6 +28,19 @@ pub fn read(path: &Path) -> Result<Vec<u8>, Error> {
     })
 }
 
+/// Everything in the file at `path`, unless that is more than `most` bytes; `way_out` says what to do then.
+///
+/// # Errors
+/// Those of [`read`]; [`Kind::Input`] when it is larger.
+pub fn read_at_most(path: &Path, most: u64, way_out: &str) -> Result<Vec<u8>, Error> {
+    let large = fs::metadata(path).is_ok_and(|known| known.is_file() && known.len() > most);
+    if large {
+        let what = format!("the file has more than {most} bytes, which is the limit");
+        return Err(Error::new(Kind::Input, what).in_file(path.display().to_string()).remedy(way_out));
+    }
+    read(path)
+}
+
 /// Where an output goes.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub enum Target {

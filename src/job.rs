@@ -77,6 +77,8 @@ pub struct DrawingSettings {
     pub layers: Option<Vec<String>>,
     /// How far apart ends may be that are joined; `None` for the tolerance.
     pub join_mm: Option<f64>,
+    /// How many times the usual size it may have at most; `None` for once.
+    pub size_limit: Option<f64>,
 }
 
 /// How many units of the last decimal a tolerance must span at least: fitting loses 1.5 of them to the rounding of the
@@ -258,6 +260,7 @@ fn drawing(typed: &DrawingArgs, mm: Units) -> Result<DrawingSettings, Error> {
         fit_width_mm: mm.length(&bounds::FIT_WIDTH, typed.fit_width)?,
         layers: typed.layers.clone(),
         join_mm: mm.length(&bounds::JOIN, typed.join)?,
+        size_limit: typed.size_limit.map(|times| bounds::SIZE_LIMIT.hold(times)).transpose()?,
     })
 }
 

@@ -1,9 +1,9 @@
 //! `ribband check`: any program against a drawing.
 
 use super::args::Check;
-use super::{print, report_to, tell};
+use super::{drawn, print, report_to, tell};
 use crate::error::{Error, Kind};
-use crate::files::{self, Target};
+use crate::files::Target;
 use crate::job::CheckJob;
 use crate::report;
 use crate::run::{self, Source};
@@ -14,8 +14,8 @@ pub(super) fn check(typed: &Check) -> Result<(), Error> {
     let job = CheckJob::new(&typed.settings)?;
     let report = report_to(typed.report.as_deref(), typed.overwrite, &[&typed.program, &typed.against])?;
     let (program, drawing) = (typed.program.display().to_string(), typed.against.display().to_string());
-    let program_bytes = files::read(&typed.program)?;
-    let drawing_bytes = files::read(&typed.against)?;
+    let program_bytes = drawn(&typed.program, &job.drawing)?;
+    let drawing_bytes = drawn(&typed.against, &job.drawing)?;
     let told = run::check(
         &job,
         Source { name: &program, bytes: &program_bytes },

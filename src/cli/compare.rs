@@ -1,10 +1,10 @@
 //! `ribband compare`: what a drawing costs at a range of tolerances.
 
 use super::args::Compare;
-use super::{job_file, print, report_to, tell};
+use super::{drawn, job_file, print, report_to, tell};
 use crate::compare::compare as planned;
 use crate::error::{Error, Kind};
-use crate::files::{self, Target};
+use crate::files::Target;
 use crate::job::{CutArgs, Job, JobFile, Ladder, Settings};
 use crate::num::Length;
 use crate::run::Source;
@@ -34,7 +34,7 @@ pub(super) fn compare(typed: &Compare) -> Result<(), Error> {
         return Err(Error::new(Kind::Settings, what).remedy("choose another --report"));
     }
     let name = typed.drawing.display().to_string();
-    let bytes = files::read(&typed.drawing)?;
+    let bytes = drawn(&typed.drawing, &job.drawing)?;
     let compared = planned(&job, Source { name: &name, bytes: &bytes }, &ladder)
         .map_err(|error| if error.file.is_empty() { error.in_file(name.as_str()) } else { error })?;
 

@@ -3,9 +3,9 @@
 use std::path::{Path, PathBuf};
 
 use super::args::Measure;
-use super::{batch, print, report_to, tell};
+use super::{batch, drawn, print, report_to, tell};
 use crate::error::Error;
-use crate::files::{self, Target};
+use crate::files::Target;
 use crate::job::{self, DrawingSettings};
 use crate::measure::Measurement;
 use crate::run::{self, Source};
@@ -53,7 +53,7 @@ fn each(typed: &Measure, settings: &DrawingSettings) -> Result<u8, Error> {
 /// A drawing's name and what is in it.
 fn measured(drawing: &Path, settings: &DrawingSettings) -> Result<(String, Measurement), Error> {
     let name = drawing.display().to_string();
-    let bytes = files::read(drawing)?;
+    let bytes = drawn(drawing, settings)?;
     let measured = run::measure(settings, Source { name: &name, bytes: &bytes })?;
     Ok((name, measured))
 }

@@ -31,6 +31,13 @@ pub(super) const FIT_WIDTH: Bound =
     Bound { name: "fit-width", unit: "mm", least: 0.01, most: 1e5, reason: "no machine cuts such a part" };
 pub(super) const SCALE: Bound =
     Bound { name: "scale", unit: "", least: 1e-6, most: 1e6, reason: "no drawing is that far off its size" };
+pub(super) const SIZE_LIMIT: Bound = Bound {
+    name: "size-limit",
+    unit: "",
+    least: 1e-6,
+    most: 1000.0,
+    reason: "no memory holds such a drawing",
+};
 pub(super) const DEPTH: Bound =
     Bound { name: "depth", unit: "mm", least: 0.01, most: 1e3, reason: "no cutter cuts such a depth" };
 pub(super) const PASS: Bound =

@@ -79,6 +79,9 @@ pub struct DrawingArgs {
     /// Join ends that are at most this far apart [default: the tolerance]
     #[arg(long, value_name = "LEN", help_heading = "Drawing")]
     pub join: Option<Length>,
+    /// Read drawings up to so many times the usual size: 256 MiB, 200000 contours, 5000000 vertices [default: 1]
+    #[arg(long, value_name = "F", help_heading = "Drawing")]
+    pub size_limit: Option<f64>,
 }
 
 /// What a bare number in a drawing means.
@@ -184,6 +187,7 @@ impl DrawingArgs {
             fit_width: if self.scale.is_some() { self.fit_width } else { self.fit_width.or(other.fit_width) },
             layers: self.layers.or(other.layers),
             join: self.join.or(other.join),
+            size_limit: self.size_limit.or(other.size_limit),
         }
     }
 }

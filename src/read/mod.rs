@@ -5,6 +5,7 @@
 
 mod curve;
 mod dxf;
+mod limits;
 mod number;
 mod points;
 mod sample;
@@ -16,6 +17,7 @@ use kurbo::Rect;
 use rayon::prelude::*;
 
 pub use curve::{Chain, Curve, Drawing, Element, EllipseArc, Nurbs};
+pub use limits::{Limits, WAY_OUT};
 pub use scale::{FileUnit, MM_PER_INCH, Scale, Unit};
 
 use crate::error::{Error, Kind};
@@ -64,7 +66,7 @@ pub fn read_drawing(bytes: &[u8]) -> Result<Drawing, Error> {
 ///
 /// # Errors
 /// `Kind::Refused` when the scale is unknown, `Kind::Settings` for a layer that is not there, `Kind::Input` for a
-/// drawing without geometry or with coordinates beyond reason.
+/// drawing without geometry, with coordinates beyond reason or beyond the limits.
 pub fn to_sketch(mut drawing: Drawing, scale: &Scale) -> Result<Sketch, Error> {
     if let Some(layers) = &scale.layers {
         keep_layers(&mut drawing, layers)?;
@@ -77,6 +79,7 @@ pub fn to_sketch(mut drawing: Drawing, scale: &Scale) -> Result<Sketch, Error> {
         Sketch { mm_per_unit: settled.mm_per_unit, scale_from: settled.from, ..Sketch::default() };
     sketch.notes.extend(settled.note.into_iter().chain(notes));
     fill(&mut sketch, elements, sampling_tolerance(bbox, settled.mm_per_unit));
+    scale.limits.hold(&sketch)?;
     sketch.contours.iter().try_for_each(within_reason)?;
     if sketch.contours.is_empty() { Err(nothing_drawn(&sketch.notes)) } else { Ok(sketch) }
 }

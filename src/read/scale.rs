@@ -3,6 +3,7 @@
 use kurbo::Rect;
 
 use super::curve::Drawing;
+use super::limits::Limits;
 use crate::error::{Error, Kind};
 
 /// Millimetres to an inch, exactly.
@@ -53,12 +54,14 @@ pub struct Scale {
     pub fit_width_mm: Option<f64>,
     /// `--layers`: the only layers to read; `None` reads all.
     pub layers: Option<Vec<String>>,
+    /// `--size-limit`: how large the drawing may be.
+    pub limits: Limits,
 }
 
 impl Default for Scale {
     /// Full size, the drawing's own unit, all layers.
     fn default() -> Self {
-        Self { drawing_unit: None, scale: 1.0, fit_width_mm: None, layers: None }
+        Self { drawing_unit: None, scale: 1.0, fit_width_mm: None, layers: None, limits: Limits::default() }
     }
 }
 

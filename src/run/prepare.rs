@@ -10,7 +10,7 @@ use crate::clean::{self, Cleaned, Roughness};
 use crate::error::{Error, Kind};
 use crate::job::{DrawingSettings, DrawingUnit, Job};
 use crate::num::Tolerance;
-use crate::read::{self, Scale, Unit};
+use crate::read::{self, Limits, Scale, Unit};
 use crate::sketch::{Contour, Sketch};
 
 /// A drawing ready to be fitted.
@@ -53,6 +53,7 @@ pub(super) fn scale(settings: &DrawingSettings) -> Scale {
         scale: settings.scale.unwrap_or(1.0),
         fit_width_mm: settings.fit_width_mm,
         layers: settings.layers.clone(),
+        limits: Limits::times(settings.size_limit),
     }
 }
 

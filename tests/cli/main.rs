@@ -7,6 +7,7 @@ mod condensing;
 mod demo;
 mod formats;
 mod lengths;
+mod limits;
 mod other;
 mod outlines;
 mod outputs;
