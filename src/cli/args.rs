@@ -39,6 +39,7 @@ pub(super) enum Command {
     /// Hold a range of tolerances against blocks, time, starved blocks and deviation
     Compare(Compare),
     /// List the machine profiles, or check and explain one of them
+    #[command(after_help = MACHINES_EXAMPLES)]
     Machines {
         /// A built-in profile, or a TOML file
         #[arg(value_name = "NAME or FILE")]
@@ -51,15 +52,23 @@ pub(super) enum Command {
         overwrite: bool,
     },
     /// Print the safety cautions
+    #[command(after_help = "Example:\n  ribband cautions")]
     Cautions,
     /// Print a shell's completion script
+    #[command(after_help = "Example:\n  ribband completions bash > ribband.bash")]
     Completions {
         /// The shell
         shell: Shell,
     },
     /// Print the manual page
+    #[command(after_help = "Example:\n  ribband manual > ribband.1")]
     Manual,
 }
+
+const MACHINES_EXAMPLES: &str = "Examples:
+  ribband machines
+  ribband machines old-controller
+  ribband machines --report machines.json";
 
 /// `ribband preview` as typed: all that `post` takes, the picture in the program's place.
 #[derive(Args, Debug)]
@@ -109,6 +118,7 @@ pub(super) struct Post {
 
 /// `ribband measure` as typed.
 #[derive(Args, Debug)]
+#[command(after_help = MEASURE_EXAMPLES)]
 pub(super) struct Measure {
     /// The drawing: SVG, DXF or a list of points
     pub(super) drawing: PathBuf,
@@ -125,8 +135,13 @@ pub(super) struct Measure {
     pub(super) overwrite: bool,
 }
 
+const MEASURE_EXAMPLES: &str = "Examples:
+  ribband measure sign.dxf
+  ribband measure template.csv --drawing-unit mm --report measured.json";
+
 /// `ribband check` as typed.
 #[derive(Args, Debug)]
+#[command(after_help = CHECK_EXAMPLES)]
 pub(super) struct Check {
     /// The program
     pub(super) program: PathBuf,
@@ -143,8 +158,15 @@ pub(super) struct Check {
     pub(super) overwrite: bool,
 }
 
+const CHECK_EXAMPLES: &str = "Exit status 0 says that no claim fails, 1 that one does.
+
+Examples:
+  ribband check sign.nc --against sign.dxf --depth 3mm
+  ribband check sign.nc --against sign.dxf --tolerance 0.2mm --report verdict.json";
+
 /// `ribband condense` as typed.
 #[derive(Args, Debug)]
+#[command(after_help = CONDENSE_EXAMPLES)]
 pub(super) struct Condense {
     /// The program
     pub(super) program: PathBuf,
@@ -156,6 +178,10 @@ pub(super) struct Condense {
     #[arg(long, help_heading = "Files")]
     pub(super) quiet: bool,
 }
+
+const CONDENSE_EXAMPLES: &str = "Examples:
+  ribband condense sign.nc
+  ribband condense sign.nc --tolerance 0.05mm -o short.nc";
 
 /// `ribband compare` as typed.
 #[derive(Args, Debug)]
@@ -212,4 +238,4 @@ const POST_EXAMPLES: &str = "Examples:
   ribband post sign.dxf --depth 3mm
   ribband post sign.dxf blade.svg --depth 3mm -o programs
   ribband post blade.svg --depth 6 --tolerance 0.05mm --cutter 3.175mm --feed 1200mm/min -o blade.nc
-  ribband post template.csv --drawing-unit mm --depth 1/4in --machine inch-gantry --report template.json";
+  ribband post template.csv --drawing-unit mm --depth 1/4in --machine inch-gantry --report t.json";

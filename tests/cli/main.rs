@@ -5,6 +5,7 @@ mod batch;
 mod beside;
 mod condensing;
 mod demo;
+mod examples;
 mod formats;
 mod lengths;
 mod limits;
