@@ -143,6 +143,12 @@ fn clamps_are_kept_clear_of_told_and_checked() {
         shop.run(&typed)
     };
     assert_eq!(check("80,0,100,20,4").status, 0, "{}", check("80,0,100,20,4").out);
+    // It comes to its first cut 5 mm above the stock, from where nobody knows.
+    let tall = check("200,200,230,230,25");
+    let open =
+        "that the way to the first cut, from a place that the program does not state, keeps clear of clamp 1";
+    assert!(tall.status == 0 && tall.out.contains(open), "{}", tall.out);
+    assert!(!check("200,200,230,230,4").out.contains(open), "lower than that way");
     // The cutter's centre runs 3 mm beside the part, its edge 6 mm; the lead is elsewhere.
     for (clamp, status) in
         [("66.3,5,90,9,4", 0), ("65.8,5,90,9,4", 1), ("30,-20,32,-5,0", 1), ("62,5,90,9,-0", 1)]
