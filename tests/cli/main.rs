@@ -15,6 +15,7 @@ mod outputs;
 mod parts;
 mod posting;
 mod reading;
+mod readme;
 mod schema;
 mod splines;
 mod waste;
