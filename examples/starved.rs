@@ -8,7 +8,7 @@ use std::path::Path;
 use rayon::prelude::*;
 use ribband::job::{CutArgs, DrawingArgs, DrawingUnit, Job, JobFile, Settings};
 use ribband::num::Length;
-use ribband::run::{Plan, Source, Unwatched, plan};
+use ribband::run::{CutterProgram, Plan, Source, Unwatched, plan};
 use serde_json::Value;
 
 const HEAD: &str = "# Real traces on a slow controller
@@ -87,7 +87,10 @@ fn row(folder: &Path, entry: &Value) -> Result<Option<Row>, Failure> {
     }
     let bytes = std::fs::read(folder.join(csv))?;
     let planned = plan(&job, Source { name: csv, bytes: &bytes }, &Unwatched);
-    let Plan { times, as_drawn, cleaned, .. } = planned.map_err(|error| error.to_string())?;
+    let Plan { programs, cleaned, .. } = planned.map_err(|error| error.to_string())?;
+    let [CutterProgram { times, as_drawn, .. }] = &programs[..] else {
+        return Err("one cutter is one program".into());
+    };
     Ok(Some(Row {
         id: id.into(),
         vertices: cleaned.contours.iter().map(|contour| contour.path.vertices.len()).sum(),

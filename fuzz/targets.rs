@@ -107,8 +107,14 @@ fn job_file(input: &[u8]) -> Result<bool, String> {
         Err(error) => return useful(&error),
     };
     let cutting = &job.cutting;
-    let numbers =
-        [cutting.depth_mm, cutting.pass_mm, cutting.feed, cutting.plunge, cutting.spindle_rpm, job.cutter_mm];
+    let numbers = [
+        cutting.depth_mm,
+        cutting.pass_mm,
+        cutting.feed,
+        cutting.plunge,
+        cutting.spindle_rpm,
+        job.cutters[0].diameter_mm,
+    ];
     if numbers.iter().all(|number| number.is_finite() && *number > 0.0) {
         Ok(true)
     } else {
@@ -134,12 +140,13 @@ fn post(input: &[u8]) -> Result<bool, String> {
         Err(error) if error.kind == Kind::Settings => return Err(error.to_string()),
         Err(error) => return useful(&error),
     };
-    if !plan.verdict.holds {
+    let [made] = &plan.programs[..] else { return Err("one cutter is not one program".into()) };
+    if !made.verdict.holds {
         return Err("a program that fails its check is handed on".into());
     }
     let length = |path: &ArcSpline| path.length();
-    let meant: f64 = plan.routed.iter().map(|routed| length(&routed.path)).sum();
-    let read: f64 = plan
+    let meant: f64 = made.routed.iter().map(|routed| length(&routed.path)).sum();
+    let read: f64 = made
         .program
         .toolpath
         .moves
@@ -148,12 +155,16 @@ fn post(input: &[u8]) -> Result<bool, String> {
         .map(|m| m.length())
         .sum();
     let passes = job.cutting.depth_mm / job.cutting.pass_mm;
-    let places = plan.program.motion_blocks as f64 * 4.0 * job.machine.last_place();
+    let places = made.program.motion_blocks as f64 * 4.0 * job.machine.last_place();
     if (read - meant * passes.ceil()).abs() > places + 1e-3 * meant {
         return Err(format!("{read} mm are cut, {meant} mm were meant"));
     }
     let again = run::plan(&job, source, &Unwatched).map_err(|error| error.to_string())?;
-    if again.text == plan.text { Ok(true) } else { Err("the second time it is another program".into()) }
+    if again.programs[0].text == made.text {
+        Ok(true)
+    } else {
+        Err("the second time it is another program".into())
+    }
 }
 
 /// Bytes as a point list: steps of a walk, a new contour where a byte is 255, closed where it is 254.

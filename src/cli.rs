@@ -12,6 +12,7 @@ mod outputs;
 mod post;
 mod preview;
 mod progress;
+mod resume;
 
 use std::ffi::OsString;
 use std::io::Write;

@@ -63,9 +63,15 @@ impl Target {
     /// The place of part `k` of several: `sign.nc` becomes `sign-1.nc`. Standard output stays what it is.
     #[must_use]
     pub fn part(&self, k: usize) -> Self {
+        self.beside(&k.to_string())
+    }
+
+    /// A place beside this one: `sign.nc` becomes `sign-air.nc` for the word `air`. Standard output stays what it is.
+    #[must_use]
+    pub fn beside(&self, word: &str) -> Self {
         let Self::File(path) = self else { return Self::Stdout };
         let mut name = path.file_stem().unwrap_or_default().to_owned();
-        name.push(format!("-{k}"));
+        name.push(format!("-{word}"));
         if let Some(ending) = path.extension() {
             name.push(".");
             name.push(ending);

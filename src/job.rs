@@ -20,12 +20,13 @@ use crate::error::{Error, Kind};
 use crate::files;
 use crate::machine::{Cutter, Machine, RetractBy};
 use crate::num::{Length, LengthUnit, Tolerance};
+use crate::sketch::Contour;
 
 pub use accuracy::{AccuracyArgs, Moves, ToleranceSide};
 pub use checking::{CheckArgs, CheckJob};
 pub use condensing::{CondenseArgs, CondenseJob};
 pub use cutting::{Cutting, TabNumber, Tabs};
-pub use file::{JobFile, LayerSettings};
+pub use file::{JobFile, LayerSettings, same_colour};
 pub use ladder::{Ladder, LadderArgs};
 pub use laying::{Grid, Layout, LayoutArgs};
 pub use places::{ClampWanted, Pair, SizeWanted, ThicknessWanted};
@@ -48,20 +49,27 @@ pub struct Job {
     pub moves: Moves,
     /// True when curvature along trace, fair curve and path is shown.
     pub curvature: bool,
-    /// The cutter's diameter.
-    pub cutter_mm: f64,
-    /// The cutter's entry in the profile, if it has one.
-    pub cutter: Option<Cutter>,
-    /// Material left on the drawn edge, in mm; negative for a looser fit.
-    pub allowance_mm: f64,
+    /// The cutters, that of the whole job first.
+    pub cutters: Vec<ChosenCutter>,
     /// How contours are cut.
     pub cutting: Cutting,
     /// How the contours of single layers are cut instead; `None` where they are left out.
     pub layers: BTreeMap<String, Option<Cutting>>,
+    /// The same for contours of single colours that are on none of these layers.
+    pub colours: BTreeMap<String, Option<Cutting>>,
     /// How the drawing is laid on the stock.
     pub layout: Layout,
     /// Zero, stock, clamps and the height of travel.
     pub stock: Stock,
+}
+
+/// A cutter that was asked for.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ChosenCutter {
+    /// Its diameter.
+    pub diameter_mm: f64,
+    /// Its entry in the machine profile, if it has one.
+    pub entry: Option<Cutter>,
 }
 
 /// How a drawing is read.
@@ -109,31 +117,31 @@ impl Job {
         if let Some(tolerance) = tolerance {
             spans_decimals(tolerance, &machine)?;
         }
-        let (cutter_mm, cutter) = cutter(all.cutter.as_deref(), &machine, mm)?;
         let stock = Stock::new(&all.setting_up, all.bed_cut, mm)?;
         starts_clear(&stock, &machine)?;
-        let maker =
-            cutting::Maker { machine: &machine, mm, cutter_mm, cutter: cutter.as_ref(), stock: &stock };
-        let cutting = maker.cutting(&all)?;
-        let entry = |(name, entry): (&String, &LayerSettings)| {
-            let wanted = typed.clone().or(entry.settings()).or(file.settings.clone());
+        let mut maker = cutting::Maker { machine: &machine, mm, stock: &stock, cutters: Vec::new() };
+        let cutting = maker.cutting(&all.cut)?;
+        let mut entry = |(name, entry): (&String, &LayerSettings)| {
+            let wanted = typed.cut.clone().or(entry.cut.clone()).or(file.settings.cut.clone());
             let cutting = if entry.skip { None } else { Some(maker.cutting(&wanted)?) };
             Ok((name.clone(), cutting))
         };
-        let layers = file.layers.iter().map(entry).collect::<Result<BTreeMap<_, _>, Error>>()?;
-        let allowance_mm = mm.length(&bounds::ALLOWANCE, all.allowance)?.unwrap_or(0.0);
+        let layers = file.layers.iter().map(&mut entry).collect::<Result<BTreeMap<_, _>, Error>>()?;
+        let colours = file.colours.iter().map(entry).collect::<Result<BTreeMap<_, _>, Error>>()?;
+        let cutters = maker.cutters;
+        let off_edge = |cutting: &Cutting| cutting.allowance_mm != 0.0;
         let beside = |cutting: &Cutting| cutting.side != Side::On;
-        if allowance_mm != 0.0 && !(beside(&cutting) || layers.values().flatten().any(beside)) {
+        let all_cuttings =
+            || std::iter::once(&cutting).chain(layers.values().chain(colours.values()).flatten());
+        if all_cuttings().any(off_edge) && !all_cuttings().any(|c| off_edge(c) && beside(c)) {
             let what = "--allowance moves the cutter off the drawn edge, and the cut is on the line";
             return Err(Error::new(Kind::Settings, what).remedy("choose a --side, or leave --allowance out"));
         }
         let layout = Layout::new(&all.layout, mm)?;
-        let outside = |c: &Cutting| matches!(c.side, Side::Outside | Side::Auto);
-        let needed_mm = cutter_mm + 2.0 * allowance_mm;
-        if layout.copies.count() > 1
-            && layout.gap_mm < needed_mm
-            && (outside(&cutting) || layers.values().flatten().any(outside))
-        {
+        let outside = |c: &&Cutting| matches!(c.side, Side::Outside | Side::Auto);
+        let needed = |c: &Cutting| cutters[c.cutter].diameter_mm + 2.0 * c.allowance_mm;
+        let needed_mm = all_cuttings().filter(outside).map(needed).fold(0.0, f64::max);
+        if layout.copies.count() > 1 && layout.gap_mm < needed_mm {
             return Err(too_close(layout.gap_mm, needed_mm));
         }
         all.accuracy.judge(&machine, std::iter::once(&cutting).chain(layers.values().flatten()))?;
@@ -144,11 +152,10 @@ impl Job {
             tolerance_side: all.accuracy.tolerance_side.unwrap_or_default(),
             moves: all.accuracy.moves.unwrap_or_default(),
             curvature: all.accuracy.curvature == Some(true),
-            cutter_mm,
-            cutter,
-            allowance_mm,
+            cutters,
             cutting,
             layers,
+            colours,
             stock,
             machine,
         })
@@ -161,8 +168,12 @@ impl Job {
 
     /// How much further than its radius the cutter's centre is meant to keep from the edge, in mm, where it cuts on one
     /// side alone: for a cut on the line as much less.
-    pub fn edge_mm(&self) -> f64 {
-        if self.cuts_on_line_only() { -self.cutter_mm / 2.0 } else { self.allowance_mm }
+    pub fn edge_mm(&self, cutting: &Cutting) -> f64 {
+        if self.cuts_on_line_only() {
+            -self.cutters[cutting.cutter].diameter_mm / 2.0
+        } else {
+            cutting.allowance_mm
+        }
     }
 
     /// True when no contour is cut beside its line.
@@ -172,12 +183,18 @@ impl Job {
 
     /// All ways in which contours may be cut.
     pub fn cuttings(&self) -> impl Iterator<Item = &Cutting> {
-        std::iter::once(&self.cutting).chain(self.layers.values().flatten())
+        std::iter::once(&self.cutting).chain(self.layers.values().chain(self.colours.values()).flatten())
     }
 
-    /// How the contours of a layer are cut; `None` where they are left out.
-    pub fn cutting_of(&self, layer: &str) -> Option<&Cutting> {
-        self.layers.get(layer).map_or(Some(&self.cutting), Option::as_ref)
+    /// How a contour that is cut is cut.
+    pub fn cutting_for(&self, contour: &Contour) -> &Cutting {
+        self.cutting_of(contour).unwrap_or(&self.cutting)
+    }
+
+    /// How a contour is cut, by its layer, else by its colour; `None` where it is left out.
+    pub fn cutting_of(&self, contour: &Contour) -> Option<&Cutting> {
+        let by_colour = || self.colours.get(&same_colour(&contour.colour));
+        self.layers.get(&contour.layer).or_else(by_colour).map_or(Some(&self.cutting), Option::as_ref)
     }
 }
 
@@ -277,23 +294,30 @@ fn spans_decimals(tolerance_mm: f64, machine: &Machine) -> Result<(), Error> {
 }
 
 /// The cutter: typed as a diameter or a name, or the profile's first.
-fn cutter(typed: Option<&str>, machine: &Machine, mm: Units) -> Result<(f64, Option<Cutter>), Error> {
+fn cutter(typed: Option<&str>, machine: &Machine, mm: Units) -> Result<ChosenCutter, Error> {
+    let known_as = |entry: &Cutter| ChosenCutter { diameter_mm: entry.diameter, entry: Some(entry.clone()) };
     let known = || machine.cutters.iter().map(|c| c.name.as_str()).collect::<Vec<_>>().join(", ");
     let Some(typed) = typed else {
         let first = machine.cutters.first().ok_or_else(|| {
             let what = format!("no cutter is given, and the profile {} has none", machine.name);
             Error::new(Kind::Settings, what).remedy("give its diameter with --cutter, such as --cutter 6mm")
         })?;
-        return Ok((first.diameter, Some(first.clone())));
+        return Ok(known_as(first));
     };
     if let Some(cutter) = machine.cutter(typed) {
-        return Ok((cutter.diameter, Some(cutter.clone())));
+        return Ok(known_as(cutter));
     }
     let length: Length = typed.parse().map_err(|_| {
         let what =
             format!("there is no cutter `{typed}` in the profile {}, and it is no diameter", machine.name);
         Error::new(Kind::Settings, what).remedy(format!("its cutters are: {}; or write 6mm, 1/4in", known()))
     })?;
-    let diameter = mm.length(&bounds::CUTTER, Some(length))?;
-    Ok((diameter.unwrap_or_default(), None))
+    let diameter_mm = mm.length(&bounds::CUTTER, Some(length))?.unwrap_or_default();
+    // A diameter that one cutter of the profile has is that cutter, with its flutes and its speed.
+    let same = |entry: &&Cutter| (entry.diameter - diameter_mm).abs() <= 4.0 * f64::EPSILON * diameter_mm;
+    let mut known = machine.cutters.iter().filter(same);
+    Ok(match (known.next(), known.next()) {
+        (Some(one), None) => known_as(one),
+        _ => ChosenCutter { diameter_mm, entry: None },
+    })
 }

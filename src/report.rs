@@ -3,6 +3,8 @@
 //! A field keeps its name and meaning; fields may be added. Lengths are in mm, times in seconds, the program's own
 //! coordinates where `setup` says so and the drawing's everywhere else.
 
+mod several;
+
 use std::collections::BTreeMap;
 
 use schemars::JsonSchema;
@@ -30,10 +32,58 @@ pub struct Report {
     pub program: Program,
     /// What the written text was checked for.
     pub check: Check,
+    /// Each program by itself, in the order in which they are run, where several cutters are needed; else none. `setup`,
+    /// `program` and `check` then hold the sums and the worst of them, and all claims.
+    pub programs: Vec<CutterProgram>,
+    /// The dry runs that were written beside the program.
+    pub dry_runs: Vec<DryRun>,
     /// What the person at the machine should know, one sentence each.
     pub warnings: Vec<String>,
     /// How long each stage took, in milliseconds. The only figures that differ from run to run.
     pub timings_ms: BTreeMap<String, f64>,
+}
+
+/// A program to try before the job's own, whose spindle stays off.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct DryRun {
+    /// `air cut` or `frame`.
+    pub kind: String,
+    /// Its files, one to be run after the other.
+    pub files: Vec<Part>,
+    /// What they were checked for.
+    pub claims: Vec<Claim>,
+}
+
+/// A place where a program can be taken up again after a stop, by a program that is written with `--resume-at`.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct Restart {
+    /// The file that it stands in.
+    pub file: String,
+    /// The line of that file.
+    pub line: usize,
+    /// The block's own number, where blocks are numbered.
+    pub block: Option<u32>,
+    /// Which cut it belongs to, counted from 1 in the order in which they are begun.
+    pub cut: usize,
+    /// The id of the contour that is cut.
+    pub contour: usize,
+    /// The height that the contour is cut to already; none where its cut begins.
+    pub below_mm: Option<f64>,
+    /// Where the cutter is then, from zero: x and y.
+    pub at_mm: [f64; 2],
+}
+
+/// The program of one cutter of several.
+#[derive(Clone, Debug, Serialize, JsonSchema)]
+pub struct CutterProgram {
+    /// The ids of the contours that it is for.
+    pub contours: Vec<usize>,
+    /// What the machine must be set up as.
+    pub setup: Setup,
+    /// What was written.
+    pub program: Program,
+    /// What the written text was checked for.
+    pub check: Check,
 }
 
 /// The drawing as it was read.
@@ -140,7 +190,7 @@ pub struct Setup {
     pub layout: Layout,
     /// The extents of the cutter's path from that zero: least x, y, z, largest x, y, z.
     pub extents_mm: [f64; 6],
-    /// The cutter's diameter.
+    /// The cutter's diameter; of several, the largest.
     pub cutter_mm: f64,
     /// The side of the contour that the cutter runs on.
     pub side: String,
@@ -198,8 +248,8 @@ pub struct Layout {
 pub struct Program {
     /// The file's name as typed; `-` for standard output.
     pub file: String,
-    /// The files that stand instead, one to be run after the other, where the controller's memory is too small for one;
-    /// else none.
+    /// The files that stand instead, one to be run after the other, where the controller's memory is too small for one
+    /// or several cutters are needed; else none.
     pub parts: Vec<Part>,
     /// Lines that a controller must execute, of all parts.
     pub blocks: usize,
@@ -224,11 +274,13 @@ pub struct Program {
     /// The highest feed override at which no block starves, in percent, of those up to 200; 0 where some starve at 100
     /// already.
     pub highest_override: u32,
+    /// Where it can be taken up again after a stop.
+    pub restarts: Vec<Restart>,
     /// The same job with every vertex of the drawing as a straight block.
     pub as_drawn: AsDrawn,
 }
 
-/// One of the files of a program that is too long for the controller's memory.
+/// One of several files.
 #[derive(Clone, Debug, Serialize, JsonSchema)]
 pub struct Part {
     /// Its name.

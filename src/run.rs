@@ -1,15 +1,18 @@
 //! The main job from end to end, to be read from top to bottom: drawing in, checked program out.
 
+mod again;
 mod checking;
 mod clock;
 mod curvature;
 mod curving;
 mod cutting;
+mod dry;
 mod fairing;
 mod feeding;
 mod header;
 mod placing;
 mod prepare;
+mod programs;
 mod progress;
 mod reporting;
 mod showing;
@@ -18,17 +21,16 @@ mod splitting;
 
 use std::collections::{BTreeMap, HashSet};
 
-use kurbo::Rect;
+use kurbo::{Rect, Vec2};
 use rayon::prelude::*;
 use sha2::{Digest, Sha256};
 
-use crate::check::Verdict;
+use crate::check;
 use crate::clean::{Cleaned, Roughness};
 use crate::error::Error;
 use crate::fair;
-use crate::feed::{self, Limits, Times};
 use crate::fit::{self, Fitted};
-use crate::gcode::{self, Dialect, Header, Program};
+use crate::gcode::{self, Dialect, Program};
 use crate::job::{CheckJob, DrawingSettings, Job};
 use crate::machine::Machine;
 use crate::measure::{self, Measurement};
@@ -36,14 +38,17 @@ use crate::num::Tolerance;
 use crate::preview::{Bend, Scene};
 use crate::read;
 use crate::report::{self, Report};
-use crate::route::{self, Routed, Routing, Setup};
+use crate::route::Setup;
 use crate::sketch::{Contour, Sketch};
-use checking::Intended;
 use clock::Clock;
 use fairing::Cubics;
 use placing::Placing;
 use prepare::prepare;
+use programs::Bench;
 
+pub use again::{Block, Number, Place, Resumed};
+pub use dry::{Dry, DryRun};
+pub use programs::{AsDrawn, CutterProgram, Part};
 pub use progress::{Progress, Unwatched};
 
 /// A drawing as it came.
@@ -82,49 +87,22 @@ pub struct Plan {
     pub parts_box: Rect,
     /// The stock from above, in the program's coordinates, where it is given.
     pub stock: Option<Rect>,
-    /// Each path in the program's coordinates, with how it is cut.
-    pub routed: Vec<Routed>,
-    /// The moves as meant.
-    pub routing: Routing,
-    /// The program's text, as a whole.
-    pub text: String,
-    /// What that text says, read back.
-    pub program: Program,
-    /// The same in parts, in the order in which they are run, where the controller's memory is too small for the whole;
-    /// else none.
-    pub parts: Vec<Part>,
-    /// What it was checked for.
-    pub verdict: Verdict,
-    /// Its planned times.
-    pub times: Times,
-    /// The highest feed override at which no block starves, in percent; 0 where some starve at 100 % already.
-    pub highest_override: u32,
-    /// The same job with the drawing cut as it is.
-    pub as_drawn: AsDrawn,
+    /// Where the drawing's zero lies in the lower left copy, in the program's coordinates.
+    pub drawing_at: Vec2,
+    /// The program's zero on the machine, from the lower left end of its travel, where the stock's place there is given.
+    pub zero_at: Option<Vec2>,
+    /// Zero, stock and clearance, in the program's coordinates.
+    pub setup: Setup,
+    /// Which side of the region is cut that those contours bound together which are not cut on the line.
+    pub region: check::Side,
+    /// The programs, in the order in which they are run: one, or where several cutters are needed one for each.
+    pub programs: Vec<CutterProgram>,
     /// SHA-256 of the drawing's bytes, in hexadecimal.
     pub sha256: String,
     /// What the person at the machine should know.
     pub warnings: Vec<String>,
     /// How long each stage took, in milliseconds.
     pub timings_ms: BTreeMap<String, f64>,
-}
-
-/// A part of a program, complete by itself.
-#[derive(Clone, Debug)]
-pub struct Part {
-    /// Its text.
-    pub text: String,
-    /// What that text says, read back.
-    pub program: Program,
-}
-
-/// The same job with every span of the drawing as a block of its own.
-#[derive(Clone, Debug)]
-pub struct AsDrawn {
-    /// Blocks that move an axis.
-    pub motion_blocks: usize,
-    /// Its planned times.
-    pub times: Times,
 }
 
 /// Plans, writes, reads back and checks the program for a drawing.
@@ -152,30 +130,20 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
     let setup = cutting::setup(job, &placing);
     let sided = clock
         .time("offset", || cutting::sided(job, contours, &fitted, (&sides, prepared.tolerance), &placing))?;
-    let mut routing = clock.time("route", || route::route(&sided.routed, &setup))?;
-    placing.stays_on_machine(&routing.toolpath, &job.machine)?;
-
     let sha256 = digest(source.bytes);
-    let mut header = header::header(job, source.name, (prepared.tolerance, placing.stock), &setup, &sha256);
-    header.curves = curving::curves(&routing.toolpath, &fairing::routed(&cubics, &sided.routed, &placing));
-    let feeds = clock.time("feed", || feeding::suit(&mut routing.toolpath, &header, job));
-    let lifts = splitting::lift(job, &mut routing.toolpath, &mut header)?;
-    let text = clock.time("write", || gcode::write(&routing.toolpath, &header, &job.machine))?;
-    let program = clock.time("read back", || read_back(&text, &job.machine))?;
-    let intended = Intended { routed: &sided.routed, setup: &setup, sides: &sides, placing: &placing };
-    let verdict = clock.time("check", || checking::check(job, &program, &prepared, &intended));
-    checking::hold(&verdict.claims)?;
-    let check_part = |part: &Program| checking::check_part(job, part, &prepared, &intended);
-    let parts = splitting::parts(job, &routing.toolpath, &header, (&text, &program), check_part)?;
-
-    let limits = Limits::of(&job.machine);
-    let times = clock.time("time", || feed::time(&program.toolpath, &limits));
-    let highest_override = clock.time("override", || feed::highest_override(&program.toolpath, &limits));
-    let meant = (&setup, &header, &placing);
-    let as_drawn = clock.time("as drawn", || as_drawn(job, contours, meant, (&text, &program)))?;
-    let over = placing.over_the_edge(&routing.toolpath, job.cutter_mm);
-    let late = over.into_iter().chain(feeds).chain(lifts).collect();
-    let notes = [prepared.warnings, sides.notes, sided.notes, routing.notes.clone(), late];
+    let cubics_placed = fairing::routed(&cubics, &sided.routed, &placing);
+    let bench = Bench {
+        job,
+        name: source.name,
+        sha256: &sha256,
+        prepared: &prepared,
+        sides: &sides,
+        setup: &setup,
+        placing: &placing,
+        cubics: &cubics_placed,
+    };
+    let (programs, told) = programs::programs(&bench, &sided.routed, &mut clock)?;
+    let notes = [prepared.warnings, sides.notes, sided.notes, told];
     Ok(Plan {
         roughness: clock.time("measure", || prepare::roughness(contours)),
         drawn: placing.drawn(&prepared.sketch.contours),
@@ -189,37 +157,15 @@ fn plan_unplaced(job: &Job, source: Source, progress: &dyn Progress) -> Result<P
         bends: curvature::fair_bends(job, &faired, &placing),
         faired,
         fitted,
-        routed: sided.routed,
-        routing,
-        text,
-        program,
-        parts,
-        verdict,
-        times,
-        highest_override,
-        as_drawn,
+        drawing_at: placing.drawing_at,
+        zero_at: placing.zero_at,
+        setup,
+        region: sides.region,
+        programs,
         sha256,
         warnings: once_each(notes.concat()),
         timings_ms: clock.times(),
     })
-}
-
-/// The same job with the drawing's own spans, on the line.
-fn as_drawn(
-    job: &Job,
-    contours: &[Contour],
-    (setup, header, placing): (&Setup, &Header, &Placing),
-    (text, program): (&str, &Program),
-) -> Result<AsDrawn, Error> {
-    // Both texts have the same lines but for their motion.
-    let still = text.lines().count() - program.motion_blocks;
-    // It is never run: no clamp is in its way.
-    let setup = Setup { keep_outs: Vec::new(), ..setup.clone() };
-    let toolpath = route::route(&cutting::as_drawn(job, contours, placing), &setup)?.toolpath;
-    let header = Header { curves: Vec::new(), ..header.clone() };
-    let text = gcode::write(&toolpath, &header, &job.machine)?;
-    let motion_blocks = text.lines().count() - still;
-    Ok(AsDrawn { motion_blocks, times: feed::time(&toolpath, &Limits::of(&job.machine)) })
 }
 
 /// Reads a drawing and measures what is in it.
@@ -244,14 +190,45 @@ pub fn check(job: &CheckJob, program: Source, drawing: Source) -> Result<report:
     Ok(reporting::check_of(&checking::check_existing(job, &read, &sketch)?))
 }
 
-/// The report of a plan; `drawing` and `program` are the files' names as typed.
-pub fn report(job: &Job, plan: &Plan, drawing: &str, program: &str) -> Report {
-    reporting::report(job, plan, drawing, program)
+/// A report of each program of a plan; `drawing` and `program` are the files' names as typed.
+pub fn reports(job: &Job, plan: &Plan, drawing: &str, program: &str) -> Vec<Report> {
+    reporting::reports(job, plan, drawing, program)
 }
 
-/// What the pictures of a plan show, with the plan's `report`.
-pub fn scene<'a>(job: &Job, plan: &'a Plan, report: &'a Report) -> Scene<'a> {
-    showing::scene(job, plan, report)
+/// The moves of a plan's programs raised above the stock, with the spindle off; checked.
+///
+/// # Errors
+/// [`Kind::Refused`](crate::error::Kind::Refused) when it fails its check.
+pub fn air_cut(job: &Job, plan: &Plan) -> Result<DryRun, Error> {
+    dry::air_cut(job, plan)
+}
+
+/// A round about all that a plan's programs cut and about the clamps, at clearance height, with the spindle off; checked.
+///
+/// # Errors
+/// [`Kind::Refused`](crate::error::Kind::Refused) when it fails its check, or a clamp is in the way.
+pub fn frame(job: &Job, plan: &Plan) -> Result<DryRun, Error> {
+    dry::frame(job, plan)
+}
+
+/// The program that takes one of a plan's programs up at a block; checked.
+///
+/// # Errors
+/// [`Kind::Settings`](crate::error::Kind::Settings) for a file that there is not;
+/// [`Kind::Refused`](crate::error::Kind::Refused) for a block that is no place to start again, with the nearest that
+/// are, and when it fails its check.
+pub fn resume(job: &Job, plan: &Plan, block: Block) -> Result<Resumed, Error> {
+    again::resume(job, plan, block)
+}
+
+/// The report of a dry run whose files have these names.
+pub fn report_dry_run(run: &DryRun, files: &[String]) -> report::DryRun {
+    reporting::dry_run(run, files)
+}
+
+/// What the pictures of a plan show, one for each program, with their `reports`.
+pub fn scenes<'a>(job: &Job, plan: &'a Plan, reports: &'a [Report]) -> Vec<Scene<'a>> {
+    showing::scenes(job, plan, reports)
 }
 
 /// Drops what was said before: copies are alike.

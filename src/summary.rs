@@ -3,7 +3,9 @@
 use std::fmt::Write;
 
 use crate::num::LengthUnit;
-use crate::report::{Check, Claim, Condensed, Contour, Layout, Report, Setup, State};
+use crate::report::{
+    Check, Claim, Condensed, Contour, CutterProgram, DryRun, Layout, Program, Report, Setup, State,
+};
 
 /// The summary of `report`, in the machine's own unit, with a line end.
 pub fn summary(report: &Report) -> String {
@@ -16,7 +18,7 @@ pub fn summary(report: &Report) -> String {
         ("Stock", stock(&report.setup, show)),
         ("Clamps", clamps(&report.setup, show)),
         ("Cut", cut(&report.setup, show)),
-        ("Cutter", cutter(&report.setup, show)),
+        ("Cutter", cutters(report, show)),
         ("Blocks", blocks(report)),
         ("Deviation", deviation(report, show)),
         ("Time", time(report)),
@@ -33,6 +35,14 @@ pub fn summary(report: &Report) -> String {
     for (name, told) in first.iter().cloned().chain(laid).chain(rest.cloned()).chain(uncut) {
         // A string takes everything that is written to it.
         let _ = writeln!(text, "{name:10} {told}");
+    }
+    for (k, one) in (1..).zip(&report.programs) {
+        let told =
+            format!("{k}: {}; {}; {}", cutter(&one.setup, show), cut(&one.setup, show), files(&one.program));
+        let _ = writeln!(text, "{:10} {told}", "Program");
+    }
+    for run in &report.dry_runs {
+        let _ = writeln!(text, "{:10} {}", "Dry run", dry_run(run));
     }
     for warning in &report.warnings {
         let _ = writeln!(text, "{:10} {warning}", "Note");
@@ -236,6 +246,16 @@ pub fn side_words(side: &str) -> &'static str {
     }
 }
 
+/// The cutters of several programs, in the order in which they are needed.
+fn cutters(report: &Report, show: Show) -> String {
+    if report.programs.is_empty() {
+        return cutter(&report.setup, show);
+    }
+    let diameter = |one: &CutterProgram| format!("{} {}", one.setup.cutter_mm / show.0.mm(), show.unit());
+    let all: Vec<String> = report.programs.iter().map(diameter).collect();
+    format!("{}: a program for each, all from one zero", all.join(", then "))
+}
+
 fn cutter(setup: &Setup, show: Show) -> String {
     let diameter = setup.cutter_mm / show.0.mm();
     let (feed, plunge) = (show.feed(setup.feed_mm_min), show.feed(setup.plunge_mm_min));
@@ -309,8 +329,11 @@ fn check(report: &Report) -> String {
 fn program(report: &Report) -> String {
     let program = &report.program;
     let sizes = format!("{} blocks, {} bytes", program.blocks, program.bytes);
-    match (program.parts.first(), program.parts.last()) {
-        (Some(first), Some(last)) => format!(
+    match program.parts[..] {
+        [_, .., _] if !report.programs.is_empty() => {
+            format!("{}, to be run in this order, {sizes}", files(program))
+        }
+        [ref first, .., ref last] => format!(
             "{} to {}: {} parts, to be run one after the other, {sizes}",
             first.file,
             last.file,
@@ -318,6 +341,25 @@ fn program(report: &Report) -> String {
         ),
         _ if program.file == "-" => format!("to standard output, {sizes}"),
         _ => format!("{}, {sizes}", program.file),
+    }
+}
+
+/// A dry run and its files.
+fn dry_run(run: &DryRun) -> String {
+    let files = match run.files[..] {
+        [ref first, .., ref last] => format!("{} to {}", first.file, last.file),
+        [ref one] => one.file.clone(),
+        [] => String::new(),
+    };
+    let held = run.claims.iter().filter(|claim| claim.state == State::Holds).count();
+    format!("{files}: {}, spindle off; read back and checked: {} hold", run.kind, counted(held, "claim"))
+}
+
+/// The names of a program's files.
+fn files(program: &Program) -> String {
+    match program.parts[..] {
+        [ref first, .., ref last] => format!("{} to {}", first.file, last.file),
+        _ => program.file.clone(),
     }
 }
 

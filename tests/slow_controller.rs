@@ -98,27 +98,23 @@ fn cut(folder: &Path, entry: &Value, machine: &str) -> Option<Cut> {
     let bytes = fs::read(folder.join(csv)).expect("the outline");
     let planned = plan(&job, Source { name: csv, bytes: &bytes }, &Unwatched);
     let plan = planned.unwrap_or_else(|why| panic!("{id}: {why}"));
-    assert!(plan.text.len() <= 32768 || plan.parts.len() > 1, "{id}: {} bytes", plan.text.len());
-    let texts: Vec<&str> = if plan.parts.is_empty() {
-        vec![&plan.text]
-    } else {
-        plan.parts.iter().map(|part| part.text.as_str()).collect()
-    };
-    for text in texts {
+    let [made] = &plan.programs[..] else { panic!("{id}: one cutter is one program") };
+    assert!(made.text.len() <= 32768 || made.parts.len() > 1, "{id}: {} bytes", made.text.len());
+    for text in made.texts() {
         assert!(text.len() <= 32768, "{id}: a part of {} bytes", text.len());
         assert!(block_times(text, 1.0).len() > 5, "{id}: blocks are found");
         assert_eq!(starved(&block_times(text, 1.0)), 0, "{id}: by the text alone");
-        let highest = f64::from(plan.highest_override) / 100.0;
+        let highest = f64::from(made.highest_override) / 100.0;
         assert!(highest >= 1.0, "{id}: {highest}");
         assert_eq!(starved(&block_times(text, highest)), 0, "{id}: at the override of {highest}");
     }
-    assert_eq!(plan.times.starved_blocks, 0, "{id}");
-    let drawn = &plan.as_drawn.times;
+    assert_eq!(made.times.starved_blocks, 0, "{id}");
+    let drawn = &made.as_drawn.times;
     Some(Cut {
         id: id.into(),
-        arcs: plan.text.lines().filter(|line| line.contains("G2X") || line.contains("G3X")).count(),
+        arcs: made.text.lines().filter(|line| line.contains("G2X") || line.contains("G3X")).count(),
         drawn_starved: drawn.starved_blocks,
-        ratio: plan.times.cut_time_s / drawn.cut_time_s,
+        ratio: made.times.cut_time_s / drawn.cut_time_s,
     })
 }
 

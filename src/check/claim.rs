@@ -104,6 +104,11 @@ impl Worst {
 }
 
 impl Claim {
+    /// True when it was checked and holds.
+    pub fn holds(&self) -> bool {
+        self.state == State::Holds
+    }
+
     /// The claim that the worst value is at most `limit`, `slack` forgiven.
     pub(super) fn at_most(
         name: &'static str,

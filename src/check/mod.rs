@@ -5,6 +5,7 @@
 
 mod claim;
 mod cuts;
+mod dry;
 mod motion;
 mod place;
 mod region;
@@ -26,6 +27,7 @@ use crate::sketch::Sketch;
 use place::Placed;
 
 pub use claim::{Claim, Spot, State};
+pub use dry::{around, check_dry, check_resumed, raised};
 pub use place::Layout;
 
 /// What a program is checked for. Lengths in mm; heights and places in the program's own coordinates.
@@ -37,10 +39,15 @@ pub struct Asked {
     pub side: Side,
     /// The ids of closed contours that are cut on the line all the same.
     pub on_line: BTreeSet<usize>,
+    /// The ids of the contours that the program must cut, where others are left to other programs: off those it must
+    /// keep all the same. `None` for all.
+    pub only: Option<BTreeSet<usize>>,
     /// How much further than its radius the cutter's centre keeps from the edge; negative for a looser fit.
     pub allowance: f64,
     /// True when the cut beside the edge is never on the side that is kept, and within the tolerance on the other.
     pub waste: bool,
+    /// The same for single contours, by their ids.
+    pub allowance_of_contour: BTreeMap<usize, f64>,
     /// What the passes leave beside the edge for a last one at full depth.
     pub leave: f64,
     /// How the drawing is laid on the stock.
@@ -118,6 +125,16 @@ pub struct KeepOut {
 }
 
 impl Asked {
+    /// True for a contour that the program must cut.
+    fn wants(&self, contour: usize) -> bool {
+        self.only.as_ref().is_none_or(|only| only.contains(&contour))
+    }
+
+    /// How much further than usual the cutter keeps off a contour.
+    fn extra(&self, contour: usize) -> f64 {
+        self.allowance_of_contour.get(&contour).map_or(0.0, |own| own - self.allowance)
+    }
+
     /// The height that a contour is cut down to; `None` where it was not said.
     fn lowest_of(&self, contour: usize) -> Option<f64> {
         self.lowest_of_contour.get(&contour).copied().or(self.lowest)
@@ -134,8 +151,10 @@ impl Asked {
             tolerance,
             side: Side::On,
             on_line: BTreeSet::new(),
+            only: None,
             allowance: 0.0,
             waste: false,
+            allowance_of_contour: BTreeMap::new(),
             leave: 0.0,
             layout: Layout::default(),
             drawing_at: None,
@@ -177,7 +196,10 @@ pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Aske
     let cuts = cuts::Cuts::of(program, asked.stock_top);
     let placed = Placed::new(sketch, &asked.layout, asked.drawing_at, &cuts);
     let (shape, uncut) = match asked.side {
-        Side::On => (shape::judge(&cuts, placed.contours.clone(), true, machine, asked).0, Vec::new()),
+        Side::On => {
+            let wanted = placed.contours.iter().filter(|drawn| asked.wants(drawn.id)).cloned().collect();
+            (shape::judge(&cuts, wanted, true, machine, asked).0, Vec::new())
+        }
         side => side::judge(&cuts, &placed, side, machine, asked),
     };
     let mut claims = shape.claims;

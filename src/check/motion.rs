@@ -10,10 +10,10 @@ use crate::toolpath::Move;
 
 const TRAVEL: &str = "the moves fit the machine's travel";
 const FEEDS: &str = "feeds are set, and none above what is allowed";
-const SPINDLE: &str = "the spindle turns at an allowed speed while cutting";
+pub(super) const SPINDLE: &str = "the spindle turns at an allowed speed while cutting";
 const RAPIDS: &str = "no rapid goes across or down below the clearance height";
 const CLEAR: &str = "the cutter keeps clear of what it must";
-const LOWEST: &str = "nothing is cut deeper than asked";
+pub(super) const LOWEST: &str = "nothing is cut deeper than asked";
 
 /// The claims about single moves, in one walk along them.
 pub(super) fn judge(program: &Program, machine: &Machine, asked: &Asked) -> Vec<Claim> {

@@ -8,12 +8,23 @@ use crate::geom::{Span, SpanIndex};
 pub(super) struct Region {
     spans: Vec<Span>,
     index: SpanIndex,
+    /// The border by how much further than usual the cutter keeps off.
+    by_extra: Vec<(f64, SpanIndex)>,
 }
 
 impl Region {
-    /// The region bounded by `spans`, in any order and direction.
-    pub(super) fn new(spans: Vec<Span>) -> Self {
-        Self { index: SpanIndex::new(spans.iter().copied()), spans }
+    /// The region bounded by `spans`, in any order and direction; `extra` is, for each, how much further than usual
+    /// the cutter keeps off it, in mm.
+    pub(super) fn new(spans: Vec<Span>, extra: &[f64]) -> Self {
+        let mut steps = extra.to_vec();
+        steps.sort_by(f64::total_cmp);
+        steps.dedup();
+        let with = |step: f64| {
+            let own = spans.iter().zip(extra).filter(move |(_, own)| own.total_cmp(&step).is_eq());
+            (step, SpanIndex::new(own.map(|(&span, _)| span)))
+        };
+        let by_extra = steps.into_iter().map(with).collect();
+        Self { index: SpanIndex::new(spans.iter().copied()), by_extra, spans }
     }
 
     /// The spans of the border, in the order given.
@@ -21,9 +32,13 @@ impl Region {
         &self.spans
     }
 
-    /// The distance from `p` to the border; infinite when there is none.
+    /// The distance from `p` to the border, less what the cutter keeps off it further than usual; infinite when there
+    /// is no border.
     pub(super) fn distance(&self, p: Point) -> f64 {
-        self.index.nearest(p).map_or(f64::INFINITY, |(_, span)| span.nearest(p).distance)
+        let to = |(extra, index): &(f64, SpanIndex)| {
+            index.nearest(p).map_or(f64::INFINITY, |(_, span)| span.nearest(p).distance - extra)
+        };
+        self.by_extra.iter().map(to).fold(f64::INFINITY, f64::min)
     }
 
     /// True when a ray from `p` crosses the border an odd number of times.

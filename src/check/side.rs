@@ -45,7 +45,8 @@ pub(super) fn judge(
         let claims = claims.into_iter().map(|claim| Claim { state: State::Fails, ..claim }).collect();
         return (Shape { deviation: None, claims }, Vec::new());
     }
-    let (closed, open) = bordering(placed, asked);
+    let (closed, mut open) = bordering(placed, asked);
+    open.retain(|drawn| asked.wants(drawn.id));
     let lines = SpanIndex::new(open.iter().flat_map(|drawn| drawn.path.spans()));
     let on_line = |m: &Move| {
         !open.is_empty() && lines.farthest(&m.span(), asked.tolerance.mm()).0 <= asked.tolerance.mm()
@@ -67,7 +68,8 @@ pub(super) fn judge(
     coverage.value += cuts.unsure;
     let mut claims = vec![judge.clearance_claim(clearance), judge.coverage_claim(coverage)];
     claims.push(judge.touch_claim(&beside));
-    claims.push(depth_claim(&beside, machine, asked, &judge.owners));
+    let wanted: Vec<Owner> = judge.owners.iter().copied().filter(|owner| asked.wants(owner.id)).collect();
+    claims.push(depth_claim(&beside, machine, asked, &wanted));
     claims.push(pass_claim(&beside, &ways_down, machine, asked));
     let deviation = judge.deviation(clearance, coverage);
     let on_line = shape.as_ref().and_then(|shape| shape.deviation);
@@ -120,6 +122,8 @@ struct Judge {
     owners: Vec<Owner>,
     region: Region,
     band: Band,
+    /// How much further than usual the cutter keeps off each of these spans.
+    extra: Vec<f64>,
     radius: f64,
     tolerance: f64,
     /// How much further the passes run that leave something for a last one.
@@ -138,6 +142,7 @@ struct Owner {
 struct Piece {
     span: Span,
     owner: Owner,
+    extra: f64,
 }
 
 impl Judge {
@@ -148,9 +153,11 @@ impl Judge {
             spans.extend(drawn.path.spans());
             owners.resize(spans.len(), Owner { id: drawn.id, copy: drawn.copy });
         }
+        let extra: Vec<f64> = owners.iter().map(|owner: &Owner| asked.extra(owner.id)).collect();
         Self {
             owners,
-            region: Region::new(spans),
+            region: Region::new(spans, &extra),
+            extra,
             band,
             radius: band.radius,
             tolerance: band.tolerance,
@@ -239,8 +246,8 @@ impl Judge {
         ways_down: &[&Move],
         (machine, asked): (&Machine, &Asked),
     ) -> (Worst, Vec<Uncut>) {
-        let mut floors: Vec<Option<f64>> =
-            self.owners.iter().map(|owner| asked.lowest_of(owner.id)).collect();
+        let wanted = self.owners.iter().filter(|owner| asked.wants(owner.id));
+        let mut floors: Vec<Option<f64>> = wanted.map(|owner| asked.lowest_of(owner.id)).collect();
         floors.sort_by(|a, b| a.partial_cmp(b).unwrap_or(Ordering::Equal));
         floors.dedup();
         let (mut worst, mut uncut) = (Worst::none(), Vec::new());
@@ -252,9 +259,10 @@ impl Judge {
             let drilled = ways_down.iter().filter(|m| m.from.xy == m.to.xy && deep(m.to.z));
             let path = SpanIndex::new(along.chain(drilled).map(|m| m.span()));
             for (k, (&span, &owner)) in self.region.spans().iter().zip(&self.owners).enumerate() {
-                if asked.lowest_of(owner.id) == floor {
+                if asked.wants(owner.id) && asked.lowest_of(owner.id) == floor {
                     self.cover_corner(k, &path, &mut worst);
-                    self.cover(&Piece { span, owner }, &path, &mut worst, &mut uncut);
+                    let piece = Piece { span, owner, extra: self.extra[k] };
+                    self.cover(&piece, &path, &mut worst, &mut uncut);
                 }
             }
         }
@@ -267,7 +275,8 @@ impl Judge {
         let mut pieces = vec![piece.span];
         while let Some(part) = pieces.pop() {
             let middle = part.at(0.5);
-            let here = path.nearest(middle).map_or(f64::INFINITY, |(_, span)| span.nearest(middle).distance);
+            let near = path.nearest(middle).map_or(f64::INFINITY, |(_, span)| span.nearest(middle).distance);
+            let here = near - piece.extra;
             let half = part.length() / 2.0;
             let bound = here + half;
             if bound <= self.radius.max(worst.value) {
@@ -275,7 +284,7 @@ impl Judge {
                 worst.note(bound, || spot(middle));
             } else if half > self.fine() || (here <= limit && bound > limit && half > self.finest()) {
                 pieces.extend([part.part(0.0, 0.5), part.part(0.5, 1.0)]);
-            } else if self.touches(middle, normals(&part).into_iter()) {
+            } else if self.touches(middle, piece.extra, normals(&part).into_iter()) {
                 worst.note(bound, || spot(middle));
             } else if bound > limit {
                 let Owner { id: contour, copy } = piece.owner;
@@ -290,7 +299,8 @@ impl Judge {
     fn cover_corner(&self, k: usize, path: &SpanIndex, worst: &mut Worst) {
         let spans = self.region.spans();
         let corner = spans[k].start;
-        let here = path.nearest(corner).map_or(f64::INFINITY, |(_, span)| span.nearest(corner).distance);
+        let near = path.nearest(corner).map_or(f64::INFINITY, |(_, span)| span.nearest(corner).distance);
+        let here = near - self.extra[k];
         if here <= self.radius + self.tolerance {
             return;
         }
@@ -302,17 +312,17 @@ impl Judge {
             let angle = from.atan2() + turn * i as f64 / (DIRECTIONS - 1) as f64;
             Vec2::from_angle(angle - std::f64::consts::FRAC_PI_2 * turn.signum())
         };
-        if self.touches(corner, (0..DIRECTIONS).map(outward)) {
+        if self.touches(corner, self.extra[k], (0..DIRECTIONS).map(outward)) {
             worst.note(here, || spot(corner));
         }
     }
 
-    /// True when a disc of radius plus tolerance touches the border at `p` in one of the directions, on the cutter's
-    /// side, without crossing it.
-    fn touches(&self, p: Point, mut directions: impl Iterator<Item = Vec2>) -> bool {
+    /// True when a disc of radius plus tolerance touches the border at `p`, or stays off it by what is kept there
+    /// further, in one of the directions, on the cutter's side, without crossing it.
+    fn touches(&self, p: Point, extra: f64, mut directions: impl Iterator<Item = Vec2>) -> bool {
         let reach = self.radius + self.tolerance;
         directions.any(|direction| {
-            let centre = p + direction * reach;
+            let centre = p + direction * (reach + extra);
             // A hair for the rounding of the touch itself.
             let rounding = 64.0 * f64::EPSILON * (reach + p.to_vec2().hypot());
             self.region.distance(centre) >= reach - rounding && self.is_free(centre)

@@ -12,7 +12,21 @@ type Boxed<'a> = GeomWithData<Rectangle<[f64; 2]>, &'a Move>;
 /// The thickest layer that a move takes at once, in mm, at its ends or its middle. `moves` are the cuts in the order of
 /// the program; a cut within `reach` mm of a place counts as cut there.
 pub(super) fn deepest<'a>(moves: impl Iterator<Item = &'a Move>, stock_top: f64, reach: f64) -> Worst {
-    let mut done: RTree<Boxed> = RTree::new();
+    fresh(std::iter::empty(), moves, stock_top, reach)
+}
+
+/// The same of `moves` alone, after the cuts of `before`.
+pub(super) fn fresh<'a>(
+    before: impl Iterator<Item = &'a Move>,
+    moves: impl Iterator<Item = &'a Move>,
+    stock_top: f64,
+    reach: f64,
+) -> Worst {
+    let boxed = |m: &'a Move| {
+        let bbox = m.span().bbox();
+        GeomWithData::new(Rectangle::from_corners([bbox.x0, bbox.y0], [bbox.x1, bbox.y1]), m)
+    };
+    let mut done: RTree<Boxed> = RTree::bulk_load(before.map(boxed).collect());
     let mut worst = Worst::none();
     for m in moves {
         for t in [0.5, 1.0] {
@@ -21,8 +35,7 @@ pub(super) fn deepest<'a>(moves: impl Iterator<Item = &'a Move>, stock_top: f64,
             let above = floor(&done, place, reach).unwrap_or(stock_top).min(stock_top);
             worst.note(above - height, || Spot { line: m.line, at: Some(Position { xy: place, z: height }) });
         }
-        let bbox = m.span().bbox();
-        done.insert(GeomWithData::new(Rectangle::from_corners([bbox.x0, bbox.y0], [bbox.x1, bbox.y1]), m));
+        done.insert(boxed(m));
     }
     worst
 }

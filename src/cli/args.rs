@@ -6,6 +6,7 @@ use clap::{Args, Parser, Subcommand};
 use clap_complete::Shell;
 
 use crate::job::{CheckArgs, CondenseArgs, DrawingArgs, LadderArgs, Outputs, Settings};
+use crate::run::Block;
 
 /// Traced outlines to smooth router programs.
 #[derive(Parser, Debug)]
@@ -75,7 +76,7 @@ const MACHINES_EXAMPLES: &str = "Examples:
 #[command(after_help = PREVIEW_EXAMPLES)]
 pub(super) struct Preview {
     #[command(flatten)]
-    pub(super) post: Post,
+    pub(super) planned: Planned,
 }
 
 const PREVIEW_EXAMPLES: &str =
@@ -99,6 +100,23 @@ pub(super) struct Posts {
 /// What is planned for one drawing, as typed.
 #[derive(Args, Clone, Debug)]
 pub(super) struct Post {
+    #[command(flatten)]
+    pub(super) planned: Planned,
+    /// Write beside the program the same moves raised above the stock, with the spindle off
+    #[arg(long, help_heading = "Files")]
+    pub(super) air_cut: bool,
+    /// Write beside the program a round about all that is cut, with the spindle off
+    #[arg(long, help_heading = "Files")]
+    pub(super) frame: bool,
+    /// Write beside the program, which must stand there, one that takes it up again at a line or block
+    #[arg(long, value_name = "57, N570 or 2:57", help_heading = "Files",
+          conflicts_with_all = ["air_cut", "frame", "report", "setup_sheet", "save_job"])]
+    pub(super) resume_at: Option<Block>,
+}
+
+/// A drawing, how it is cut, and where what comes of it goes.
+#[derive(Args, Clone, Debug)]
+pub(super) struct Planned {
     /// The drawing: SVG, DXF or a list of points
     pub(super) drawing: PathBuf,
     #[command(flatten)]
@@ -111,6 +129,9 @@ pub(super) struct Post {
     /// Take settings from this file; what is typed wins
     #[arg(long, value_name = "FILE", help_heading = "Files")]
     pub(super) job: Option<PathBuf>,
+    /// Save the settings of this job in a job file
+    #[arg(long, value_name = "FILE.toml", help_heading = "Files")]
+    pub(super) save_job: Option<PathBuf>,
     /// Print errors only
     #[arg(long, help_heading = "Files")]
     pub(super) quiet: bool,

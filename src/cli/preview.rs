@@ -3,7 +3,7 @@
 use std::path::Path;
 
 use super::args::Preview;
-use super::outputs::Targets;
+use super::outputs::{Numbered, Targets};
 use super::progress::Bar;
 use super::{drawn, job_file, print, tell};
 use crate::error::Error;
@@ -14,22 +14,29 @@ use crate::run::{self, Source};
 
 /// Carries out `ribband preview`.
 pub(super) fn preview(typed: &Preview) -> Result<(), Error> {
-    let typed = &typed.post;
-    let job = Job::new(&typed.settings, &job_file(typed.job.as_deref())?)?;
+    let typed = &typed.planned;
+    let file = job_file(typed.job.as_deref())?;
+    let job = Job::new(&typed.settings, &file)?;
     let picture = Target::new(typed.outputs.output.as_deref(), &typed.drawing, "html");
-    let targets = Targets::new(typed, picture, "picture")?;
+    let targets = Targets::new(typed, &file, picture, "picture")?;
     let name = typed.drawing.display().to_string();
     let bytes = drawn(&typed.drawing, &job.drawing)?;
     let plan = run::plan(&job, Source { name: &name, bytes: &bytes }, &Bar::new(typed.quiet))?;
     let program = Target::new(None, &typed.drawing, job.machine.files.ending.trim_start_matches('.'));
-    let told = run::report(&job, &plan, &name, &program.name());
-    let scene = run::scene(&job, &plan, &told);
-    let drawn = draw(targets.main(), &scene)?;
-    targets.write(&drawn, &scene)?;
+    let reports = run::reports(&job, &plan, &name, &program.name());
+    let scenes = run::scenes(&job, &plan, &reports);
+    let drawn = scenes.iter().map(|scene| draw(targets.main(), scene)).collect::<Result<Vec<_>, Error>>()?;
+    let pages: Vec<&str> = drawn.iter().map(String::as_str).collect();
+    let numbered = Numbered { overwrite: typed.outputs.overwrite, machine: None };
+    targets.write_staged(numbered.stage(&pages, targets.main())?, &scenes)?;
     if typed.quiet {
         return Ok(());
     }
-    let text = format!("{}{}, {} bytes\n", terminal(&scene), targets.main().name(), drawn.len());
+    let told = (1..).zip(scenes.iter().zip(&drawn)).map(|(k, (scene, drawn))| {
+        let place = if scenes.len() > 1 { targets.main().part(k) } else { targets.main().clone() };
+        format!("{}{}, {} bytes\n", terminal(scene), place.name(), drawn.len())
+    });
+    let text: String = told.collect();
     if targets.use_stdout() {
         tell(&text);
         return Ok(());

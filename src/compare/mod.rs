@@ -130,27 +130,30 @@ fn rung(job: &Job, source: Source, tolerance_mm: f64) -> Result<Rung, Error> {
     job.machine.controller.memory_bytes = None;
     let plan = run::plan(&job, source, &Unwatched)?;
     let supports: Vec<Support> = plan.roughness.iter().map(|rough| rough.support()).collect();
-    let drawn = &plan.as_drawn;
+    let drawn = || plan.programs.iter().map(|program| &program.as_drawn);
     Ok(Rung {
         figures: figures(&plan),
         as_drawn: AsDrawn {
-            motion_blocks: drawn.motion_blocks,
-            time_s: drawn.times.time_s,
-            cut_time_s: drawn.times.cut_time_s,
-            starved_blocks: drawn.times.starved_blocks,
+            motion_blocks: drawn().map(|drawn| drawn.motion_blocks).sum(),
+            time_s: drawn().map(|drawn| drawn.times.time_s).sum(),
+            cut_time_s: drawn().map(|drawn| drawn.times.cut_time_s).sum(),
+            starved_blocks: drawn().map(|drawn| drawn.times.starved_blocks).sum(),
         },
         support: Support::largest(&supports),
     })
 }
 
+/// The figures of all programs of a plan together.
 fn figures(plan: &Plan) -> Figures {
+    let all = || plan.programs.iter();
+    let deviations = all().filter_map(|made| made.verdict.deviation).map(|deviation| deviation.mm);
     Figures {
-        motion_blocks: plan.program.motion_blocks,
-        bytes: plan.text.len(),
-        time_s: plan.times.time_s,
-        cut_time_s: plan.times.cut_time_s,
-        starved_blocks: plan.times.starved_blocks,
-        deviation_mm: plan.verdict.deviation.map(|deviation| deviation.mm),
+        motion_blocks: all().map(|made| made.program.motion_blocks).sum(),
+        bytes: all().map(|made| made.text.len()).sum(),
+        time_s: all().map(|made| made.times.time_s).sum(),
+        cut_time_s: all().map(|made| made.times.cut_time_s).sum(),
+        starved_blocks: all().map(|made| made.times.starved_blocks).sum(),
+        deviation_mm: deviations.reduce(f64::max),
     }
 }
 

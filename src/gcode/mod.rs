@@ -20,4 +20,4 @@ pub mod read;
 pub mod write;
 
 pub use read::{Dialect, Program, interpret, read};
-pub use write::{Curve, Header, Mark, Part, blocks_of, lift, write, write_parts};
+pub use write::{Curve, Header, Mark, Part, Written, blocks_of, lift, write, write_lines, write_parts};

@@ -95,7 +95,7 @@ impl CheckJob {
         Ok(Self {
             tolerance_side: typed.tolerance_side.unwrap_or_default(),
             side,
-            cutter_mm: cutter.map(|(diameter, _)| diameter),
+            cutter_mm: cutter.map(|cutter| cutter.diameter_mm),
             allowance_mm: mm.length(&bounds::ALLOWANCE, typed.allowance)?.unwrap_or(0.0),
             drawing: DrawingSettings::new(&typed.drawing, &machine)?,
             tolerance: tolerance.unwrap_or(Tolerance::DEFAULT),

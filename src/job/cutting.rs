@@ -2,8 +2,7 @@
 
 use super::bounds::{self, at_most};
 use super::{
-    Corners, CutArgs, Direction, Entry, Held, LayerSettings, Settings, Side, Stock, TabsWanted, Thickness,
-    Units,
+    ChosenCutter, Corners, CutArgs, Direction, Entry, Held, Side, Stock, TabsWanted, Thickness, Units, cutter,
 };
 use crate::error::{Error, Kind};
 use crate::machine::{Cutter, Machine};
@@ -11,6 +10,8 @@ use crate::machine::{Cutter, Machine};
 /// Depth, passes, feeds and speed of a cut.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Cutting {
+    /// Which of the job's cutters cuts, from 0.
+    pub cutter: usize,
     /// How deep, below the top of the stock, in mm.
     pub depth_mm: f64,
     /// The deepest single pass, in mm.
@@ -29,6 +30,8 @@ pub struct Cutting {
     pub direction: Direction,
     /// How it passes corners that jut out towards it.
     pub corners: Corners,
+    /// Material left on the drawn edge, in mm; negative for a looser fit.
+    pub allowance_mm: f64,
     /// What the passes leave for a last one at full depth, in mm.
     pub leave_mm: f64,
     /// Tabs to leave.
@@ -69,30 +72,32 @@ const PAST_THROUGH_MM: f64 = 0.2;
 /// Length and height of a tab, in mm, where nothing else is asked for (common practice in wood, from memory).
 const TAB_MM: (f64, f64) = (6.0, 1.5);
 
-/// Works out cuttings for one machine and cutter.
+/// Works out cuttings for one machine, and gathers the cutters that they take.
 pub(super) struct Maker<'a> {
     pub(super) machine: &'a Machine,
     pub(super) mm: Units,
-    pub(super) cutter_mm: f64,
-    pub(super) cutter: Option<&'a Cutter>,
     pub(super) stock: &'a Stock,
+    pub(super) cutters: Vec<ChosenCutter>,
 }
 
 impl Maker<'_> {
-    /// The cutting that `all` asks for.
-    pub(super) fn cutting(&self, all: &Settings) -> Result<Cutting, Error> {
-        let cut = &all.cut;
-        let depth_mm = self.depth(cut)?;
+    /// The cutting that `cut` asks for.
+    pub(super) fn cutting(&mut self, cut: &CutArgs) -> Result<Cutting, Error> {
+        let number = self.number(cutter(cut.cutter.as_deref(), self.machine, self.mm)?);
+        let ChosenCutter { diameter_mm, ref entry } = self.cutters[number];
+        let entry = entry.as_ref();
+        let depth_mm = self.depth(cut, entry)?;
         let pass = self.mm.length(&bounds::PASS, cut.pass)?;
-        let pass_mm = pass.unwrap_or(self.cutter_mm / 2.0);
+        let pass_mm = pass.unwrap_or(diameter_mm / 2.0);
         if depth_mm / pass_mm > MOST_PASSES {
             let what =
                 format!("a depth of {depth_mm} mm in passes of {pass_mm} mm takes over {MOST_PASSES} passes");
             return Err(Error::new(Kind::Settings, what).remedy("give a deeper --pass"));
         }
-        let spindle_rpm = self.spindle(all)?;
-        let feed = self.feed(cut, spindle_rpm)?;
+        let spindle_rpm = self.spindle(cut, entry)?;
+        let feed = self.feed(cut, entry, spindle_rpm)?;
         Ok(Cutting {
+            cutter: number,
             depth_mm,
             pass_mm,
             feed,
@@ -102,13 +107,22 @@ impl Maker<'_> {
             side: cut.side.unwrap_or_default(),
             direction: cut.direction.unwrap_or_default(),
             corners: cut.corners.unwrap_or_default(),
+            allowance_mm: self.mm.length(&bounds::ALLOWANCE, cut.allowance)?.unwrap_or(0.0),
             leave_mm: self.leave(cut)?,
             tabs: self.tabs(cut)?,
             held: cut.held,
         })
     }
 
-    fn depth(&self, cut: &CutArgs) -> Result<f64, Error> {
+    /// The cutter's place among those of the job.
+    fn number(&mut self, cutter: ChosenCutter) -> usize {
+        self.cutters.iter().position(|known| *known == cutter).unwrap_or_else(|| {
+            self.cutters.push(cutter);
+            self.cutters.len() - 1
+        })
+    }
+
+    fn depth(&self, cut: &CutArgs, cutter: Option<&Cutter>) -> Result<f64, Error> {
         let depth = match (cut.through == Some(true), self.mm.length(&bounds::SKIN, cut.skin)?) {
             (true, _) => self.through()?,
             (false, Some(skin)) => {
@@ -124,7 +138,7 @@ impl Maker<'_> {
         // Sums of decimal lengths, without the last bit's noise.
         let depth = bounds::DEPTH.hold((depth * 1e9).round() / 1e9)?;
         at_most("depth", depth, self.machine.travel.z, "mm", "the machine's travel in Z")?;
-        if let Some(cutter) = self.cutter {
+        if let Some(cutter) = cutter {
             at_most("depth", depth, cutter.flute_length, "mm", &format!("the flutes of {}", cutter.name))?;
         }
         Ok(depth)
@@ -189,11 +203,11 @@ impl Maker<'_> {
         }))
     }
 
-    fn spindle(&self, all: &Settings) -> Result<f64, Error> {
+    fn spindle(&self, cut: &CutArgs, cutter: Option<&Cutter>) -> Result<f64, Error> {
         let spindle = &self.machine.spindle;
-        let cutter_most = self.cutter.map_or(f64::INFINITY, |cutter| cutter.largest_rpm);
+        let cutter_most = cutter.map_or(f64::INFINITY, |cutter| cutter.largest_rpm);
         let default = DEFAULT_RPM.min(cutter_most).clamp(spindle.slowest, spindle.fastest);
-        let rpm = bounds::SPINDLE.hold(all.spindle.unwrap_or(default))?;
+        let rpm = bounds::SPINDLE.hold(cut.spindle.unwrap_or(default))?;
         at_most("spindle", rpm, spindle.fastest, "rev/min", "the machine")?;
         at_most("spindle", rpm, cutter_most, "rev/min", "the cutter")?;
         if rpm < spindle.slowest {
@@ -204,10 +218,10 @@ impl Maker<'_> {
         Ok(rpm)
     }
 
-    fn feed(&self, cut: &CutArgs, rpm: f64) -> Result<f64, Error> {
+    fn feed(&self, cut: &CutArgs, cutter: Option<&Cutter>, rpm: f64) -> Result<f64, Error> {
         let most = self.machine.feed.x.min(self.machine.feed.y);
         let by_chip = |c: &Cutter| rpm * f64::from(c.flutes) * cautious_chip(c);
-        let default = self.cutter.map_or(DEFAULT_FEED, by_chip).round().min(most);
+        let default = cutter.map_or(DEFAULT_FEED, by_chip).round().min(most);
         let feed = self.mm.feed(&bounds::FEED, cut.feed)?.unwrap_or(default);
         at_most("feed", feed, most, "mm/min", "the machine")?;
         Ok(feed)
@@ -218,13 +232,6 @@ impl Maker<'_> {
         let plunge = self.mm.feed(&bounds::PLUNGE, cut.plunge)?.unwrap_or(third_of(feed).min(most));
         at_most("plunge", plunge, most, "mm/min", "the machine's Z")?;
         Ok(plunge)
-    }
-}
-
-impl LayerSettings {
-    /// The layer's wishes as settings.
-    pub(super) fn settings(&self) -> Settings {
-        Settings { cut: self.cut.clone(), ..Settings::default() }
     }
 }
 

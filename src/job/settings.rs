@@ -37,15 +37,6 @@ pub struct Settings {
     #[command(flatten)]
     #[serde(flatten)]
     pub cut: CutArgs,
-    /// Material to leave on the drawn edge, for a looser or tighter fit [default: none]
-    #[arg(long, value_name = "LEN", help_heading = "Cut", allow_hyphen_values = true)]
-    pub allowance: Option<Length>,
-    /// Spindle speed in rev/min [default: the profile's]
-    #[arg(long, value_name = "RPM", help_heading = "Cut")]
-    pub spindle: Option<f64>,
-    /// The cutter: its diameter, or a name in the machine profile
-    #[arg(long, value_name = "DIAMETER or NAME", help_heading = "Cut")]
-    pub cutter: Option<String>,
 
     /// How the drawing is laid on the stock.
     #[command(flatten)]
@@ -168,10 +159,7 @@ impl Settings {
             tolerance: self.tolerance.or(other.tolerance),
             accuracy: self.accuracy.or(other.accuracy),
             cut: self.cut.or(other.cut),
-            allowance: self.allowance.or(other.allowance),
             bed_cut: self.bed_cut.or(other.bed_cut),
-            spindle: self.spindle.or(other.spindle),
-            cutter: self.cutter.or(other.cutter),
             layout: self.layout.or(other.layout),
             setting_up: self.setting_up.or(other.setting_up),
         }

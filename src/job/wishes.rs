@@ -48,6 +48,15 @@ pub struct CutArgs {
     /// How the cutter goes down [default: ramp]
     #[arg(long, value_enum, help_heading = "Cut")]
     pub entry: Option<Entry>,
+    /// Material to leave on the drawn edge, for a looser or tighter fit [default: none]
+    #[arg(long, value_name = "LEN", help_heading = "Cut", allow_hyphen_values = true)]
+    pub allowance: Option<Length>,
+    /// Spindle speed in rev/min [default: the profile's]
+    #[arg(long, value_name = "RPM", help_heading = "Cut")]
+    pub spindle: Option<f64>,
+    /// The cutter: its diameter, or a name in the machine profile
+    #[arg(long, value_name = "DIAMETER or NAME", help_heading = "Cut")]
+    pub cutter: Option<String>,
 
     /// Tabs to leave on each closed contour: how many, or how far apart
     #[arg(long, value_name = "COUNT or LEN", help_heading = "Holding")]
@@ -227,6 +236,9 @@ impl CutArgs {
             feed: self.feed.or(other.feed),
             plunge: self.plunge.or(other.plunge),
             entry: self.entry.or(other.entry),
+            allowance: self.allowance.or(other.allowance),
+            spindle: self.spindle.or(other.spindle),
+            cutter: self.cutter.or(other.cutter),
             tabs: self.tabs.or(other.tabs),
             tab_length: self.tab_length.or(other.tab_length),
             tab_height: self.tab_height.or(other.tab_height),

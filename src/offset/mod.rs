@@ -23,6 +23,7 @@ use crate::geom::ArcSpline;
 use chain::Fault;
 use region::Region;
 
+pub use crate::job::Corners;
 pub use uncut::{Uncut, uncut};
 
 /// Which side of the outline the cutter stays on.
@@ -32,17 +33,6 @@ pub enum Side {
     Inside,
     /// Outside that region: for a part.
     Outside,
-}
-
-/// How the cutter passes a corner that juts out towards it.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
-pub enum Corners {
-    /// About the corner, on an arc.
-    #[default]
-    Round,
-    /// Straight past it and back, where the corner turns by no more than a right angle and the way is free: fewer
-    /// blocks, and the corner itself is not rubbed.
-    Sharp,
 }
 
 /// The lines of the cutter's centre about one region.

@@ -50,6 +50,10 @@ pub struct Scene<'a> {
     pub verdict: &'a Verdict,
     /// The machine's limits.
     pub limits: Limits,
+    /// The diameters of the cutters of all the job's programs, in mm, in the order in which they are run.
+    pub cutters_mm: Vec<f64>,
+    /// Which of these programs it is, from 0.
+    pub number: usize,
     /// The height of the stock's top.
     pub stock_top: f64,
     /// How the fair curves bend, where they are shown; else none.

@@ -6,12 +6,12 @@ use sha2::{Digest, Sha256};
 use super::chord::Chord;
 use super::figures::length;
 use super::markup::{escaped, mm, paths, place};
-use super::tour::{Kind, Stage, restarts, stages};
+use super::tour::{Stage, restarts, stages};
 use super::{Scene, setting};
 use crate::cautions::CAUTIONS;
 use crate::gcode::read::What;
 use crate::geom::Span;
-use crate::report::{Claim, State};
+use crate::report::{Claim, Restart, State};
 use crate::summary::{duration, side_words};
 
 const LOOKS: &str = include_str!("sheet.css");
@@ -25,18 +25,21 @@ const CLAMPS: usize = 4;
 /// Longer texts are cut off there.
 const LONGEST: usize = 150;
 
-/// The setup sheet of the program in `scene`, as a page of its own.
-pub fn setup_sheet(scene: &Scene) -> String {
-    let stages = stages(&scene.program.toolpath.moves, scene.stock_top);
-    let chord = Chord::of(scene, &stages);
+/// The setup sheet of a job's programs, those in `scenes` in the order in which they are run, as a page of its own.
+pub fn setup_sheet(scenes: &[Scene]) -> String {
+    let sheet = |scene: &Scene| {
+        let stages = stages(&scene.program.toolpath.moves, scene.stock_top);
+        leaves(scene, &stages, &Chord::of(scene, &stages))
+    };
+    let name = scenes.first().map_or("", |scene| &scene.report.drawing.file);
     format!(
         "<!doctype html>\n<html lang=\"en\">\n<head>\n<meta charset=\"utf-8\">\n\
          <meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n\
          <meta http-equiv=\"Content-Security-Policy\" content=\"default-src 'none'; style-src 'unsafe-inline'; \
          img-src data:; base-uri 'none'; form-action 'none'\">\n<link rel=\"icon\" href=\"data:,\">\n\
          <title>{}: setup sheet</title>\n<style>\n{LOOKS}</style>\n</head>\n<body>\n{}</body>\n</html>\n",
-        escaped(&scene.report.drawing.file),
-        leaves(scene, &stages, &chord)
+        escaped(name),
+        scenes.iter().map(sheet).collect::<String>()
     )
 }
 
@@ -58,7 +61,7 @@ pub(super) fn leaves(scene: &Scene, stages: &[Stage], chord: &Chord) -> String {
         ticks = ticks(scene),
         checked = checked(scene),
         open = not_checked(scene),
-        restarts = restart_list(scene, stages),
+        restarts = restart_list(scene),
         notes = notes(scene),
         cautions = cautions(),
     )
@@ -82,8 +85,12 @@ fn title(scene: &Scene) -> String {
     let digest: String =
         Sha256::digest(scene.text.as_bytes()).iter().map(|byte| format!("{byte:02x}")).collect();
     format!(
-        "<h1>Setup sheet: {}</h1>\n<p class=\"names\">Program {}, {} bytes, SHA-256 {digest}; made by ribband {}</p>\n",
+        "<h1>Setup sheet: {}{}</h1>\n<p class=\"names\">Program {}, {} bytes, SHA-256 {digest}; made by ribband {}</p>\n",
         short(&report.drawing.file),
+        match scene.cutters_mm.len() {
+            0 | 1 => String::new(),
+            of => format!(", program {} of {of}", scene.number + 1),
+        },
         short(&report.program.file),
         report.program.bytes,
         escaped(&report.ribband)
@@ -133,10 +140,17 @@ fn cutting(scene: &Scene) -> String {
         numbers => format!("{}, number {}", show(setup.cutter_mm), numbers.join(", ")),
     };
     let direction = setup.direction.as_deref().map_or(String::new(), |direction| format!(", {direction}"));
+    let cutters = match scene.cutters_mm.len() {
+        0 | 1 => cutter,
+        _ => {
+            let all: Vec<String> = scene.cutters_mm.iter().map(|&mm| show(mm)).collect();
+            format!("{cutter}<br>of {}, in this order, all from one zero", all.join(", "))
+        }
+    };
     terms(
         "Cutting",
         &[
-            ("Cutter", cutter),
+            ("Cutter", cutters),
             ("Spindle", format!("{:.0} rev/min", setup.spindle_rpm)),
             ("Feed", format!("up to {}", feed(setup.feed_mm_min))),
             ("Feed straight down", format!("up to {}", feed(setup.plunge_mm_min))),
@@ -195,13 +209,25 @@ fn ticks(scene: &Scene) -> String {
         format!("X {x0} to {x1} and Y {y0} to {y1} are on the stock and clear of every clamp and screw"),
         format!("Lowest Z {z0}: what lies under the stock may be cut so deep"),
         "Extraction on; eyes, ears and lungs protected; everybody clear; hand at the stop".to_owned(),
-        "Air cut run through: spindle off, or zero set well above the stock".to_owned(),
+        dry_runs(scene),
         "Cut, staying with the machine".to_owned(),
         format!("Power off before touching the cutter; part measured{measured}"),
     ];
     let items: String =
         before.iter().chain(&clamps).chain(&after).map(|item| format!("<li>{item}</li>\n")).collect();
     format!("<h2>In this order</h2>\n<ol class=\"ticks\">\n{items}</ol>\n")
+}
+
+/// The dry runs to make, those that were written by their names.
+fn dry_runs(scene: &Scene) -> String {
+    let named = scene.report.dry_runs.iter().flat_map(|run| {
+        run.files.iter().map(move |file| format!("{} {}", run.kind, shorter(&file.file, 60)))
+    });
+    let named: Vec<String> = named.collect();
+    if named.is_empty() {
+        return "Air cut run through: spindle off, or zero set well above the stock".into();
+    }
+    format!("Run through with the spindle off: {}", named.join(", "))
 }
 
 fn checked(scene: &Scene) -> String {
@@ -225,35 +251,28 @@ fn not_checked(scene: &Scene) -> String {
     format!("<div><h2>Not checked: see to it yourself</h2>\n<ul class=\"open\">\n{all}</ul></div>\n")
 }
 
-/// The lines from which the program can be taken up again after a stop.
-fn restart_list(scene: &Scene, stages: &[Stage]) -> String {
-    let moves = &scene.program.toolpath.moves;
-    let points = restarts(moves, stages);
+/// The places from which the program can be taken up again after a stop.
+fn restart_list(scene: &Scene) -> String {
+    let places = &scene.report.program.restarts;
     let show = |mm: f64| length(mm, scene.report.setup.unit == "in");
-    // The way to the first cut starts where the program does not say, so that it is no place of its own.
-    let told = |(n, &i): (usize, &usize)| {
-        let to = moves[i].to.xy;
-        let from = format!("line {}, which travels to X {}, Y {}", moves[i].line, show(to.x), show(to.y));
-        format!("<li>cut {}: {}</li>\n", n + 1, if n == 0 { "the program's start".into() } else { from })
+    let several = scene.report.program.parts.len() > 1;
+    let told = |place: &Restart| {
+        let file = if several { format!("{}, ", escaped(&place.file)) } else { String::new() };
+        let block = place.block.map_or(String::new(), |block| format!(" (N{block})"));
+        let below = place.below_mm.map_or(String::new(), |z| format!(" below Z {}", show(z)));
+        let [x, y] = place.at_mm.map(show);
+        format!("<li>cut {}{below}: {file}line {}{block}, from X {x}, Y {y}</li>\n", place.cut, place.line)
     };
-    let listed: String = points.iter().enumerate().take(RESTARTS).map(told).collect();
-    let more = match points.len().saturating_sub(RESTARTS) {
+    let listed: String = places.iter().take(RESTARTS).map(told).collect();
+    let more = match places.len().saturating_sub(RESTARTS) {
         0 => String::new(),
-        more => format!("<li>and {more} more in the program</li>\n"),
+        more => format!("<li>and {more} more in the report</li>\n"),
     };
     format!(
-        "<h2>Places to take it up again</h2>\n<p>Only with zero found again, the spindle running at its speed and the \
-         cutter above the stock at {}; what the lines before have set must be set first.</p>\n\
-         <ul class=\"lines\">\n{listed}{more}</ul>\n",
-        show(clearance(scene, stages))
+        "<h2>Places to take it up again</h2>\n<p>After a stop: raise the cutter, find zero again, and have a program \
+         written that starts there, with the same settings and --resume-at LINE. The first cut is the program's \
+         start.</p>\n<ul class=\"lines\">\n{listed}{more}</ul>\n"
     )
-}
-
-/// The height of the lowest rapid that goes across; the highest place where none does.
-fn clearance(scene: &Scene, stages: &[Stage]) -> f64 {
-    let moves = scene.program.toolpath.moves.iter().zip(stages);
-    let across = moves.filter(|(m, stage)| stage.kind == Kind::Rapid && m.from.xy != m.to.xy);
-    across.map(|(m, _)| m.from.z.min(m.to.z)).reduce(f64::min).unwrap_or(scene.report.setup.extents_mm[5])
 }
 
 fn notes(scene: &Scene) -> String {
@@ -373,15 +392,16 @@ const NUMBERED: usize = 60;
 
 fn start_numbers(scene: &Scene, stages: &[Stage], scale: f64) -> String {
     let moves = &scene.program.toolpath.moves;
-    let starts = restarts(moves, stages).into_iter().take(NUMBERED).map(|i| moves[i].to.xy);
-    let marks = starts.enumerate().map(|(n, at)| {
+    let first = restarts(moves, stages).first().map(|&i| (1, moves[i].to.xy));
+    let begun = scene.report.program.restarts.iter().filter(|place| place.below_mm.is_none());
+    let begun = begun.map(|place| (place.cut, Point::from((place.at_mm[0], place.at_mm[1]))));
+    let marks = first.into_iter().chain(begun).take(NUMBERED).map(|(cut, at)| {
         let label = at + Vec2::new(1.2, 1.2) * scale;
         format!(
-            "<path class=\"start\" d=\"M{}h0\"/><text x=\"{}\" y=\"{}\">{}</text>\n",
+            "<path class=\"start\" d=\"M{}h0\"/><text x=\"{}\" y=\"{}\">{cut}</text>\n",
             place(at),
             mm(label.x),
             mm(-label.y),
-            n + 1
         )
     });
     marks.collect()

@@ -3,9 +3,10 @@
 use kurbo::{Point, Vec2};
 
 use crate::geom::Span;
+use crate::job::Entry;
 
 use super::course::Course;
-use super::cut::{Cut, Entry};
+use super::cut::Cut;
 use super::profile::Profile;
 use super::tabs::Placed;
 use super::track::Track;

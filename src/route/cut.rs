@@ -1,31 +1,9 @@
 //! How one contour is cut.
 
 use crate::error::Error;
-use crate::offset::Corners;
+use crate::job::{Corners, Direction, Entry, Held, TabNumber, Tabs};
 
 use super::setup::{Setup, positive, refused, settings};
-
-/// How the cutter goes down.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
-pub enum Entry {
-    /// Along the contour, at the ramp's angle.
-    #[default]
-    Ramp,
-    /// Straight down.
-    Plunge,
-    /// Round and round on the waste side, at the ramp's angle; a ramp where there is no room for that.
-    Helix,
-}
-
-/// Which way the cutter runs along the part, for a spindle that turns clockwise.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
-pub enum Direction {
-    /// The edge meets the part from thin to thick chip: clockwise in a hole, counter-clockwise about a part.
-    #[default]
-    Conventional,
-    /// The other way round.
-    Climb,
-}
 
 /// On which side the cutter runs of the region that contours bound together by even and odd.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
@@ -39,40 +17,11 @@ pub enum Side {
     Outside,
 }
 
-/// How a part that is cut free is held.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Held {
-    /// By vacuum.
-    Vacuum,
-    /// By screws.
-    Screws,
-    /// By tape.
-    Tape,
-}
-
-/// Bridges that hold a part in its stock until it is cut out by hand.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Tabs {
-    /// How many there are.
-    pub number: TabNumber,
-    /// Length of a tab at its top, in mm.
-    pub length_mm: f64,
-    /// Height of a tab above the stock's underside, in mm.
-    pub height_mm: f64,
-}
-
-/// How many tabs a contour gets.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub enum TabNumber {
-    /// That many.
-    Count(usize),
-    /// One for every so many mm of the contour, and two at least.
-    Spacing(f64),
-}
-
 /// How one contour is cut.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Cut {
+    /// Which cutter runs, by its number in the job: one program for each.
+    pub cutter: usize,
     /// How far below the stock's top the cut reaches, in mm, above zero.
     pub depth_mm: f64,
     /// The deepest pass, in mm; holes are drilled in pecks as deep.
@@ -113,6 +62,7 @@ impl Default for Cut {
     /// wood are common practice), conventional, no tabs.
     fn default() -> Self {
         Self {
+            cutter: 0,
             depth_mm: 0.0,
             pass_mm: 0.0,
             feed: 0.0,

@@ -24,7 +24,10 @@ pub struct AirCut {
 pub fn air_cut(toolpath: &Toolpath, setup: &Setup) -> AirCut {
     let heights = setup.heights();
     let lowest = toolpath.moves.iter().map(|m| m.from.z.min(m.to.z)).fold(heights.clearance, f64::min);
-    let lift_mm = heights.clearance - lowest;
+    // In whole steps, so that every height is rounded as it was.
+    let steps = (heights.clearance - lowest) / setup.step_mm;
+    let whole = if (steps - steps.round()).abs() < 1e-6 { steps.round() } else { steps.ceil() };
+    let lift_mm = whole * setup.step_mm;
     let raised = |p: Position| Position { z: p.z + lift_mm, ..p };
     let lift = |m: &Move| Move { from: raised(m.from), to: raised(m.to), spindle_rpm: 0.0, ..*m };
     AirCut { toolpath: Toolpath { moves: toolpath.moves.iter().map(lift).collect() }, lift_mm }
@@ -36,8 +39,8 @@ pub fn air_cut(toolpath: &Toolpath, setup: &Setup) -> AirCut {
 /// # Errors
 /// Refused when a clamp would be in the way.
 pub fn frame(toolpath: &Toolpath, cut: &Cut, setup: &Setup) -> Result<Toolpath, Error> {
-    let tallest = setup.keep_outs.iter().map(|k| k.height_mm).fold(0.0, f64::max);
-    let raised = Setup { clearance_mm: setup.clearance_mm + tallest, ..setup.clone() };
+    let clearance_mm = setup.clearance_over_all() - setup.heights().top;
+    let raised = Setup { clearance_mm, ..setup.clone() };
     let cuts = toolpath.moves.iter().filter(|m| !m.is_rapid()).map(|m| m.span().bbox());
     let extents = cuts.reduce(|a, b| a.union(b)).map(|r| r.inflate(cut.cutter_mm / 2.0, cut.cutter_mm / 2.0));
     let mut course = Course::new(&raised);

@@ -30,12 +30,13 @@ use course::Course;
 use order::Stop;
 use track::Track;
 
+pub use crate::job::{Corners, Direction, Entry, Held, TabNumber, Tabs, Thickness, Zero};
 pub use contour::Lead;
-pub use cut::{Cut, Direction, Entry, Held, Side, TabNumber, Tabs};
+pub use cut::{Cut, Side};
 pub use dry::{AirCut, air_cut, frame};
 pub use order::by_cutter;
-pub use resume::resume;
-pub use setup::{Heights, KeepOut, Order, Setup, Thickness, Zero};
+pub use resume::{Restart, restarts, resume};
+pub use setup::{Heights, KeepOut, Order, Setup};
 pub use sides::{Outline, Sided, beside};
 
 /// A contour ready to be cut: the line that the cutter's centre follows, and how it is cut.
@@ -79,6 +80,8 @@ pub struct Routing {
     /// The numbers of the moves, from 0, before which the cutter is at the clearance height above a new contour: safe
     /// places to start again.
     pub safe_starts: Vec<usize>,
+    /// The id of the contour that is begun at each of these places.
+    pub begun: Vec<usize>,
     /// What the person at the machine should know, one sentence each.
     pub notes: Vec<String>,
 }
@@ -105,6 +108,7 @@ pub fn route(contours: &[Routed], setup: &Setup) -> Result<Routing, Error> {
             contour.cut(*stop, pass, setup, &mut course)?;
             if course.len() > before {
                 routing.safe_starts.push(before);
+                routing.begun.push(contour.id);
             }
         }
     }

@@ -66,12 +66,12 @@ pub fn by_cutter(contours: &[Routed]) -> Vec<Vec<Routed>> {
     let mut left: Vec<usize> = (0..contours.len()).collect();
     let mut programs = Vec::new();
     while !left.is_empty() {
-        let mut cutters: Vec<f64> = left.iter().map(|&i| contours[i].cut.cutter_mm).collect();
-        cutters.dedup_by(|a, b| a.total_cmp(b).is_eq());
+        let mut cutters: Vec<usize> = left.iter().map(|&i| contours[i].cut.cutter).collect();
+        cutters.dedup();
         // Of all cutters the one that gets done with most of its contours.
-        let unfinished = |cutter: f64| {
+        let unfinished = |cutter: usize| {
             let now = possible(contours, &parents, &left, cutter).len();
-            let all = left.iter().filter(|&&i| contours[i].cut.cutter_mm.total_cmp(&cutter).is_eq()).count();
+            let all = left.iter().filter(|&&i| contours[i].cut.cutter == cutter).count();
             (all - now, usize::MAX - now)
         };
         let Some(best) = cutters.into_iter().min_by_key(|&cutter| unfinished(cutter)) else { break };
@@ -83,16 +83,16 @@ pub fn by_cutter(contours: &[Routed]) -> Vec<Vec<Routed>> {
 }
 
 /// The contours that a cutter can do now: those within which nothing is left for another cutter.
-fn possible(contours: &[Routed], parents: &[Option<usize>], left: &[usize], cutter: f64) -> Vec<usize> {
+fn possible(contours: &[Routed], parents: &[Option<usize>], left: &[usize], cutter: usize) -> Vec<usize> {
     let mut blocked = vec![false; contours.len()];
-    for &i in left.iter().filter(|&&i| contours[i].cut.cutter_mm.total_cmp(&cutter).is_ne()) {
+    for &i in left.iter().filter(|&&i| contours[i].cut.cutter != cutter) {
         let mut around = parents[i];
         while let Some(j) = around {
             blocked[j] = true;
             around = parents[j];
         }
     }
-    let is_its_own = |&i: &usize| contours[i].cut.cutter_mm.total_cmp(&cutter).is_eq() && !blocked[i];
+    let is_its_own = |&i: &usize| contours[i].cut.cutter == cutter && !blocked[i];
     left.iter().copied().filter(is_its_own).collect()
 }
 

@@ -9,7 +9,45 @@ use super::cut::Cut;
 use super::profile::Profile;
 use super::setup::{Setup, settings};
 use super::track::Track;
-use super::{Routing, keep_out};
+use super::{Routed, Routing, keep_out};
+
+/// A place where a toolpath can be taken up again.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Restart {
+    /// The move to take up, from 0.
+    pub number: usize,
+    /// Which of the cuts it belongs to, from 1 in the order in which they are begun.
+    pub cut: usize,
+    /// The id of its contour.
+    pub contour: usize,
+    /// The height that all of the contour is cut to already; `None` where the cut begins.
+    pub below: Option<f64>,
+}
+
+/// The places where a toolpath can be taken up again: where a contour is begun, and, within one, where the cutter goes
+/// down to the next pass from one that is done, with room for a ramp in its slot. The very start is none of them.
+pub fn restarts(routing: &Routing, contours: &[Routed], setup: &Setup) -> Vec<Restart> {
+    let moves = &routing.toolpath.moves;
+    let ends = routing.safe_starts.iter().skip(1).copied().chain([moves.len()]);
+    let visits = routing.safe_starts.iter().zip(ends).zip(&routing.begun);
+    let mut found = Vec::new();
+    for (cut, ((&start, end), &contour)) in (1..).zip(visits) {
+        if start > 0 {
+            found.push(Restart { number: start, cut, contour, below: None });
+        }
+        let Some(way) = contours.iter().find(|c| c.id == contour).map(|c| &c.cut) else { continue };
+        let mut lowest = f64::INFINITY;
+        for number in start + 1..end {
+            let (before, m) = (&moves[number - 1], &moves[number]);
+            lowest = lowest.min(before.to.z);
+            let level = before.to.z >= before.from.z && before.span().length() > 0.0;
+            if level && m.to.z < lowest && way_back(moves, number, way, setup).is_some() {
+                found.push(Restart { number, cut, contour, below: Some(m.from.z) });
+            }
+        }
+    }
+    found
+}
 
 /// A toolpath that takes up another one at its move `number`, from 0.
 ///

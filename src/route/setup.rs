@@ -3,25 +3,7 @@
 use kurbo::{Point, Rect};
 
 use crate::error::{Error, Kind};
-
-/// Where Z is zero.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
-pub enum Zero {
-    /// On the top face of the stock.
-    #[default]
-    StockTop,
-    /// On the bed that the stock lies on.
-    Bed,
-}
-
-/// How thick the stock is, in mm: one value, or a range where it varies.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Thickness {
-    /// The least thickness.
-    pub thinnest: f64,
-    /// The largest thickness.
-    pub thickest: f64,
-}
+use crate::job::{Thickness, Zero};
 
 /// The order in which passes are cut.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
@@ -103,6 +85,12 @@ impl Setup {
             Zero::Bed => 0.0,
         });
         Heights { top, clearance: top + self.clearance_mm, underside }
+    }
+
+    /// The height of travel that clears every clamp too.
+    pub fn clearance_over_all(&self) -> f64 {
+        let tallest = self.keep_outs.iter().map(|k| k.height_mm).fold(0.0, f64::max);
+        self.heights().clearance + tallest
     }
 
     /// The depth, below the top of the thickest stock, that goes `past` mm below the thickest stock's underside.

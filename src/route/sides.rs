@@ -6,9 +6,10 @@ use kurbo::Point;
 
 use crate::error::Error;
 use crate::geom::{ArcSpline, SpanIndex};
+use crate::job::Direction;
 use crate::offset::{self, CentreLine, Compensated, Uncut, compensate};
 
-use super::cut::{Cut, Direction, Side};
+use super::cut::{Cut, Side};
 use super::setup::refused;
 use super::{Routed, Work, relief, start};
 

@@ -3,9 +3,10 @@
 use kurbo::{Point, Vec2};
 
 use crate::geom::{ArcSpline, Span, SpanIndex, Vertex};
+use crate::job::Entry;
 
 use super::contour::Lead;
-use super::cut::{Cut, Entry};
+use super::cut::Cut;
 
 /// How many of the longest calm spans are tried.
 const SPANS: usize = 8;

@@ -5,8 +5,9 @@ use std::f64::consts::FRAC_PI_6;
 use kurbo::Point;
 
 use crate::error::Error;
+use crate::job::Tabs;
 
-use super::cut::{Cut, Tabs};
+use super::cut::Cut;
 use super::profile::Profile;
 use super::setup::{Heights, refused, settings};
 use super::track::Track;

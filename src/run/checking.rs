@@ -1,65 +1,112 @@
 //! The written text held against the drawing, the machine, and what was asked for.
 
+use std::collections::BTreeSet;
+
+use kurbo::Vec2;
+
 use super::placing::{Placing, for_check};
 use super::prepare::Prepared;
-use super::siding::Sides;
+use super::{CutterProgram, Plan};
 use crate::check::{self, Asked, Claim, Feeds, State, Verdict};
 use crate::error::{Error, Kind};
 use crate::gcode::{self, Dialect, Program};
 use crate::job::{self, CheckJob, Clamp, Cutting, Job, Stock, ToleranceSide};
 use crate::machine::Machine;
+use crate::num::Tolerance;
 use crate::route::{Cut, Routed, Setup};
 use crate::sketch::{Contour, Sketch};
 
 /// What the program says, judged against the drawing as it was read.
 pub(super) fn check(job: &Job, program: &Program, prepared: &Prepared, plan: &Intended) -> Verdict {
-    check::check(program, &prepared.sketch, &job.machine, &asked(job, prepared, plan))
+    check::check(
+        program,
+        &prepared.sketch,
+        &job.machine,
+        &asked(job, &prepared.sketch, prepared.tolerance, plan),
+    )
 }
 
 /// What holds of one part of the program by itself: all but what is about the drawing.
 pub(super) fn check_part(job: &Job, part: &Program, prepared: &Prepared, plan: &Intended) -> Vec<Claim> {
-    check::check_moves(part, &job.machine, &asked(job, prepared, plan))
+    check::check_moves(part, &job.machine, &asked(job, &prepared.sketch, prepared.tolerance, plan))
 }
 
 /// What the program was meant to do, as far as the check may know it.
 pub(super) struct Intended<'a> {
+    pub(super) cutter: usize,
+    pub(super) contours: &'a BTreeSet<usize>,
     pub(super) routed: &'a [Routed],
     pub(super) setup: &'a Setup,
-    pub(super) sides: &'a Sides,
-    pub(super) placing: &'a Placing,
+    pub(super) region: check::Side,
+    pub(super) drawing_at: Vec2,
+    pub(super) zero_at: Option<Vec2>,
 }
 
-fn asked(job: &Job, prepared: &Prepared, plan: &Intended) -> Asked {
+impl<'a> Intended<'a> {
+    /// What a program of a finished plan was meant to do.
+    pub(super) fn of(made: &'a CutterProgram, plan: &'a Plan) -> Self {
+        Self {
+            cutter: made.cutter,
+            contours: &made.contours,
+            routed: &made.routed,
+            setup: &plan.setup,
+            region: plan.region,
+            drawing_at: plan.drawing_at,
+            zero_at: plan.zero_at,
+        }
+    }
+}
+
+/// What holds of a program that takes up another one, as far as its moves go.
+pub(super) fn check_again(job: &Job, program: &Program, plan: &Plan, of: &Intended) -> Vec<Claim> {
+    check::check_moves(program, &job.machine, &asked(job, &plan.sketch, plan.tolerance, of))
+}
+
+/// What holds of a dry run that keeps above a height.
+pub(super) fn check_dry(
+    job: &Job,
+    program: &Program,
+    plan: &Plan,
+    (of, clearance): (&Intended, f64),
+) -> Vec<Claim> {
+    let asked = Asked { clearance: Some(clearance), ..asked(job, &plan.sketch, plan.tolerance, of) };
+    check::check_dry(program, &job.machine, &asked)
+}
+
+fn asked(job: &Job, sketch: &Sketch, tolerance: Tolerance, plan: &Intended) -> Asked {
     let most =
         |figure: fn(&Cut) -> f64| plan.routed.iter().map(|routed| figure(&routed.cut)).fold(0.0, f64::max);
     let heights = plan.setup.heights();
-    let of_contour = |contour: &Contour| {
-        let cutting = job.cutting_of(&contour.layer).filter(|_| job.layers.contains_key(&contour.layer))?;
-        Some((contour.id, heights.top - cutting.depth_mm))
-    };
     let waste = job.keeps_to_waste();
-    let on_line = |contour: &&Contour| {
-        !waste && job.cutting_of(&contour.layer).is_none_or(|cutting| cutting.side == job::Side::On)
-    };
-    let leave = |cutting: &Cutting| cutting.leave_mm;
+    let cuttings = || sketch.contours.iter().map(|contour| (contour, job.cutting_for(contour)));
+    let on_line = |cutting: &Cutting| !waste && cutting.side == job::Side::On;
+    let beside =
+        |(contour, cutting): &(&Contour, &Cutting)| plan.contours.contains(&contour.id) && !on_line(cutting);
+    // What is cut on the line by itself must not go anywhere else.
+    let side = if cuttings().any(|c| beside(&c)) { plan.region } else { check::Side::On };
+    let edge = |cutting: &Cutting| if waste { job.edge_mm(cutting) } else { cutting.allowance_mm };
+    let allowance = cuttings().find(beside).map_or(0.0, |(_, cutting)| edge(cutting));
+    let height = |cutting: &Cutting| heights.top - cutting.depth_mm;
     Asked {
-        side: plan.sides.region,
-        on_line: prepared.sketch.contours.iter().filter(on_line).map(|contour| contour.id).collect(),
-        allowance: if waste { job.edge_mm() } else { job.allowance_mm },
+        side,
+        on_line: cuttings().filter(|(_, cutting)| on_line(cutting)).map(|(c, _)| c.id).collect(),
+        only: Some(plan.contours.clone()),
+        allowance,
+        allowance_of_contour: cuttings().map(|(c, cutting)| (c.id, edge(cutting))).collect(),
         waste,
-        leave: job.cuttings().map(leave).fold(0.0, f64::max),
+        leave: most(|cut| cut.leave_mm),
         layout: for_check(&job.layout),
-        drawing_at: Some(plan.placing.drawing_at),
-        zero_at: plan.placing.zero_at,
+        drawing_at: Some(plan.drawing_at),
+        zero_at: plan.zero_at,
         keep_out: keep_outs(&job.stock),
         stock_top: heights.top,
         clearance: Some(heights.clearance),
-        lowest: Some(heights.top - job.cutting.depth_mm),
-        lowest_of_contour: prepared.sketch.contours.iter().filter_map(of_contour).collect(),
+        lowest: Some(heights.top - most(|cut| cut.depth_mm)),
+        lowest_of_contour: cuttings().map(|(c, cutting)| (c.id, height(cutting))).collect(),
         pass: Some(most(|cut| cut.pass_mm)),
         feeds: Some(Feeds { cutting: most(|cut| cut.feed), plunge: most(|cut| cut.plunge) }),
-        cutter: job.cutter_mm,
-        ..Asked::new(prepared.tolerance)
+        cutter: job.cutters[plan.cutter].diameter_mm,
+        ..Asked::new(tolerance)
     }
 }
 

@@ -6,13 +6,9 @@ use super::placing::Placing;
 use super::siding::Sides;
 use crate::error::Error;
 use crate::fit::Fitted;
-use crate::job::{self, Cutting, Job, Origin};
+use crate::job::{Clamp, Corners, Cutting, Held, Job, Origin};
 use crate::num::Tolerance;
-use crate::offset::Corners;
-use crate::route::{
-    self, Cut, Direction, Entry, Held, KeepOut, Outline, Routed, Setup, Sided, TabNumber, Tabs, Thickness,
-    Work, Zero,
-};
+use crate::route::{self, Cut, KeepOut, Outline, Routed, Setup, Sided, Work};
 use crate::sketch::Contour;
 
 /// What all contours of the program share. The program ends above its zero, or, where that is the drawing's, above the
@@ -20,14 +16,8 @@ use crate::sketch::Contour;
 pub(super) fn setup(job: &Job, placing: &Placing) -> Setup {
     let park = if job.stock.origin() == Origin::Drawing { placing.parts.origin() } else { Point::ORIGIN };
     Setup {
-        zero: match job.stock.zero {
-            job::Zero::StockTop => Zero::StockTop,
-            job::Zero::Bed => Zero::Bed,
-        },
-        thickness: job
-            .stock
-            .thickness
-            .map(|stock| Thickness { thinnest: stock.thinnest, thickest: stock.thickest }),
+        zero: job.stock.zero,
+        thickness: job.stock.thickness,
         clearance_mm: job.stock.clearance_mm(),
         bed_cut_mm: job.stock.bed_cut_mm,
         park,
@@ -37,7 +27,7 @@ pub(super) fn setup(job: &Job, placing: &Placing) -> Setup {
     }
 }
 
-fn keep_out(clamp: &job::Clamp) -> KeepOut {
+fn keep_out(clamp: &Clamp) -> KeepOut {
     KeepOut { place: clamp.place, height_mm: clamp.height_mm }
 }
 
@@ -56,7 +46,8 @@ pub(super) fn sided(
         cut: beyond(
             job,
             tolerance,
-            Cut { side: **side, ..cut(job, job.cutting_of(&contour.layer).unwrap_or(&job.cutting)) },
+            job.cutting_for(contour),
+            Cut { side: **side, ..cut(job, job.cutting_for(contour)) },
         ),
     };
     let ready: Vec<Ready> = contours.iter().zip(fitted).zip(&sides.each).collect();
@@ -66,18 +57,18 @@ pub(super) fn sided(
 
 /// The cut moved to the middle of its band where the whole tolerance lies on the waste side: off the line itself where
 /// the cutter's centre follows that, else further off the edge. A corner of the line stays one where it can.
-fn beyond(job: &Job, tolerance: Tolerance, cut: Cut) -> Cut {
+fn beyond(job: &Job, tolerance: Tolerance, cutting: &Cutting, cut: Cut) -> Cut {
     if !job.keeps_to_waste() {
         return cut;
     }
     let corners = if job.cuts_on_line_only() { Corners::Sharp } else { cut.corners };
-    Cut { allowance_mm: job.edge_mm() + tolerance.mm() / 2.0, corners, ..cut }
+    Cut { allowance_mm: job.edge_mm(cutting) + tolerance.mm() / 2.0, corners, ..cut }
 }
 
 /// Each contour of every copy as it is drawn, cut on the line and held in some way: the job to compare with.
-pub(super) fn as_drawn(job: &Job, contours: &[Contour], placing: &Placing) -> Vec<Routed> {
-    let cut = |contour: &Contour, place: Affine| {
-        let cutting = job.cutting_of(&contour.layer).unwrap_or(&job.cutting);
+pub(super) fn as_drawn(job: &Job, contours: &[&Contour], placing: &Placing) -> Vec<Routed> {
+    let cut = |contour: &&Contour, place: Affine| {
+        let cutting = job.cutting_for(contour);
         let cut = Cut { tabs: None, held: Some(Held::Vacuum), leave_mm: 0.0, ..cut(job, cutting) };
         Routed { id: contour.id, path: contour.path.transformed(place), cut, work: Work::OnLine }
     };
@@ -85,46 +76,21 @@ pub(super) fn as_drawn(job: &Job, contours: &[Contour], placing: &Placing) -> Ve
 }
 
 fn cut(job: &Job, cutting: &Cutting) -> Cut {
-    let Cutting { depth_mm, pass_mm, feed, plunge, spindle_rpm, leave_mm, .. } = *cutting;
     Cut {
-        depth_mm,
-        pass_mm,
-        feed,
-        plunge,
-        spindle_rpm,
-        leave_mm,
-        cutter_mm: job.cutter_mm,
-        allowance_mm: job.allowance_mm,
-        corners: match cutting.corners {
-            job::Corners::Round => Corners::Round,
-            job::Corners::Sharp => Corners::Sharp,
-        },
-        direction: match cutting.direction {
-            job::Direction::Conventional => Direction::Conventional,
-            job::Direction::Climb => Direction::Climb,
-        },
-        entry: match cutting.entry {
-            job::Entry::Ramp => Entry::Ramp,
-            job::Entry::Plunge => Entry::Plunge,
-            job::Entry::Helix => Entry::Helix,
-        },
-        tabs: cutting.tabs.map(tabs),
-        held: cutting.held.map(|held| match held {
-            job::Held::Vacuum => Held::Vacuum,
-            job::Held::Screws => Held::Screws,
-            job::Held::Tape => Held::Tape,
-        }),
+        cutter: cutting.cutter,
+        depth_mm: cutting.depth_mm,
+        pass_mm: cutting.pass_mm,
+        feed: cutting.feed,
+        plunge: cutting.plunge,
+        spindle_rpm: cutting.spindle_rpm,
+        cutter_mm: job.cutters[cutting.cutter].diameter_mm,
+        corners: cutting.corners,
+        allowance_mm: cutting.allowance_mm,
+        leave_mm: cutting.leave_mm,
+        entry: cutting.entry,
+        direction: cutting.direction,
+        tabs: cutting.tabs,
+        held: cutting.held,
         ..Cut::default()
-    }
-}
-
-fn tabs(tabs: job::Tabs) -> Tabs {
-    Tabs {
-        number: match tabs.number {
-            job::TabNumber::Count(count) => TabNumber::Count(count),
-            job::TabNumber::Spacing(mm) => TabNumber::Spacing(mm),
-        },
-        length_mm: tabs.length_mm,
-        height_mm: tabs.height_mm,
     }
 }

@@ -8,7 +8,7 @@ use crate::toolpath::{Move, Toolpath};
 
 /// Lowers feeds to what machine and controller sustain, and the spindle speed with them; tells what the person at the
 /// machine should know of it.
-pub(super) fn suit(toolpath: &mut Toolpath, header: &Header, job: &Job) -> Vec<String> {
+pub(super) fn suit(toolpath: &mut Toolpath, header: &Header, job: &Job, cutter: usize) -> Vec<String> {
     let blocks = blocks_of(toolpath, header, &job.machine);
     // A cubic move is planned as the arcs that stand for it, which are more blocks than it is.
     let lowered = feed::schedule_blocks(toolpath, &blocks, &Limits::of(&job.machine));
@@ -24,13 +24,13 @@ pub(super) fn suit(toolpath: &mut Toolpath, header: &Header, job: &Job) -> Vec<S
             unit.symbol()
         ));
     }
-    told.extend(chips(toolpath, job));
+    told.extend(chips(toolpath, job, cutter));
     told
 }
 
 /// The spindle speed that suits the feeds, and what stays outside the cutter's range.
-fn chips(toolpath: &mut Toolpath, job: &Job) -> Vec<String> {
-    let Some(cutter) = &job.cutter else { return Vec::new() };
+fn chips(toolpath: &mut Toolpath, job: &Job, cutter: usize) -> Vec<String> {
+    let Some(cutter) = &job.cutters[cutter].entry else { return Vec::new() };
     let asked = spindle_rpm(toolpath);
     let Some(load) = hold_chip_load(toolpath, cutter, &job.machine.spindle) else { return Vec::new() };
     let slower = (load.rpm < asked).then(|| {

@@ -5,44 +5,41 @@ use std::path::Path;
 use kurbo::Rect;
 
 use super::prepare::band;
+use super::programs::Bench;
 use crate::cautions;
 use crate::gcode::Header;
 use crate::job::{Clamp, Job, Layout, Side};
 use crate::machine::{ArcStyle, Machine};
 use crate::num::Tolerance;
-use crate::route::Setup;
+use crate::route::{Cut, Routed};
 
-/// The header of the program for the drawing called `name`, whose bytes have that digest. It holds no time, so that
-/// the same job gives the same text.
-pub(super) fn header(
-    job: &Job,
-    name: &str,
-    (tolerance, stock): (Tolerance, Option<Rect>),
-    setup: &Setup,
-    sha256: &str,
-) -> Header {
+/// The header of the program for some lines, all cut by that cutter; `place` says which program of how many it is. It
+/// holds no time, so that the same job gives the same text.
+pub(super) fn header(bench: &Bench, cutter: usize, routed: &[Routed], place: Option<&str>) -> Header {
+    let Bench { job, name, sha256, setup, .. } = *bench;
+    let tolerance = bench.prepared.tolerance;
     let file = Path::new(name).file_name().map_or_else(|| name.into(), |file| file.to_string_lossy());
-    let cutting = &job.cutting;
+    let most = |figure: fn(&Cut) -> f64| routed.iter().map(|routed| figure(&routed.cut)).fold(0.0, f64::max);
     let mut notes = vec![
-        side(job).to_owned(),
+        side(job, cutter).to_owned(),
         format!(
             "tolerance {} mm{}, depth {} mm, pass {} mm at most",
             tolerance.mm(),
             if job.keeps_to_waste() { " on the waste side" } else { "" },
-            cutting.depth_mm,
-            cutting.pass_mm
+            most(|cut| cut.depth_mm),
+            most(|cut| cut.pass_mm)
         ),
         format!("made by ribband {} from {file}", env!("CARGO_PKG_VERSION")),
         format!("drawing sha256 {sha256}"),
     ];
     notes.extend(laid_out(job));
-    notes.extend(set_up(job, stock));
+    notes.extend(set_up(job, bench.placing.stock));
     notes.extend(cautions::SHORT.map(str::to_owned));
     Header {
-        title: file.into_owned(),
+        title: place.map_or_else(|| file.clone().into_owned(), |place| format!("{file}, {place}")),
         xy_zero: job.stock.origin().words().into(),
         z_zero: job.stock.zero.words().into(),
-        cutter: cutter(job),
+        cutter: cutter_words(job, cutter),
         clearance: setup.heights().clearance,
         chord_error: chord_error(&job.machine, band(job, tolerance)),
         notes,
@@ -78,9 +75,10 @@ fn laid_out(job: &Job) -> Option<String> {
 }
 
 /// The side in words that stand in a comment.
-fn side(job: &Job) -> &'static str {
-    let first = job.cutting.side;
-    if job.cuttings().any(|cutting| cutting.side != first) {
+fn side(job: &Job, cutter: usize) -> &'static str {
+    let mut sides = job.cuttings().filter(|cutting| cutting.cutter == cutter).map(|cutting| cutting.side);
+    let first = sides.next().unwrap_or_default();
+    if sides.any(|side| side != first) {
         return "on the side that each layer asks for";
     }
     match first {
@@ -103,7 +101,7 @@ pub(super) fn chord_error(machine: &Machine, tolerance: Tolerance) -> f64 {
 }
 
 /// The cutter in words.
-pub(super) fn cutter(job: &Job) -> String {
-    let diameter = job.cutter_mm / job.machine.unit.mm();
+pub(super) fn cutter_words(job: &Job, cutter: usize) -> String {
+    let diameter = job.cutters[cutter].diameter_mm / job.machine.unit.mm();
     format!("{diameter} {}", job.machine.unit.symbol())
 }

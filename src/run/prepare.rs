@@ -1,5 +1,7 @@
 //! From the drawing's bytes to contours that can be cut: read, measured, put right, held against the machine.
 
+use std::collections::BTreeSet;
+
 use kurbo::Rect;
 use rayon::prelude::*;
 
@@ -8,7 +10,7 @@ use super::clock::Clock;
 use super::header::chord_error;
 use crate::clean::{self, Cleaned, Roughness};
 use crate::error::{Error, Kind};
-use crate::job::{DrawingSettings, DrawingUnit, Job};
+use crate::job::{self, DrawingSettings, DrawingUnit, Job};
 use crate::num::Tolerance;
 use crate::read::{self, Limits, Scale, Unit};
 use crate::sketch::{Contour, Sketch};
@@ -88,19 +90,28 @@ pub(super) fn left_for_fitting(job: &Job, prepared: &Prepared) -> Result<Toleran
 fn read_wanted(job: &Job, source: Source) -> Result<Sketch, Error> {
     let mut sketch = read::read(source.name, source.bytes, &scale(&job.drawing))?;
     let before = sketch.contours.len();
-    sketch.contours.retain(|contour| job.cutting_of(&contour.layer).is_some());
+    sketch.contours.retain(|contour| job.cutting_of(contour).is_some());
     if sketch.contours.is_empty() && before > 0 {
         return Err(nothing_to_cut());
     }
-    let drawn = |layer: &&String| !sketch.contours.iter().any(|contour| contour.layer == **layer);
-    let missing: Vec<_> =
-        job.layers.iter().filter(|(_, cutting)| cutting.is_some()).map(|(layer, _)| layer).collect();
-    let notes = missing
-        .into_iter()
-        .filter(drawn)
-        .map(|layer| format!("the job file has a layer \"{layer}\", the drawing has none"));
-    sketch.notes.extend(notes.collect::<Vec<_>>());
+    sketch.notes.extend(missing(job, &sketch.contours));
     Ok(sketch)
+}
+
+/// What the job file names and the drawing does not have.
+fn missing(job: &Job, contours: &[Contour]) -> Vec<String> {
+    let layers: BTreeSet<String> = contours.iter().map(|contour| contour.layer.clone()).collect();
+    let colours: BTreeSet<String> =
+        contours.iter().map(|contour| job::same_colour(&contour.colour)).collect();
+    let mut told = Vec::new();
+    for (kind, entries, drawn) in [("layer", &job.layers, layers), ("colour", &job.colours, colours)] {
+        let cut = entries.iter().filter(|(_, cutting)| cutting.is_some()).map(|(name, _)| name);
+        let missing = cut.filter(|name| !drawn.contains(*name));
+        told.extend(
+            missing.map(|name| format!("the job file has a {kind} \"{name}\", the drawing has none")),
+        );
+    }
+    told
 }
 
 /// The tolerance asked for; else the default, or what the traces support where that is more, which is then told.

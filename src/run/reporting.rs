@@ -5,32 +5,44 @@ use std::path::Path;
 use kurbo::Rect;
 
 use super::feeding::spindle_rpm;
-use super::{Plan, curvature};
+use super::{CutterProgram, DryRun, Place, Plan, curvature};
 use crate::check::{self, Verdict};
 use crate::clean::Roughness;
 use crate::files::Target;
 use crate::fit::Fitted;
 use crate::job::{self, Cutting, Job, Side, Zero};
 use crate::report::{
-    AsDrawn, Check, Claim, Clamp, Contour, Drawing, Layout, Part, Program, Report, Setup, State, Stock,
+    self, AsDrawn, Check, Claim, Clamp, Contour, Drawing, Layout, Part, Program, Report, Restart, Setup,
+    State, Stock,
 };
 use crate::sketch;
 use crate::toolpath::{Move, Toolpath};
 
-/// The report of `plan`; `drawing` and `program` are the files' names as typed.
-pub(super) fn report(job: &Job, plan: &Plan, drawing: &str, program: &str) -> Report {
-    Report {
-        ribband: env!("CARGO_PKG_VERSION").into(),
-        tolerance_mm: plan.tolerance.mm(),
-        tolerance_side: Some(job.tolerance_side).filter(|_| job.keeps_to_waste()),
-        drawing: drawing_of(plan, drawing),
-        contours: contours(job, plan),
-        setup: setup(job, plan),
-        program: program_of(plan, program),
-        check: check_of(&plan.verdict),
-        warnings: plan.warnings.clone(),
-        timings_ms: plan.timings_ms.clone(),
-    }
+/// A report of each program of `plan`; `drawing` and `program` are the files' names as typed.
+pub(super) fn reports(job: &Job, plan: &Plan, drawing: &str, program: &str) -> Vec<Report> {
+    let names = Target::new(Some(Path::new(program)), Path::new(""), "");
+    let texts: usize = plan.programs.iter().map(|program| program.texts().len()).sum();
+    let mut numbers = 1..;
+    let one = |made: &CutterProgram| {
+        let name =
+            |_: &&str| if texts > 1 { names.part(numbers.next().unwrap_or(0)).name() } else { names.name() };
+        let files: Vec<String> = made.texts().iter().map(name).collect();
+        Report {
+            ribband: env!("CARGO_PKG_VERSION").into(),
+            tolerance_mm: plan.tolerance.mm(),
+            tolerance_side: Some(job.tolerance_side).filter(|_| job.keeps_to_waste()),
+            drawing: drawing_of(plan, drawing),
+            contours: contours(job, plan, made),
+            setup: setup(job, plan, made),
+            program: program_of(made, program, &files),
+            check: check_of(&made.verdict),
+            programs: Vec::new(),
+            dry_runs: Vec::new(),
+            warnings: plan.warnings.clone(),
+            timings_ms: plan.timings_ms.clone(),
+        }
+    };
+    plan.programs.iter().map(one).collect()
 }
 
 fn drawing_of(plan: &Plan, file: &str) -> Drawing {
@@ -48,7 +60,7 @@ fn drawing_of(plan: &Plan, file: &str) -> Drawing {
     }
 }
 
-fn contours(job: &Job, plan: &Plan) -> Vec<Contour> {
+fn contours(job: &Job, plan: &Plan, made: &CutterProgram) -> Vec<Contour> {
     let place_mm = job.machine.last_place();
     let reaching = if job.cuts_on_line_only() { "the path" } else { "the cutter" };
     let drawn = plan.cleaned.contours.iter().zip(&plan.roughness);
@@ -60,10 +72,11 @@ fn contours(job: &Job, plan: &Plan) -> Vec<Contour> {
         cubics,
         curvature,
         roughness_mm: rough.sigma_mm,
-        uncut: uncut(plan, drawn.id, reaching),
+        uncut: uncut(made, drawn.id, reaching),
         ..contour(drawn, fitted, place_mm)
     };
-    drawn.zip(&plan.fitted).zip(cubics.zip(curvature)).map(told).collect()
+    let own = |(((drawn, _), _), _): &(Figures, _)| made.contours.contains(&drawn.id);
+    drawn.zip(&plan.fitted).zip(cubics.zip(curvature)).filter(own).map(told).collect()
 }
 
 fn contour(drawn: &sketch::Contour, fitted: &Fitted, place_mm: f64) -> Contour {
@@ -88,8 +101,8 @@ fn contour(drawn: &sketch::Contour, fitted: &Fitted, place_mm: f64) -> Contour {
 }
 
 /// What the cutter, or the path, does not reach of a contour: of copies, of the one that it reaches least of.
-fn uncut(plan: &Plan, contour: usize, reaching: &str) -> Vec<String> {
-    let of_contour = || plan.verdict.uncut.iter().filter(|uncut| uncut.contour == contour);
+fn uncut(made: &CutterProgram, contour: usize, reaching: &str) -> Vec<String> {
+    let of_contour = || made.verdict.uncut.iter().filter(|uncut| uncut.contour == contour);
     let worst = of_contour().max_by(|a, b| a.gap.total_cmp(&b.gap)).map(|uncut| uncut.copy);
     of_contour().filter(|uncut| Some(uncut.copy) == worst).map(|uncut| stays(reaching, uncut)).collect()
 }
@@ -107,17 +120,18 @@ fn stays(what: &str, uncut: &check::Uncut) -> String {
 }
 
 /// The way that all contours are cut which are cut beside the line, or "by layer".
-fn shared(job: &Job, name: fn(&Cutting) -> &'static str) -> String {
-    let mut names: Vec<&str> = job.cuttings().filter(|c| c.side != Side::On).map(name).collect();
+fn shared<'a>(cuttings: impl Iterator<Item = &'a Cutting>, name: fn(&Cutting) -> &'static str) -> String {
+    let mut names: Vec<&str> = cuttings.filter(|c| c.side != Side::On).map(name).collect();
     names.dedup();
     if names.len() == 1 { names[0].into() } else { "by layer".into() }
 }
 
-fn setup(job: &Job, plan: &Plan) -> Setup {
-    let beside = job.cuttings().any(|cutting| cutting.side != Side::On);
-    let mixed = beside && job.cuttings().any(|cutting| cutting.side == Side::On);
-    let cuts = || plan.routed.iter().map(|routed| &routed.cut);
-    let extents = extents(&plan.program.toolpath);
+fn setup(job: &Job, plan: &Plan, made: &CutterProgram) -> Setup {
+    let cuttings = || job.cuttings().filter(|cutting| cutting.cutter == made.cutter);
+    let beside = cuttings().any(|cutting| cutting.side != Side::On);
+    let mixed = beside && cuttings().any(|cutting| cutting.side == Side::On);
+    let cuts = || made.routed.iter().map(|routed| &routed.cut);
+    let extents = extents(&made.program.toolpath);
     let most = |figure: fn(&crate::route::Cut) -> f64| cuts().map(figure).fold(0.0, f64::max);
     Setup {
         machine: job.machine.name.clone(),
@@ -133,18 +147,18 @@ fn setup(job: &Job, plan: &Plan) -> Setup {
         clamps: job.stock.clamps.iter().map(clamp).collect(),
         layout: layout(job, plan),
         extents_mm: extents,
-        cutter_mm: job.cutter_mm,
+        cutter_mm: job.cutters[made.cutter].diameter_mm,
         side: match (beside, mixed) {
             (false, _) => Side::On.name().into(),
             (true, true) => "by layer".into(),
-            (true, false) => shared(job, |cutting| cutting.side.name()),
+            (true, false) => shared(cuttings(), |cutting| cutting.side.name()),
         },
-        direction: beside.then(|| shared(job, |cutting| cutting.direction.name())),
+        direction: beside.then(|| shared(cuttings(), |cutting| cutting.direction.name())),
         depth_mm: most(|cut| cut.depth_mm),
         passes: cuts().map(|cut| cut.passes().len()).max().unwrap_or(0),
-        feed_mm_min: fastest_along(&plan.routing.toolpath),
+        feed_mm_min: fastest_along(&made.routing.toolpath),
         plunge_mm_min: most(|cut| cut.plunge),
-        spindle_rpm: spindle_rpm(&plan.routing.toolpath),
+        spindle_rpm: spindle_rpm(&made.routing.toolpath),
     }
 }
 
@@ -193,47 +207,74 @@ fn extents(toolpath: &Toolpath) -> [f64; 6] {
     [plane.x0, plane.y0, low, plane.x1, plane.y1, high]
 }
 
-fn program_of(plan: &Plan, file: &str) -> Program {
+/// `file` is the program's name as typed, `files` those that stand for it.
+fn program_of(made: &CutterProgram, file: &str, files: &[String]) -> Program {
     let length = |wanted: fn(&Move) -> bool| {
-        plan.program.toolpath.moves.iter().filter(|m| wanted(m)).map(Move::length).sum()
+        made.program.toolpath.moves.iter().filter(|m| wanted(m)).map(Move::length).sum()
     };
-    let parts = parts_of(plan, file);
+    let parts = parts_of(made, files);
     let blocks_of_parts = parts.iter().map(|part| part.blocks).sum();
     let bytes_of_parts = parts.iter().map(|part| part.bytes).sum();
-    let motion_of_parts = plan.parts.iter().map(|part| part.program.motion_blocks).sum();
-    let of = |whole, parts| if plan.parts.is_empty() { whole } else { parts };
+    let motion_of_parts = made.parts.iter().map(|part| part.program.motion_blocks).sum();
+    let of = |whole, parts| if made.parts.is_empty() { whole } else { parts };
     Program {
-        file: file.into(),
-        blocks: of(plan.program.blocks, blocks_of_parts),
-        motion_blocks: of(plan.program.motion_blocks, motion_of_parts),
-        bytes: of(plan.text.len(), bytes_of_parts),
+        file: if files.len() == 1 { files[0].clone() } else { file.into() },
+        blocks: of(made.program.blocks, blocks_of_parts),
+        motion_blocks: of(made.program.motion_blocks, motion_of_parts),
+        bytes: of(made.text.len(), bytes_of_parts),
         parts,
         cut_length_mm: length(|m| !m.is_rapid()),
         rapid_length_mm: length(Move::is_rapid),
-        time_s: plan.times.time_s,
-        cut_time_s: plan.times.cut_time_s,
-        starved_blocks: plan.times.starved_blocks,
-        mean_mm_min: plan.times.mean_mm_min,
-        slowest_mm_min: plan.times.slowest_mm_min,
-        highest_override: plan.highest_override,
+        time_s: made.times.time_s,
+        cut_time_s: made.times.cut_time_s,
+        starved_blocks: made.times.starved_blocks,
+        mean_mm_min: made.times.mean_mm_min,
+        slowest_mm_min: made.times.slowest_mm_min,
+        highest_override: made.highest_override,
+        restarts: made.restarts.iter().map(|place| restart(place, &files[place.part])).collect(),
         as_drawn: AsDrawn {
-            motion_blocks: plan.as_drawn.motion_blocks,
-            time_s: plan.as_drawn.times.time_s,
-            cut_time_s: plan.as_drawn.times.cut_time_s,
-            starved_blocks: plan.as_drawn.times.starved_blocks,
+            motion_blocks: made.as_drawn.motion_blocks,
+            time_s: made.as_drawn.times.time_s,
+            cut_time_s: made.as_drawn.times.cut_time_s,
+            starved_blocks: made.as_drawn.times.starved_blocks,
         },
     }
 }
 
+fn restart(place: &Place, file: &str) -> Restart {
+    Restart {
+        file: file.into(),
+        line: place.line,
+        block: place.block,
+        cut: place.restart.cut,
+        contour: place.restart.contour,
+        below_mm: place.restart.below,
+        at_mm: [place.at.x, place.at.y],
+    }
+}
+
+/// The report of a dry run whose files have these names.
+pub(super) fn dry_run(run: &DryRun, files: &[String]) -> report::DryRun {
+    let file = |(k, file): (usize, &String)| Part {
+        file: file.clone(),
+        blocks: run.blocks[k],
+        bytes: run.texts[k].len(),
+    };
+    report::DryRun {
+        kind: run.kind.name().into(),
+        files: files.iter().enumerate().map(file).collect(),
+        claims: run.claims.iter().map(claim).collect(),
+    }
+}
+
 /// The files of a program in parts.
-fn parts_of(plan: &Plan, file: &str) -> Vec<Part> {
-    let target = Target::new(Some(Path::new(file)), Path::new(""), "");
-    let part = |(k, part): (usize, &super::Part)| Part {
-        file: target.part(k).name(),
+fn parts_of(made: &CutterProgram, files: &[String]) -> Vec<Part> {
+    let part = |(file, part): (&String, &super::Part)| Part {
+        file: file.clone(),
         blocks: part.program.blocks,
         bytes: part.text.len(),
     };
-    (1..).zip(&plan.parts).map(part).collect()
+    files.iter().zip(&made.parts).map(part).collect()
 }
 
 pub(super) fn check_of(verdict: &Verdict) -> Check {

@@ -26,7 +26,7 @@ pub(super) fn sides(job: &Job, prepared: &Prepared) -> Result<Sides, Error> {
     let contours = &prepared.cleaned.contours;
     let mut asked: Vec<Side> = contours
         .iter()
-        .map(|contour| job.cutting_of(&contour.layer).map_or(Side::On, |cutting| cutting.side))
+        .map(|contour| job.cutting_of(contour).map_or(Side::On, |cutting| cutting.side))
         .collect();
     if job.keeps_to_waste() {
         for (contour, side) in contours.iter().zip(&mut asked) {
@@ -43,16 +43,19 @@ pub(super) fn sides(job: &Job, prepared: &Prepared) -> Result<Sides, Error> {
         }
     }
     let region = region(contours, &asked)?;
-    if region != check::Side::On && !job.keeps_to_waste() {
-        can_be_judged(job, prepared)?;
+    let mut beside = contours.iter().zip(&asked).filter(|(_, side)| **side != Side::On);
+    if !job.keeps_to_waste() {
+        beside.try_for_each(|(contour, _)| can_be_judged(job, contour, prepared))?;
     }
     let each = asked.iter().map(|&side| for_route(side, region)).collect();
     Ok(Sides { each, region, notes })
 }
 
 /// A cutter that may be off by its own radius has no side.
-fn can_be_judged(job: &Job, prepared: &Prepared) -> Result<(), Error> {
-    let (tolerance, distance) = (prepared.tolerance.mm(), job.cutter_mm / 2.0 + job.allowance_mm);
+fn can_be_judged(job: &Job, contour: &Contour, prepared: &Prepared) -> Result<(), Error> {
+    let cutting = job.cutting_for(contour);
+    let radius = job.cutters[cutting.cutter].diameter_mm / 2.0;
+    let (tolerance, distance) = (prepared.tolerance.mm(), radius + cutting.allowance_mm);
     if tolerance < distance {
         return Ok(());
     }

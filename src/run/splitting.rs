@@ -2,14 +2,19 @@
 
 use super::{Part, checking, read_back};
 use crate::error::{Error, Kind};
-use crate::gcode::{self, Header, Program, write_parts};
+use crate::gcode::{self, Header, Mark, Program, write_parts};
 use crate::job::Job;
+use crate::route::Routing;
 use crate::toolpath::{Move, Toolpath};
 
 /// Lets the cutter go up and down again wherever what is cut in one go is longer than the controller's memory; tells
 /// where.
-pub(super) fn lift(job: &Job, toolpath: &mut Toolpath, header: &mut Header) -> Result<Option<String>, Error> {
-    let lifts = gcode::lift(toolpath, header, &job.machine)?;
+pub(super) fn lift(job: &Job, routing: &mut Routing, header: &mut Header) -> Result<Option<String>, Error> {
+    // The places where cuts begin move on with the moves.
+    let mark = |&before: &usize| Mark { before, text: String::new() };
+    header.marks = routing.safe_starts.iter().map(mark).collect();
+    let lifts = gcode::lift(&mut routing.toolpath, header, &job.machine)?;
+    routing.safe_starts = header.marks.drain(..).map(|mark| mark.before).collect();
     let Some(first) = lifts.first() else { return Ok(None) };
     let unit = job.machine.unit;
     Ok(Some(format!(
@@ -40,7 +45,7 @@ pub(super) fn parts(
     for written in write_parts(toolpath, header, &job.machine)? {
         let program = read_back(&written.text, &job.machine)?;
         checking::hold(&check(&program))?;
-        parts.push(Part { text: written.text, program });
+        parts.push(Part { text: written.text, lines: written.lines, moves: written.moves, program });
     }
     let together = parts.iter().flat_map(|part| cuts(&part.program));
     if cuts(program).eq(together) {

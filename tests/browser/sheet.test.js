@@ -64,9 +64,11 @@ test("the sheet says what the report and the program say", async () => {
   const all = flat(await page.textContent(".sheet"));
   for (const { name, state } of check.claims) if (state === "holds") assert.ok(all.includes(name), name);
   for (const open of check.not_checked) assert.ok(all.includes(open), open);
-  // Places to take it up again are lines that travel to where they say.
-  const lines = [...all.matchAll(/line (\d+), which travels to X (-?[\d.]+) mm, Y (-?[\d.]+) mm/g)];
-  assert.equal(lines.length, template.report.contours.length - 1);
+  // Places to take it up again are those of the report; a cut begins with a rapid to where it says.
+  const restarts = template.report.program.restarts;
+  const lines = [...all.matchAll(/cut \d+: line (\d+), from X (-?[\d.]+) mm, Y (-?[\d.]+) mm/g)];
+  const begun = restarts.slice(0, 14).filter(place => place.below_mm === null);
+  assert.deepEqual(lines.map(line => Number(line[1])), begun.map(place => place.line));
   for (const [, line, x, y] of lines) {
     const move = read(template.program).find(m => m.line === Number(line));
     assert.equal(move.mode, 0);

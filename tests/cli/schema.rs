@@ -29,8 +29,13 @@ fn reports_keep_to_the_schema_and_broken_ones_do_not() {
     let shop = Shop::new();
     for machine in ["shop-router", "inch-gantry"] {
         let typed = ["post", "square.csv", "--drawing-unit", "mm", "--depth", "3mm", "--machine", machine];
-        let ended =
-            shop.run(&[&typed[..], &["--report", "report.json", "-o", "out.nc", "--overwrite"]].concat());
+        let ended = shop.run(
+            &[
+                &typed[..],
+                &["--report", "report.json", "-o", "out.nc", "--overwrite", "--air-cut", "--frame"],
+            ]
+            .concat(),
+        );
         assert_eq!(ended.status, 0, "{}", ended.err);
         let report: Value = serde_json::from_str(&shop.text("report.json")).expect("JSON");
         assert!(

@@ -31,6 +31,17 @@ fn a_ramped_slot_as_a_whole() {
 }
 
 #[test]
+fn a_drilled_plate_as_a_whole() {
+    let shop = Shop::new();
+    let holes = [(10, 10), (50, 10), (10, 30)].map(|(x, y)| format!("<circle cx='{x}' cy='{y}' r='3'/>"));
+    let head = "<svg xmlns='http://www.w3.org/2000/svg' width='60mm' height='40mm' viewBox='0 0 60 40'>";
+    shop.put("drilled.svg", &format!("{head}<path d='M0 0H60V40H0Z'/>{}</svg>", holes.concat()));
+    let (program, _) = shop
+        .done("drilled.svg --side auto --thickness 6mm --through --held tape --cutter 6mm --entry plunge");
+    assert_snapshot!(program);
+}
+
+#[test]
 fn the_summary_tells_the_side_and_what_stays_uncut() {
     let shop = Shop::new();
     let ended = shop.post("bracket.csv --side outside --thickness 6mm --through --tabs 2");

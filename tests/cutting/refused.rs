@@ -2,13 +2,16 @@
 
 use crate::shop::Shop;
 
-const REFUSED: [(&str, i32); 26] = [
+const REFUSED: [(&str, i32); 29] = [
     ("plate.svg --side auto --thickness 6mm --through", 1),
     ("bracket.csv --thickness 6mm --through", 1),
     ("bracket.csv --side outside --thickness 6mm --through --tabs 2 --tab-height 6mm", 1),
     ("bracket.csv --side outside --thickness 6mm --through --tabs 40", 1),
     ("bracket.csv --side outside --thickness 6mm --through --tabs 2 --tab-length 90mm", 1),
     ("bracket.csv --side outside --depth 60mm", 1),
+    ("bracket.csv --side outside --thickness 22mm --through --held tape", 1),
+    ("bracket.csv --side outside --thickness 12mm --through --held tape --cutter 3.175mm", 1),
+    ("bracket.csv --side outside --depth 13mm --cutter 1/8in", 1),
     ("bracket.csv --side outside --thickness 6mm --depth 7mm --held tape", 1),
     ("bracket.csv --side outside --thickness 6mm --skin 7mm", 1),
     ("bracket.csv --side inside --depth 3mm --cutter 50mm", 1),
@@ -22,7 +25,7 @@ const REFUSED: [(&str, i32); 26] = [
     ("bracket.csv --side outside --depth 3mm --tab-height 2mm", 2),
     ("bracket.csv --depth 3mm --leave 0.5mm", 2),
     ("bracket.csv --depth 3mm --allowance 0.5mm", 2),
-    ("bracket.csv --side outside --depth 3mm --allowance=-3mm", 2),
+    ("bracket.csv --side outside --depth 3mm --allowance=-3mm", 1),
     ("bracket.csv --thickness 6mm --depth 3mm --through", 2),
     ("bracket.csv --depth 3mm --copies 30x1 --gap 12mm", 1),
     ("bracket.csv --side outside --depth 3mm --copies 2x1 --gap 5mm", 1),

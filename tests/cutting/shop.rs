@@ -40,6 +40,10 @@ impl Shop {
         fs::read_to_string(self.0.path().join(name)).expect(name)
     }
 
+    pub(crate) fn path(&self, name: &str) -> std::path::PathBuf {
+        self.0.path().join(name)
+    }
+
     pub(crate) fn exists(&self, name: &str) -> bool {
         self.0.path().join(name).exists()
     }

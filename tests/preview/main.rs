@@ -35,12 +35,12 @@ impl Made {
         let file = JobFile::parse("job.toml", &format!("drawing-unit = \"mm\"\n{settings}"));
         let job = Job::new(&Settings::default(), &file.expect("a job file")).expect("a job");
         let plan = run::plan(&job, Source { name, bytes: drawing }, &Unwatched).expect("a plan");
-        let report = run::report(&job, &plan, name, "part.nc");
+        let report = run::reports(&job, &plan, name, "part.nc").remove(0);
         Self { job, plan, report }
     }
 
     /// What its pictures show.
     pub(crate) fn scene(&self) -> ribband::preview::Scene<'_> {
-        run::scene(&self.job, &self.plan, &self.report)
+        run::scenes(&self.job, &self.plan, std::slice::from_ref(&self.report)).remove(0)
     }
 }

@@ -51,7 +51,7 @@ fn figures_equal_the_reports() {
 fn data_are_the_programs_as_read_back() {
     let made = Made::demo("paddle-blade.svg");
     let data = data(&page(&made.scene()).expect("a page"));
-    let moves = &made.plan.program.toolpath.moves;
+    let moves = &made.plan.programs[0].program.toolpath.moves;
     let column = |name: &str| data[name].as_array().expect("a list").clone();
     let pairs: [(&str, Vec<f64>); 5] = [
         ("x", moves.iter().map(|m| m.to.xy.x).collect()),
@@ -66,7 +66,7 @@ fn data_are_the_programs_as_read_back() {
         let off = shown.iter().zip(&expected).map(|(s, e)| (s.as_f64().expect("a number") - e).abs());
         assert!(off.fold(0.0, f64::max) <= 0.005, "{name}");
     }
-    assert_eq!(data["program"].as_str(), Some(made.plan.text.as_str()));
+    assert_eq!(data["program"].as_str(), Some(made.plan.programs[0].text.as_str()));
     let ended = column("ended").last().and_then(Value::as_f64).expect("a time");
     assert!((ended - made.report.program.time_s).abs() <= 0.001, "{ended}");
 }

@@ -21,7 +21,7 @@ fn stock_and_clamps_are_drawn_where_they_lie_and_told_in_words() {
     let made = Made::with("slot.csv", SLOT.as_bytes(), SET_UP);
     let scene = made.scene();
     let page = page(&scene).expect("a page");
-    let sheet = setup_sheet(&scene);
+    let sheet = setup_sheet(std::slice::from_ref(&scene));
     // Y points down on the page.
     let stock = "d=\"M0 0L300 0L300 -80L0 -80L0 0\"";
     let clamp = "M0 -30L20 -30L20 -50L0 -50L0 -30";
@@ -79,7 +79,7 @@ fn the_pace_within_a_move_is_the_planned_one() {
     let page = page(&made.scene()).expect("a page");
     let (_, rest) = page.split_once("id=\"data\">").expect("the data");
     let data: Value = serde_json::from_str(rest.split_once("</script>").expect("its end").0).expect("JSON");
-    let moves = &made.plan.program.toolpath.moves;
+    let moves = &made.plan.programs[0].program.toolpath.moves;
     let long = moves.iter().position(|m| !m.is_rapid() && m.span().length() > 199.0).expect("the slot");
     let pace: Vec<f64> = data["paces"][long.to_string()]
         .as_array()

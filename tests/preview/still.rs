@@ -54,7 +54,7 @@ fn the_cutters_path_is_the_programs() {
         .filter(|(letter, _)| matches!(letter, 'L' | 'A'))
         .map(|(_, numbers)| numbers[numbers.len() - 2..].to_vec())
         .collect();
-    let cut = made.plan.program.toolpath.moves.iter();
+    let cut = made.plan.programs[0].program.toolpath.moves.iter();
     let cut: Vec<_> = cut.filter(|m| !m.is_rapid() && m.from.z.min(m.to.z) < 0.0).collect();
     // What lies below an earlier pass is not drawn again.
     assert!(drawn.len() > 30 && drawn.len() < cut.len(), "{} of {}", drawn.len(), cut.len());
@@ -70,7 +70,7 @@ fn the_cutters_path_is_the_programs() {
 #[test]
 fn no_colour_says_more_than_the_tolerance_where_the_check_holds() {
     let made = Made::demo("template.csv");
-    assert!(made.plan.verdict.holds);
+    assert!(made.plan.programs[0].verdict.holds);
     let text = still(&made.scene());
     let svg = Document::parse(&text).expect("well-formed XML");
     let classes: Vec<_> =

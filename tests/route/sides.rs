@@ -198,20 +198,20 @@ fn what_has_no_side_or_no_room_is_refused() {
 
 #[test]
 fn each_cutter_gets_a_program_and_the_freeing_cut_is_in_the_last() {
-    let with = |id, (x, y), size, cutter_mm| {
+    let with = |id, (x, y), size, cutter| {
         let r = rectangle(id, (x, y), (size, size));
-        Routed { cut: Cut { cutter_mm, ..cut() }, ..r }
+        Routed { cut: Cut { cutter, ..cut() }, ..r }
     };
     let ids = |contours: &[Routed]| {
         let programs = by_cutter(contours);
         programs.iter().map(|p| p.iter().map(|c| c.id).collect::<Vec<_>>()).collect::<Vec<_>>()
     };
-    let outer = with(1, (0.0, 0.0), 100.0, 6.0);
-    let hole = with(2, (10.0, 10.0), 20.0, 3.0);
-    let pocket = with(3, (50.0, 10.0), 20.0, 6.0);
+    let outer = with(1, (0.0, 0.0), 100.0, 0);
+    let hole = with(2, (10.0, 10.0), 20.0, 1);
+    let pocket = with(3, (50.0, 10.0), 20.0, 0);
     assert_eq!(ids(&[outer.clone(), hole, pocket]), vec![vec![2], vec![1, 3]]);
     // An island by the large cutter in a hole by the small one, in a plate by the large one: three programs.
-    let hole = with(2, (10.0, 10.0), 60.0, 3.0);
-    let island = with(3, (20.0, 20.0), 30.0, 6.0);
+    let hole = with(2, (10.0, 10.0), 60.0, 1);
+    let island = with(3, (20.0, 20.0), 30.0, 0);
     assert_eq!(ids(&[outer, hole, island]), vec![vec![3], vec![2], vec![1]]);
 }

@@ -34,6 +34,23 @@ use pen::Pen;
 /// is not above zero, an arc or a descent below the clearance height by rapid, or a line too long for the
 /// controller.
 pub fn write(toolpath: &Toolpath, header: &Header, machine: &Machine) -> Result<String, Error> {
+    write_lines(toolpath, header, machine).map(|written| written.text)
+}
+
+/// A program's text, and where in it each move of the toolpath begins.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Written {
+    /// The text.
+    pub text: String,
+    /// The line, from 1, of each move's first block; of the block after it, where rounding leaves none of the move.
+    pub lines: Vec<usize>,
+}
+
+/// Like [`write()`], with the lines of the moves.
+///
+/// # Errors
+/// Those of [`write()`].
+pub fn write_lines(toolpath: &Toolpath, header: &Header, machine: &Machine) -> Result<Written, Error> {
     sound(toolpath, header)?;
     let mut pen = Pen::new(&machine.program);
     pen.percent();
@@ -46,10 +63,10 @@ pub fn write(toolpath: &Toolpath, header: &Header, machine: &Machine) -> Result<
     for i in 0..toolpath.moves.len() {
         motion.follow(&toolpath.moves, i)?;
     }
-    let mut pen = motion.stop();
+    let (mut pen, lines) = motion.stop();
     machine.program.end.iter().for_each(|line| pen.line(line));
     pen.percent();
-    pen.finish()
+    Ok(Written { text: pen.finish()?, lines })
 }
 
 /// Refuses what cannot be written at all.

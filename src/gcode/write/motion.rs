@@ -33,6 +33,8 @@ pub(super) struct Motion<'a> {
     /// Moves of the toolpath that the blocks already cover.
     covered: usize,
     blocks: Vec<Block>,
+    /// The line of each move's first block.
+    lines: Vec<usize>,
 }
 
 impl<'a> Motion<'a> {
@@ -54,6 +56,7 @@ impl<'a> Motion<'a> {
             rpm: 0,
             covered: 0,
             blocks: Vec::new(),
+            lines: Vec::new(),
         }
     }
 
@@ -79,6 +82,7 @@ impl<'a> Motion<'a> {
     /// The blocks of move `i`.
     pub(super) fn follow(&mut self, moves: &[Move], i: usize) -> Result<(), Error> {
         if i < self.covered {
+            self.lines.push(self.pen.next_line() - 1);
             return Ok(());
         }
         while let Some(mark) = self.marks.next_if(|mark| mark.before <= i) {
@@ -91,6 +95,7 @@ impl<'a> Motion<'a> {
             return Err(Error::new(Kind::Refused, what));
         }
         self.spindle(m.spindle_rpm.round() as i64);
+        self.lines.push(self.pen.next_line());
         let Some(feed) = m.feed else { return self.rapid(m) };
         if let Some(curve) = self.curves.next_if(|curve| curve.moves.start == i) {
             self.covered = curve.moves.end;
@@ -113,15 +118,15 @@ impl<'a> Motion<'a> {
         done
     }
 
-    /// Clear of the work, spindle off.
-    pub(super) fn stop(mut self) -> Pen<'a> {
+    /// Clear of the work, spindle off; the page, and the lines of the moves.
+    pub(super) fn stop(mut self) -> (Pen<'a>, Vec<usize>) {
         if self.at.z < self.clearance {
             self.up(self.clearance);
         }
         machine_retract(&mut self.pen, self.machine, self.grid);
         self.spindle(0);
         park(&mut self.pen, self.machine, self.grid);
-        self.pen
+        (self.pen, self.lines)
     }
 
     /// What the feed along the path is multiplied by to give the feed that the controller wants to be told.

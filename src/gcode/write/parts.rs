@@ -6,7 +6,7 @@ use std::ops::Range;
 use super::decimal::Grid;
 use super::header::{Curve, Header, Mark};
 use super::lift::ends_lift;
-use super::write;
+use super::{Written, write_lines};
 use crate::error::{Error, Kind};
 use crate::machine::Machine;
 use crate::toolpath::Toolpath;
@@ -16,6 +16,8 @@ use crate::toolpath::Toolpath;
 pub struct Part {
     /// Its text.
     pub text: String,
+    /// The line, from 1, of each of its moves' first block.
+    pub lines: Vec<usize>,
     /// The moves of the toolpath that it makes.
     pub moves: Range<usize>,
 }
@@ -27,17 +29,17 @@ pub struct Part {
 /// # Errors
 /// Those of [`write()`]; and [`Kind::Refused`] when what lies between two retracts is longer than the memory.
 pub fn write_parts(toolpath: &Toolpath, header: &Header, machine: &Machine) -> Result<Vec<Part>, Error> {
-    let whole = write(toolpath, header, machine)?;
+    let Written { text: whole, lines } = write_lines(toolpath, header, machine)?;
     let memory = machine.controller.memory_bytes.map_or(usize::MAX, |bytes| bytes as usize);
     if whole.len() <= memory {
-        return Ok(vec![Part { text: whole, moves: 0..toolpath.moves.len() }]);
+        return Ok(vec![Part { text: whole, lines, moves: 0..toolpath.moves.len() }]);
     }
     let cutter = Cutter { toolpath, header, machine, memory };
     let ranges = cutter.ranges()?;
     let of = ranges.len();
     let write_part = |(k, moves): (usize, Range<usize>)| {
-        let text = cutter.part(moves.clone(), &format!("part {} of {of}", k + 1))?;
-        if text.len() > memory { Err(cutter.too_long(moves.start)) } else { Ok(Part { text, moves }) }
+        let Written { text, lines } = cutter.part(moves.clone(), &format!("part {} of {of}", k + 1))?;
+        if text.len() > memory { Err(cutter.too_long(moves.start)) } else { Ok(Part { text, lines, moves }) }
     };
     ranges.into_iter().enumerate().map(write_part).collect()
 }
@@ -91,7 +93,7 @@ impl Cutter<'_> {
     fn furthest(&self, start: usize, places: &[usize]) -> Option<usize> {
         let fits = |end: &usize| {
             let text = self.part(start..*end, "part 000 of 000");
-            text.is_ok_and(|text| text.len() <= self.memory)
+            text.is_ok_and(|written| written.text.len() <= self.memory)
         };
         let mut bound = 1;
         while bound < places.len() && fits(&places[bound - 1]) {
@@ -104,17 +106,17 @@ impl Cutter<'_> {
     /// True when `part`, whose first move is move `start` of the toolpath, fits the memory.
     pub(super) fn fits(&self, part: &Toolpath, start: usize) -> bool {
         let text = self.text(part, start, "part 000 of 000");
-        text.is_ok_and(|text| text.len() <= self.memory)
+        text.is_ok_and(|written| written.text.len() <= self.memory)
     }
 
     /// The program of some of the moves.
-    fn part(&self, moves: Range<usize>, name: &str) -> Result<String, Error> {
+    fn part(&self, moves: Range<usize>, name: &str) -> Result<Written, Error> {
         let start = moves.start;
         self.text(&Toolpath { moves: self.toolpath.moves[moves].to_vec() }, start, name)
     }
 
     /// The program of `part`, whose first move is move `start` of the toolpath.
-    fn text(&self, part: &Toolpath, start: usize, name: &str) -> Result<String, Error> {
+    fn text(&self, part: &Toolpath, start: usize, name: &str) -> Result<Written, Error> {
         let moves = start..start + part.moves.len();
         let marks = self.header.marks.iter().filter(|mark| moves.contains(&mark.before));
         let marks = marks.map(|mark| Mark { before: mark.before - moves.start, text: mark.text.clone() });
@@ -128,7 +130,7 @@ impl Cutter<'_> {
         header.marks = marks.collect();
         header.curves = curves.collect();
         header.title = format!("{}, {name}", header.title);
-        write(part, &header, self.machine)
+        write_lines(part, &header, self.machine)
     }
 
     /// The refusal of the moves from `start` on, up to the next retract.

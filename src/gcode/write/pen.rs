@@ -38,6 +38,11 @@ impl<'a> Pen<'a> {
         decimal::push(&mut self.text, count, decimals);
     }
 
+    /// The number, from 1, of the line that is written next.
+    pub(super) fn next_line(&self) -> usize {
+        self.lines + 1
+    }
+
     /// Words as they are.
     pub(super) fn words(&mut self, words: &str) {
         self.start_word();
