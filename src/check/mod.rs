@@ -9,6 +9,7 @@ mod dry;
 mod motion;
 mod place;
 mod region;
+mod relief;
 mod rings;
 mod shape;
 mod side;
@@ -25,6 +26,7 @@ use crate::num::{Deviation, Tolerance};
 use crate::sketch::Sketch;
 
 use place::Placed;
+use side::Beside;
 
 pub use claim::{Claim, Spot, State};
 pub use dry::{around, check_dry, check_resumed, raised};
@@ -42,6 +44,8 @@ pub struct Asked {
     /// The ids of the contours that the program must cut, where others are left to other programs: off those it must
     /// keep all the same. `None` for all.
     pub only: Option<BTreeSet<usize>>,
+    /// The ids of contours whose inside corners the cutter may relieve: go straight into, as far as the corner itself.
+    pub relieved: BTreeSet<usize>,
     /// How much further than its radius the cutter's centre keeps from the edge; negative for a looser fit.
     pub allowance: f64,
     /// True when the cut beside the edge is never on the side that is kept, and within the tolerance on the other.
@@ -104,6 +108,27 @@ pub struct Uncut {
     pub gap: f64,
 }
 
+/// An inside corner that the cutter goes into, so that a sharp one seats there.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Relieved {
+    /// The corner, in the program's coordinates.
+    pub at: Point,
+    /// How far the cut goes into the sides beside it, in mm.
+    pub into: f64,
+}
+
+impl Relieved {
+    /// All of them in one sentence; `None` where there are none.
+    pub fn told(all: &[Self]) -> Option<String> {
+        let deepest = all.iter().map(|relieved| relieved.into).reduce(f64::max)?;
+        let corners = if all.len() == 1 { "inside corner" } else { "inside corners" };
+        Some(format!(
+            "relief cuts in {} {corners}, up to {deepest:.2} mm into the sides beside them",
+            all.len()
+        ))
+    }
+}
+
 /// The largest feeds that were asked for, in mm/min.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Feeds {
@@ -152,6 +177,7 @@ impl Asked {
             side: Side::On,
             on_line: BTreeSet::new(),
             only: None,
+            relieved: BTreeSet::new(),
             allowance: 0.0,
             waste: false,
             allowance_of_contour: BTreeMap::new(),
@@ -184,6 +210,8 @@ pub struct Verdict {
     pub claims: Vec<Claim>,
     /// What the cutter cannot reach, by contour.
     pub uncut: Vec<Uncut>,
+    /// The inside corners that are relieved.
+    pub relieved: Vec<Relieved>,
     /// What no program can check, and what was taken for granted, one sentence each.
     pub not_checked: Vec<String>,
 }
@@ -195,10 +223,11 @@ pub struct Verdict {
 pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Asked) -> Verdict {
     let cuts = cuts::Cuts::of(program, asked.stock_top);
     let placed = Placed::new(sketch, &asked.layout, asked.drawing_at, &cuts);
-    let (shape, uncut) = match asked.side {
+    let Beside { shape, uncut, relieved } = match asked.side {
         Side::On => {
             let wanted = placed.contours.iter().filter(|drawn| asked.wants(drawn.id)).cloned().collect();
-            (shape::judge(&cuts, wanted, true, machine, asked).0, Vec::new())
+            let shape = shape::judge(&cuts, wanted, true, machine, asked).0;
+            Beside { shape, uncut: Vec::new(), relieved: Vec::new() }
         }
         side => side::judge(&cuts, &placed, side, machine, asked),
     };
@@ -216,7 +245,7 @@ pub fn check(program: &Program, sketch: &Sketch, machine: &Machine, asked: &Aske
     }
     let in_drawing = |u: Uncut| Uncut { at: placed.in_drawing(u.copy, u.at), ..u };
     let uncut = uncut.into_iter().map(in_drawing).collect();
-    Verdict { holds, deviation: shape.deviation, claims, uncut, not_checked }
+    Verdict { holds, deviation: shape.deviation, claims, uncut, relieved, not_checked }
 }
 
 /// Checks what holds of a program whatever it cuts: its moves, its start and its end. For a part of a longer program.

@@ -35,10 +35,13 @@ impl Region {
     /// The distance from `p` to the border, less what the cutter keeps off it further than usual; infinite when there
     /// is no border.
     pub(super) fn distance(&self, p: Point) -> f64 {
-        let to = |(extra, index): &(f64, SpanIndex)| {
-            index.nearest(p).map_or(f64::INFINITY, |(_, span)| span.nearest(p).distance - extra)
-        };
+        let to = |(extra, index): &(f64, SpanIndex)| index.distance(p) - extra;
         self.by_extra.iter().map(to).fold(f64::INFINITY, f64::min)
+    }
+
+    /// The place in the order given of the span nearest to `p`; `None` when there is none.
+    pub(super) fn nearest(&self, p: Point) -> Option<usize> {
+        self.index.nearest(p).map(|(k, _)| k)
     }
 
     /// True when a ray from `p` crosses the border an odd number of times.

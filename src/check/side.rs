@@ -14,9 +14,10 @@ use super::claim::{Claim, Spot, State, Worst};
 use super::cuts::{Cuts, Pass};
 use super::place::{Drawn, Placed};
 use super::region::Region;
+use super::relief::{Corners, Relief};
 use super::rings::in_rings;
 use super::shape::{self, Shape};
-use super::{Asked, Side, Uncut, steps};
+use super::{Asked, Relieved, Side, Uncut, steps};
 use crate::geom::{ArcSpline, Span, SpanIndex};
 use crate::machine::Machine;
 use crate::num::Deviation;
@@ -31,19 +32,21 @@ const PASSES: &str = "no pass is deeper than asked";
 /// How many directions the touching disc is tried in at a corner.
 const DIRECTIONS: usize = 9;
 
+/// What came of judging the cuts beside the line.
+pub(super) struct Beside {
+    pub(super) shape: Shape,
+    pub(super) uncut: Vec<Uncut>,
+    pub(super) relieved: Vec<Relieved>,
+}
+
 /// Judges the cuts beside the closed contours; open ones are cut on the line.
-pub(super) fn judge(
-    cuts: &Cuts,
-    placed: &Placed,
-    side: Side,
-    machine: &Machine,
-    asked: &Asked,
-) -> (Shape, Vec<Uncut>) {
+pub(super) fn judge(cuts: &Cuts, placed: &Placed, side: Side, machine: &Machine, asked: &Asked) -> Beside {
     let band = Band::of(cuts, machine, asked);
     if band.tolerance >= band.radius {
         let claims = vec![Claim::open(CLEARANCE, "a side needs a cutter larger than the tolerance")];
         let claims = claims.into_iter().map(|claim| Claim { state: State::Fails, ..claim }).collect();
-        return (Shape { deviation: None, claims }, Vec::new());
+        let shape = Shape { deviation: None, claims };
+        return Beside { shape, uncut: Vec::new(), relieved: Vec::new() };
     }
     let (closed, mut open) = bordering(placed, asked);
     open.retain(|drawn| asked.wants(drawn.id));
@@ -62,11 +65,14 @@ pub(super) fn judge(
         }
     };
     let judge = Judge::new(closed, band, side, asked);
-    let mut clearance = judge.clearance(&beside, &ways_down);
+    let corners = Corners { judge: &judge, asked: &asked.relieved, rounding: 2.0 * machine.last_place() };
+    let reliefs = corners.reliefs(&in_order(&beside, &ways_down));
+    let mut clearance = judge.clearance((&beside, &ways_down), &corners, &reliefs);
     let (mut coverage, uncut) = judge.coverage(&beside, &ways_down, (machine, asked));
     clearance.value += cuts.unsure;
     coverage.value += cuts.unsure;
-    let mut claims = vec![judge.clearance_claim(clearance), judge.coverage_claim(coverage)];
+    let relieved = corners.told(&reliefs);
+    let mut claims = vec![judge.clearance_claim(clearance, &relieved), judge.coverage_claim(coverage)];
     claims.push(judge.touch_claim(&beside));
     let wanted: Vec<Owner> = judge.owners.iter().copied().filter(|owner| asked.wants(owner.id)).collect();
     claims.push(depth_claim(&beside, machine, asked, &wanted));
@@ -75,7 +81,7 @@ pub(super) fn judge(
     let on_line = shape.as_ref().and_then(|shape| shape.deviation);
     let worst = [deviation, on_line].into_iter().flatten().reduce(|a, b| if b.mm > a.mm { b } else { a });
     claims.extend(shape.map_or_else(Vec::new, |shape| shape.claims));
-    (Shape { deviation: worst, claims }, uncut)
+    Beside { shape: Shape { deviation: worst, claims }, uncut, relieved }
 }
 
 /// The contours that bound the region, closed or drawn in pieces, and the open ones, which are cut on the line.
@@ -117,17 +123,18 @@ impl Band {
     }
 }
 
-struct Judge {
+/// The region with the cutter that keeps to one side of it.
+pub(super) struct Judge {
     /// The contour, and its copy, of each span of the region's border.
     owners: Vec<Owner>,
-    region: Region,
+    pub(super) region: Region,
     band: Band,
     /// How much further than usual the cutter keeps off each of these spans.
     extra: Vec<f64>,
-    radius: f64,
-    tolerance: f64,
+    pub(super) radius: f64,
+    pub(super) tolerance: f64,
     /// How much further the passes run that leave something for a last one.
-    leave: f64,
+    pub(super) leave: f64,
     side: Side,
 }
 
@@ -166,23 +173,39 @@ impl Judge {
         }
     }
 
+    /// The least distance that the cutter's centre may have from the border.
+    pub(super) fn closest(&self) -> f64 {
+        self.radius - self.tolerance
+    }
+
+    /// The id of the contour that is nearest to a place.
+    pub(super) fn contour_near(&self, place: Point) -> Option<usize> {
+        self.region.nearest(place).map(|k| self.owners[k].id)
+    }
+
     /// Half the length of pieces that are short enough to report their distance.
-    fn fine(&self) -> f64 {
+    pub(super) fn fine(&self) -> f64 {
         self.tolerance / 8.0
     }
 
     /// Half the length of pieces that are not cut further even where the verdict hangs on it.
-    fn finest(&self) -> f64 {
+    pub(super) fn finest(&self) -> f64 {
         self.tolerance / 500.0
     }
 
     /// True for places where the cutter's centre may be, as far as the side goes.
-    fn is_free(&self, p: Point) -> bool {
+    pub(super) fn is_free(&self, p: Point) -> bool {
         self.region.contains(p) == (self.side == Side::Inside)
     }
 
-    /// The least distance of the cutter's centre from the border, turned in sign; negative of zero on the wrong side.
-    fn clearance(&self, beside: &[&Pass], ways_down: &[&Move]) -> Worst {
+    /// The least distance of the cutter's centre from the border, reliefs left out, turned in sign; negative of zero on
+    /// the wrong side.
+    fn clearance(
+        &self,
+        (beside, ways_down): (&[&Pass], &[&Move]),
+        corners: &Corners,
+        reliefs: &[Relief],
+    ) -> Worst {
         let mut worst = Worst::none();
         let mut seen = HashSet::new();
         for pass in beside {
@@ -191,33 +214,26 @@ impl Judge {
             if !self.is_free(start.from.xy) {
                 worst.note(0.0, || Spot::on(start, start.from.xy));
             }
-            for m in &pass.moves {
-                self.note_clearance(m, &mut seen, &mut worst);
-            }
         }
-        for m in ways_down {
-            if !self.is_free(m.to.xy) {
-                worst.note(0.0, || Spot::end_of(m));
+        for m in ways_down.iter().filter(|m| !self.is_free(m.to.xy)) {
+            worst.note(0.0, || Spot::end_of(m));
+        }
+        for m in beside.iter().flat_map(|pass| &pass.moves).chain(ways_down) {
+            let Some(span) = corners.beside(reliefs, m.span()) else { continue };
+            let numbers = [span.start.x, span.start.y, span.end.x, span.end.y, span.bulge];
+            // The same way in every pass is judged once.
+            if seen.insert(numbers.map(f64::to_bits)) {
+                let (least, at) = self.least_distance(span);
+                worst.note(-least, || Spot::on(m, at));
             }
-            self.note_clearance(m, &mut seen, &mut worst);
         }
         worst
-    }
-
-    fn note_clearance(&self, m: &Move, seen: &mut HashSet<[u64; 5]>, worst: &mut Worst) {
-        let span = m.span();
-        let numbers = [span.start.x, span.start.y, span.end.x, span.end.y, span.bulge];
-        // The same way in every pass is judged once.
-        if seen.insert(numbers.map(f64::to_bits)) {
-            let (least, at) = self.least_distance(span);
-            worst.note(-least, || Spot::on(m, at));
-        }
     }
 
     /// A lower bound of the distance of a span from the border, with its place: exact enough to tell whether it is
     /// below what is allowed.
     fn least_distance(&self, span: Span) -> (f64, Point) {
-        let limit = self.radius - self.tolerance;
+        let limit = self.closest();
         let mut least = (f64::INFINITY, span.start);
         let mut pieces = vec![span];
         while let Some(piece) = pieces.pop() {
@@ -275,8 +291,7 @@ impl Judge {
         let mut pieces = vec![piece.span];
         while let Some(part) = pieces.pop() {
             let middle = part.at(0.5);
-            let near = path.nearest(middle).map_or(f64::INFINITY, |(_, span)| span.nearest(middle).distance);
-            let here = near - piece.extra;
+            let here = path.distance(middle) - piece.extra;
             let half = part.length() / 2.0;
             let bound = here + half;
             if bound <= self.radius.max(worst.value) {
@@ -299,8 +314,7 @@ impl Judge {
     fn cover_corner(&self, k: usize, path: &SpanIndex, worst: &mut Worst) {
         let spans = self.region.spans();
         let corner = spans[k].start;
-        let near = path.nearest(corner).map_or(f64::INFINITY, |(_, span)| span.nearest(corner).distance);
-        let here = near - self.extra[k];
+        let here = path.distance(corner) - self.extra[k];
         if here <= self.radius + self.tolerance {
             return;
         }
@@ -354,9 +368,10 @@ impl Judge {
         false
     }
 
-    fn clearance_claim(&self, clearance: Worst) -> Claim {
+    fn clearance_claim(&self, clearance: Worst, relieved: &[Relieved]) -> Claim {
         let claim = Claim::at_least(CLEARANCE, "mm", clearance, self.radius - self.band.allowed, 0.0);
-        claim.because("the cutter cuts into the part, or runs on its wrong side")
+        let note = Relieved::told(relieved).map_or(String::new(), |told| format!("left out: {told}"));
+        Claim { note, ..claim }.because("the cutter cuts into the part, or runs on its wrong side")
     }
 
     fn coverage_claim(&self, coverage: Worst) -> Claim {
@@ -420,12 +435,18 @@ fn depth_claim(beside: &[&Pass], machine: &Machine, asked: &Asked, owners: &[Own
 /// The thickest layer that is taken at once.
 fn pass_claim(beside: &[&Pass], ways_down: &[&Move], machine: &Machine, asked: &Asked) -> Claim {
     let Some(limit) = asked.pass else { return Claim::open(PASSES, "no depth of pass was asked for") };
-    let mut moves: Vec<&Move> = beside.iter().flat_map(|pass| pass.moves.iter().copied()).collect();
-    moves.extend(ways_down);
-    moves.sort_by_key(|m| m.line);
+    let moves = in_order(beside, ways_down);
     // A last pass runs so far beside those before it; in a sharp inside corner further, but within the cutter.
     let beside_rough = (4.0 * asked.leave).min(asked.cutter / 2.0);
     let step = steps::deepest(moves.into_iter(), asked.stock_top, asked.tolerance.mm() + beside_rough);
     Claim::at_most(PASSES, "mm", step, limit, 2.0 * machine.last_place())
         .because("a pass takes more than one pass may")
+}
+
+/// All moves in the order of the program.
+fn in_order<'a>(beside: &[&Pass<'a>], ways_down: &[&'a Move]) -> Vec<&'a Move> {
+    let mut moves: Vec<&Move> = beside.iter().flat_map(|pass| pass.moves.iter().copied()).collect();
+    moves.extend(ways_down);
+    moves.sort_by_key(|m| m.line);
+    moves
 }

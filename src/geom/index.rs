@@ -46,6 +46,11 @@ impl SpanIndex {
         self.tree.nearest_neighbor_iter([p.x, p.y]).next().map(|entry| (entry.id, entry.span))
     }
 
+    /// The distance from `p` to the nearest of the spans, in mm; infinite when there are none.
+    pub fn distance(&self, p: Point) -> f64 {
+        self.nearest(p).map_or(f64::INFINITY, |(_, span)| span.nearest(p).distance)
+    }
+
     /// The spans whose upright boxes meet the box from `low` to `high`, in no particular order.
     pub fn meeting(&self, low: Point, high: Point) -> impl Iterator<Item = Span> + '_ {
         let area = AABB::from_corners([low.x, low.y], [high.x, high.y]);

@@ -28,6 +28,9 @@ pub struct CheckArgs {
     /// The side of the contour that must be cut on [default: on]
     #[arg(long, value_enum, help_heading = "Cut")]
     pub side: Option<Side>,
+    /// Inside corners may be cut into up to the corner itself
+    #[arg(long, help_heading = "Cut")]
+    pub corner_relief: bool,
     /// The cutter, where a side is cut or clamps are declared: its diameter, or a name in the machine profile [default: the profile's first]
     #[arg(long, value_name = "DIAMETER or NAME", help_heading = "Cut")]
     pub cutter: Option<String>,
@@ -61,6 +64,8 @@ pub struct CheckJob {
     pub tolerance_side: ToleranceSide,
     /// The side of the contours that must be cut on.
     pub side: Side,
+    /// True when inside corners may be cut into up to the corner itself.
+    pub relief: bool,
     /// The cutter's diameter, where a side is cut or clamps are declared.
     pub cutter_mm: Option<f64>,
     /// Material left on the drawn edge; negative for a looser fit.
@@ -95,6 +100,7 @@ impl CheckJob {
         Ok(Self {
             tolerance_side: typed.tolerance_side.unwrap_or_default(),
             side,
+            relief: typed.corner_relief,
             cutter_mm: cutter.map(|cutter| cutter.diameter_mm),
             allowance_mm: mm.length(&bounds::ALLOWANCE, typed.allowance)?.unwrap_or(0.0),
             drawing: DrawingSettings::new(&typed.drawing, &machine)?,

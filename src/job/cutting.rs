@@ -32,6 +32,8 @@ pub struct Cutting {
     pub corners: Corners,
     /// Material left on the drawn edge, in mm; negative for a looser fit.
     pub allowance_mm: f64,
+    /// True when it goes into inside corners up to the corner itself.
+    pub relief: bool,
     /// What the passes leave for a last one at full depth, in mm.
     pub leave_mm: f64,
     /// Tabs to leave.
@@ -108,6 +110,7 @@ impl Maker<'_> {
             direction: cut.direction.unwrap_or_default(),
             corners: cut.corners.unwrap_or_default(),
             allowance_mm: self.mm.length(&bounds::ALLOWANCE, cut.allowance)?.unwrap_or(0.0),
+            relief: relief(cut)?,
             leave_mm: self.leave(cut)?,
             tabs: self.tabs(cut)?,
             held: cut.held,
@@ -233,6 +236,16 @@ impl Maker<'_> {
         at_most("plunge", plunge, most, "mm/min", "the machine's Z")?;
         Ok(plunge)
     }
+}
+
+/// True when corners are relieved; a cut on the line has none to relieve.
+fn relief(cut: &CutArgs) -> Result<bool, Error> {
+    let relief = cut.corner_relief == Some(true);
+    if relief && cut.side.unwrap_or_default() == Side::On {
+        let what = "--corner-relief cuts into corners that a cutter beside the line does not reach, and the cut is on the line";
+        return Err(Error::new(Kind::Settings, what).remedy("choose a --side, or leave --corner-relief out"));
+    }
+    Ok(relief)
 }
 
 /// A chip on the light side of what the cutter takes, in mm: a quarter of the way up its range.

@@ -22,6 +22,9 @@ pub struct CutArgs {
     /// How the cutter passes corners that jut out towards it [default: round]
     #[arg(long, value_enum, help_heading = "Cut")]
     pub corners: Option<Corners>,
+    /// Cut into inside corners up to the corner itself, so that a sharp one seats there
+    #[arg(long, help_heading = "Cut", num_args = 0, default_missing_value = "true")]
+    pub corner_relief: Option<bool>,
     /// Material to leave for a last pass at full depth [default: none]
     #[arg(long, value_name = "LEN", help_heading = "Cut")]
     pub leave: Option<Length>,
@@ -231,6 +234,7 @@ impl CutArgs {
             side: self.side.or(other.side),
             direction: self.direction.or(other.direction),
             corners: self.corners.or(other.corners),
+            corner_relief: self.corner_relief.or(other.corner_relief),
             leave: self.leave.or(other.leave),
             pass: self.pass.or(other.pass),
             feed: self.feed.or(other.feed),

@@ -42,7 +42,7 @@ impl Region {
 
     /// The distance from `p` to the outline, in mm; infinite when nothing bounds the region.
     pub(super) fn distance(&self, p: Point) -> f64 {
-        distance(&self.outline, p)
+        self.outline.distance(p)
     }
 
     /// True when the outline has a joint within `reach` mm of `p`.
@@ -68,11 +68,6 @@ impl Region {
         }
         Ok(())
     }
-}
-
-/// The distance from `p` to the nearest of the indexed spans, in mm; infinite without any.
-pub(super) fn distance(index: &SpanIndex, p: Point) -> f64 {
-    index.nearest(p).map_or(f64::INFINITY, |(_, span)| span.nearest(p).distance)
 }
 
 /// A box for the index.

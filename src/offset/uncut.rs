@@ -5,7 +5,6 @@ use kurbo::Point;
 use crate::geom::{ArcSpline, SpanIndex};
 
 use super::Compensated;
-use super::region::distance;
 
 /// A stretch of an outline that the cutter does not reach.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -24,7 +23,7 @@ pub struct Uncut {
 /// found to a tolerance of length, in the order of the loops.
 pub fn uncut(loops: &[ArcSpline], compensated: &Compensated, radius: f64, tolerance: f64) -> Vec<Uncut> {
     let lines = SpanIndex::new(compensated.lines.iter().flat_map(|line| line.path.spans()));
-    let gap = |p: Point| distance(&lines, p) - radius;
+    let gap = |p: Point| lines.distance(p) - radius;
     loops.iter().enumerate().flat_map(|(along, chain)| stretches(along, chain, tolerance, &gap)).collect()
 }
 

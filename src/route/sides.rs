@@ -10,8 +10,9 @@ use crate::job::Direction;
 use crate::offset::{self, CentreLine, Compensated, Uncut, compensate};
 
 use super::cut::{Cut, Side};
+use super::relief::Corners;
 use super::setup::refused;
-use super::{Routed, Work, relief, start};
+use super::{Routed, Work, start};
 
 /// A contour as fitted, in the program's coordinates, and how it is cut.
 #[derive(Clone, Debug)]
@@ -114,26 +115,35 @@ impl Group<'_> {
         let loops: Vec<ArcSpline> = self.outlines.iter().map(|o| o.path.clone()).collect();
         for cut in ways {
             let distance = cut.distance();
+            let further = distance + cut.leave_mm;
             let lines = compensate(&loops, distance, self.side, cut.corners)?;
             let rough = match cut.leave_mm > 0.0 {
-                true => compensate(&loops, distance + cut.leave_mm, self.side, cut.corners)?.lines,
-                false => Vec::new(),
+                true => compensate(&loops, further, self.side, cut.corners)?,
+                false => Compensated::default(),
             };
             let ours = |i: usize| self.outlines[i].cut == *cut;
-            let uncut = offset::uncut(&loops, &lines, distance, tolerance);
-            let uncut: Vec<Uncut> = uncut.into_iter().filter(|u| ours(u.along)).collect();
+            let uncut_at = |lines: &Compensated, distance: f64| -> Vec<Uncut> {
+                offset::uncut(&loops, lines, distance, tolerance)
+                    .into_iter()
+                    .filter(|u| ours(u.along))
+                    .collect()
+            };
+            let uncut = uncut_at(&lines, distance);
+            let uncut_by_rough = if cut.relief { uncut_at(&rough, further) } else { Vec::new() };
+            let mut corners = Corners { outlines: all, tolerance, left: Vec::new() };
             self.tell(cut, &lines, sided);
             for line in lines.lines.iter().filter(|line| ours(line.along[0])) {
-                let path = if cut.relief {
-                    relief::relieved(&line.path, &uncut, distance)
-                } else {
-                    line.path.clone()
-                };
-                let rough = rough.iter().filter(|rough| rough.along == line.along);
                 // Where both corners are sharp, the rough one is a diagonal further out.
-                let rough = beside_line(&line.path, rough, cut.leave_mm * SQRT_2 + tolerance);
+                let beside = rough.lines.iter().filter(|rough| rough.along == line.along);
+                let mut rough = beside_line(&line.path, beside, cut.leave_mm * SQRT_2 + tolerance);
+                let mut path = line.path.clone();
+                if cut.relief {
+                    path = corners.relieved(&path, &uncut, distance);
+                    rough = rough.map(|rough| corners.relieved(&rough, &uncut_by_rough, further));
+                }
                 sided.routed.push(self.routed(cut, &path, rough, (line.along[0], all)));
             }
+            sided.notes.extend(corners.told());
             sided.uncut.extend(uncut.into_iter().map(|u| (self.outlines[u.along].id, u)));
         }
         Ok(())
@@ -194,7 +204,7 @@ fn beside_line<'a>(
     reach: f64,
 ) -> Option<ArcSpline> {
     let index = SpanIndex::new(path.spans());
-    let near = |p: Point| index.nearest(p).is_some_and(|(_, span)| span.nearest(p).distance <= reach);
+    let near = |p: Point| index.distance(p) <= reach;
     let mut candidates = rough.filter(|rough| rough.path.vertices.iter().all(|v| near(v.at)));
     let only = candidates.next()?;
     candidates.next().is_none().then(|| only.path.clone())

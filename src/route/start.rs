@@ -46,8 +46,7 @@ fn has_room(span: &Span, lead: Lead, outlines: &SpanIndex, distance: f64) -> boo
     let centre = start + across * lead.radius_mm;
     // Rounding of a place on the line itself, many times over.
     let slack = f64::EPSILON.sqrt() * (distance + start.to_vec2().hypot());
-    let clear =
-        |p: Point| outlines.nearest(p).is_none_or(|(_, near)| near.nearest(p).distance >= distance - slack);
+    let clear = |p: Point| outlines.distance(p) >= distance - slack;
     const SAMPLES: u32 = 16;
     let reach = if lead.whole { std::f64::consts::PI } else { std::f64::consts::FRAC_PI_2 };
     (0..=SAMPLES).all(|k| {

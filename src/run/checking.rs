@@ -90,6 +90,7 @@ fn asked(job: &Job, sketch: &Sketch, tolerance: Tolerance, plan: &Intended) -> A
     Asked {
         side,
         on_line: cuttings().filter(|(_, cutting)| on_line(cutting)).map(|(c, _)| c.id).collect(),
+        relieved: cuttings().filter(|(_, cutting)| cutting.relief).map(|(c, _)| c.id).collect(),
         only: Some(plan.contours.clone()),
         allowance,
         allowance_of_contour: cuttings().map(|(c, cutting)| (c.id, edge(cutting))).collect(),
@@ -179,6 +180,7 @@ fn asked_of_existing(job: &CheckJob, sketch: &Sketch) -> Result<Asked, Error> {
             job::Side::Inside => check::Side::Inside,
             job::Side::Outside | job::Side::Auto => check::Side::Outside,
         },
+        relieved: sketch.contours.iter().filter(|_| job.relief).map(|contour| contour.id).collect(),
         cutter,
         allowance: if waste && job.side == job::Side::On { -cutter / 2.0 } else { job.allowance_mm },
         waste,

@@ -87,6 +87,7 @@ fn cut(job: &Job, cutting: &Cutting) -> Cut {
         corners: cutting.corners,
         allowance_mm: cutting.allowance_mm,
         leave_mm: cutting.leave_mm,
+        relief: cutting.relief,
         entry: cutting.entry,
         direction: cutting.direction,
         tabs: cutting.tabs,

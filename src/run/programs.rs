@@ -11,7 +11,7 @@ use super::placing::Placing;
 use super::prepare::Prepared;
 use super::siding::Sides;
 use super::{curving, cutting, feeding, header, read_back, splitting};
-use crate::check::Verdict;
+use crate::check::{Relieved, Verdict};
 use crate::error::Error;
 use crate::feed::{self, Limits, Times};
 use crate::gcode::{self, Header, Program};
@@ -204,6 +204,7 @@ impl Lot {
         let restarts = again::places(&restarts, &lines, (&text, &program), &parts);
         told.extend(routing.notes.iter().cloned());
         told.extend(placing.over_the_edge(&routing.toolpath, job.cutters[self.cutter].diameter_mm));
+        told.extend(Relieved::told(&verdict.relieved));
         told.extend(feeds);
         told.extend(lifts);
         let Self { cutter, contours, routed, .. } = self;

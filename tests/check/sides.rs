@@ -163,6 +163,75 @@ fn passes_and_depth_are_judged_beside_the_line_too() {
     assert!(with("Z-6.000", "Z-5.500").contains(&"some pass goes to the depth asked"));
 }
 
+/// A pocket of 60 by 40 whose lower left corner the cutter goes into on the way to `tip` and back.
+fn pocket_with_a_way_to(tip: (f64, f64)) -> ArcSpline {
+    polyline(&[(13.0, 13.0), tip, (13.0, 13.0), (67.0, 13.0), (67.0, 47.0), (13.0, 47.0)], true)
+}
+
+fn relieving(ids: &[usize]) -> Asked {
+    Asked { relieved: ids.iter().copied().collect(), ..beside(Side::Inside, 0.1) }
+}
+
+#[test]
+fn a_relief_holds_where_it_was_asked_for() {
+    let drawing = [rectangle(10.0, 10.0, 60.0, 40.0)];
+    // So far that the edge touches the corner: 3 mm from it along the diagonal.
+    let reach = 10.0 + RADIUS / 2.0_f64.sqrt();
+    let path = [pocket_with_a_way_to((reach, reach))];
+    let verdict = judged(&path, &drawing, &relieving(&[1]));
+    assert!(verdict.holds, "fails {:?} {:#?}", failing(&verdict), verdict.claims);
+    let [relieved] = verdict.relieved[..] else { panic!("one corner: {:?}", verdict.relieved) };
+    let into = RADIUS * (1.0 - 0.5_f64.sqrt());
+    assert!((relieved.into - into).abs() < 2e-3 && relieved.at.distance(Point::new(10.0, 10.0)) < 0.15);
+    assert!(verdict.deviation.expect("a figure").mm < 0.08, "{:?}", verdict.deviation);
+    assert!(claim(&verdict, "stays off").note.contains("1 inside corner, up to 0.88 mm"), "it is told");
+    for asked in [relieving(&[]), relieving(&[2])] {
+        let verdict = judged(&path, &drawing, &asked);
+        assert_eq!(failing(&verdict), ["the cutter stays off what is kept"], "not asked for this contour");
+        assert_eq!(verdict.relieved, []);
+    }
+}
+
+#[test]
+fn what_is_no_relief_is_refuted_where_reliefs_are_asked_for() {
+    let drawing = [rectangle(10.0, 10.0, 60.0, 40.0)];
+    let reach = 10.0 + RADIUS / 2.0_f64.sqrt();
+    for (what, tip) in [
+        ("beyond the corner", (reach - 0.2, reach - 0.2)),
+        ("far beyond the corner", (6.0, 6.0)),
+        ("beside the corner", (reach - 0.4, reach + 0.4)),
+        ("into a side", (11.5, 13.0)),
+        ("into the other side", (13.0, 11.0)),
+        ("across the part", (13.0, 5.0)),
+    ] {
+        let verdict = judged(&[pocket_with_a_way_to(tip)], &drawing, &relieving(&[1]));
+        assert!(
+            failing(&verdict).contains(&"the cutter stays off what is kept"),
+            "{what}: {:?}",
+            verdict.claims
+        );
+    }
+    // Away from corners, straight and at a slant, and round the corner of the part.
+    for (x, y) in [(40.0, 12.0), (41.0, 12.5), (42.0, 12.0), (50.0, 12.7), (43.0, 11.9)] {
+        let stray = polyline(
+            &[(13.0, 13.0), (40.0, 13.0), (x, y), (40.0, 13.0), (67.0, 13.0), (67.0, 47.0), (13.0, 47.0)],
+            true,
+        );
+        let verdict = judged(&[stray], &drawing, &relieving(&[1]));
+        assert!(failing(&verdict).contains(&"the cutter stays off what is kept"), "to {x}, {y}");
+    }
+    // The corner of a part juts out: there is nothing to relieve.
+    let part = around(10.0, 10.0, 60.0, 40.0, RADIUS);
+    let mut spans: Vec<Span> = part.spans().collect();
+    let corner = Point::new(70.0, 10.0) + kurbo::Vec2::from_angle(-std::f64::consts::FRAC_PI_4) * RADIUS;
+    let (a, b) = (spans[1].part(0.0, 0.5), spans[1].part(0.5, 1.0));
+    let tip = corner + kurbo::Vec2::new(-0.5, 0.5);
+    spans.splice(1..2, [a, Span::line(corner, tip), Span::line(tip, corner), b]);
+    let asked = Asked { side: Side::Outside, ..relieving(&[1]) };
+    let verdict = judged(&[ArcSpline::from_spans(&spans, true)], &drawing, &asked);
+    assert!(failing(&verdict).contains(&"the cutter stays off what is kept"), "{:?}", verdict.claims);
+}
+
 #[test]
 fn real_outlines_compensated_hold_on_both_sides() {
     use ribband::offset::{self, Corners, compensate};
