@@ -11,7 +11,7 @@ use super::trace::Bead;
 const BETWEEN: [f64; 3] = [0.25, 0.5, 0.75];
 
 /// The place on the trace beside `p`, after bead `i` and not beyond the next.
-pub(super) fn beside(beads: &[Bead], i: usize, p: Point) -> Point {
+fn beside(beads: &[Bead], i: usize, p: Point) -> Point {
     match beads.get(i + 1) {
         Some(next) => Span::line(beads[i].at, next.at).nearest(p).at,
         None => beads[i].at,
@@ -28,7 +28,7 @@ pub(super) fn keeps(span: &Span, beads: &[Bead], first: usize, last: usize) -> b
     let band = beads[last].band;
     let start = Matched { foot: 0.0, bead: Bead { at: beside(beads, first, span.start), ..beads[first] } };
     let end =
-        Matched { foot: span.length(), bead: Bead { at: beside(beads, last, span.end), band, along: 0.0 } };
+        Matched { foot: span.length(), bead: Bead { at: beside(beads, last, span.end), ..beads[last] } };
     if first == last && goes_back(beads, first, start.bead.at, end.bead.at) {
         return false;
     }

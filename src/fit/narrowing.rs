@@ -9,11 +9,11 @@ use crate::num::Tolerance;
 
 use super::LAST_PLACE;
 use super::beam::Run;
-use super::keeping::{beside, keeps};
-use super::trace::{Bead, Trace};
+use super::keeping::keeps;
+use super::trace::Trace;
 
 /// How often the search is repeated before spans that stray are given up.
-const ATTEMPTS: usize = 4;
+const ATTEMPTS: usize = 8;
 
 /// The path of least cost that `search` finds and that stays within `tolerance` of the trace.
 ///
@@ -25,17 +25,16 @@ pub(super) fn within(mut trace: Trace, tolerance: Tolerance, search: fn(&Trace) 
         if strayed.is_empty() {
             break;
         }
-        for s in strayed {
-            trace.narrow(s.bead, s.excess);
-        }
+        trace.mend(&strayed);
         run = search(&trace);
     }
     straighten(&mut run, &trace);
     let strayed: Vec<usize> = strayed(&run, &trace, tolerance).iter().map(|s| s.span).collect();
-    let stretches = run.spans.iter().zip(run.passed.windows(2)).enumerate();
+    let joints = joints(&run, &trace);
+    let stretches = run.spans.iter().zip(joints.windows(2)).enumerate();
     let spans: Vec<Span> = stretches
-        .flat_map(|(i, (span, passed))| match strayed.binary_search(&i) {
-            Ok(_) => straight(span, passed, trace.beads()),
+        .flat_map(|(i, (span, ends))| match strayed.binary_search(&i) {
+            Ok(_) => straight(span, ends, &trace),
             Err(_) => vec![*span],
         })
         .collect();
@@ -60,44 +59,80 @@ fn straighten(run: &mut Run, trace: &Trace) {
 }
 
 /// Where a run strays from the trace.
-struct Strayed {
+pub(super) struct Strayed {
     /// The span.
     span: usize,
-    /// The bead beside the worst place.
-    bead: usize,
-    /// By how much the tolerance is exceeded, in mm.
-    excess: f64,
+    /// The points of the trace that lie too far from it: of every group of neighbours the one that lies furthest.
+    pub(super) missed: Vec<usize>,
+    /// The point beside the worst place.
+    pub(super) worst: usize,
+    /// By how much the tolerance is exceeded there, in mm.
+    pub(super) excess: f64,
 }
 
 /// The spans that stray, in order.
 fn strayed(run: &Run, trace: &Trace, tolerance: Tolerance) -> Vec<Strayed> {
-    let beads = trace.beads();
-    let stretches = run.spans.iter().zip(run.passed.windows(2)).enumerate();
+    let joints = joints(run, trace);
+    let stretches = run.spans.iter().zip(joints.windows(2)).enumerate();
     stretches
-        .filter_map(|(i, (span, passed))| {
+        .filter_map(|(i, (span, ends))| {
             let path = ArcSpline::from_spans(&[*span], false);
-            let stretch = ArcSpline::polyline(stretch(span, passed, beads), false);
+            let stretch = ArcSpline::polyline(stretch(ends, trace), false);
             let deviation = frechet_within(&path, &stretch, tolerance.mm());
-            let distance = |k: &usize| beads[*k].at.distance(deviation.at);
-            let near = (passed[0]..=(passed[1] + 1).min(beads.len() - 1))
-                .min_by(|a, b| distance(a).total_cmp(&distance(b)))?;
             let excess = deviation.mm - tolerance.mm();
-            (excess > 0.0).then_some(Strayed { span: i, bead: near, excess })
+            (excess > 0.0).then(|| {
+                let distance = |k: &usize| trace.point(*k).distance(deviation.at);
+                let near = ends[0].after..=trace.next(ends[1].after);
+                let nearest = near.min_by(|a, b| distance(a).total_cmp(&distance(b)));
+                let worst = nearest.unwrap_or(ends[0].after);
+                Strayed { span: i, missed: missed(span, ends, trace, tolerance), worst, excess }
+            })
         })
         .collect()
 }
 
-/// The straight way from a span's start to its end by the beads it passes.
-fn straight(span: &Span, passed: &[usize], beads: &[Bead]) -> Vec<Span> {
-    let inner = beads[passed[0] + 1..=passed[1]].iter().map(|b| b.at);
+/// The points beside a span that lie further from it than the tolerance: of every group of neighbours the furthest.
+fn missed(span: &Span, ends: &[Joint], trace: &Trace, tolerance: Tolerance) -> Vec<usize> {
+    let beyond = |k| (k, span.nearest(trace.point(k)).distance - tolerance.mm());
+    let distances: Vec<(usize, f64)> = (ends[0].after + 1..=ends[1].after).map(beyond).collect();
+    let groups = distances.chunk_by(|a, b| (a.1 > 0.0) == (b.1 > 0.0));
+    let furthest = |group: &[(usize, f64)]| group.iter().copied().max_by(|a, b| a.1.total_cmp(&b.1));
+    groups.filter_map(furthest).filter(|far| far.1 > 0.0).map(|far| far.0).collect()
+}
+
+/// The place on the trace beside a joint of the path.
+#[derive(Clone, Copy)]
+struct Joint {
+    /// The last point of the trace before it.
+    after: usize,
+    at: Point,
+}
+
+/// The places beside the start of every span, and the end of the last.
+fn joints(run: &Run, trace: &Trace) -> Vec<Joint> {
+    let ends = run.spans.iter().map(|s| s.start).chain(run.spans.last().map(|s| s.end));
+    ends.zip(&run.passed).map(|(p, &passed)| beside(trace, passed, p)).collect()
+}
+
+/// The place beside `p` on the stretch after bead `i`.
+fn beside(trace: &Trace, i: usize, p: Point) -> Joint {
+    let first = trace.beads()[i].point;
+    let next = trace.beads().get(i + 1).map_or(first, |next| next.point);
+    let foot = |k: usize| (k, Span::line(trace.point(k), trace.point(k + 1)).nearest(p));
+    let nearest = (first..next).map(foot).min_by(|a, b| a.1.distance.total_cmp(&b.1.distance));
+    nearest.map_or(Joint { after: first, at: trace.point(first) }, |(after, foot)| Joint { after, at: foot.at })
+}
+
+/// The straight way from a span's start to its end by the points it passes.
+fn straight(span: &Span, ends: &[Joint], trace: &Trace) -> Vec<Span> {
+    let inner = (ends[0].after + 1..=ends[1].after).map(|k| trace.point(k));
     let mut points: Vec<Point> = [span.start].into_iter().chain(inner).chain([span.end]).collect();
     points.dedup();
     points.windows(2).map(|w| Span::line(w[0], w[1])).collect()
 }
 
-/// The part of the trace that belongs to a span: its beads, between the places beside the span's ends.
-fn stretch(span: &Span, passed: &[usize], beads: &[Bead]) -> Vec<Point> {
-    let inner = beads[passed[0] + 1..=passed[1]].iter().map(|b| b.at);
-    let start = beside(beads, passed[0], span.start);
-    [start].into_iter().chain(inner).chain([beside(beads, passed[1], span.end)]).collect()
+/// The part of the trace that belongs to a span.
+fn stretch(ends: &[Joint], trace: &Trace) -> Vec<Point> {
+    let inner = (ends[0].after + 1..=ends[1].after).map(|k| trace.point(k));
+    [ends[0].at].into_iter().chain(inner).chain([ends[1].at]).collect()
 }

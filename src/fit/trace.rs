@@ -1,28 +1,35 @@
 //! The contour as the search sees it: vertices with the band that the path must keep to.
 
+use std::rc::Rc;
+
 use kurbo::{Point, Vec2};
 
 use crate::geom::{ArcSpline, Span};
 use crate::num::Tolerance;
 
 use super::lines::{Line, lines};
+use super::narrowing::Strayed;
 
-/// A vertex of the trace and how far from it the path may pass.
+/// A point of the trace and how far from it the path may pass.
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Bead {
     pub(super) at: Point,
     /// Band to either side, in mm.
     pub(super) band: f64,
-    /// Length of the trace up to here.
+    /// Length from bead to bead up to here.
     pub(super) along: f64,
+    /// Which point of the trace it is; on the second lap of a closed one, counted on.
+    pub(super) point: usize,
 }
 
-/// The beads of one contour. A closed trace repeats its beads for a second lap, so that a run may start anywhere.
+/// The points of one contour, and those of them that the search looks at: its beads. A closed trace repeats its beads for
+/// a second lap, so that a run may start anywhere.
+#[derive(Clone)]
 pub(super) struct Trace {
+    points: Rc<[Point]>,
     beads: Vec<Bead>,
     lines: Vec<Line>,
-    /// Beads in one lap of a closed trace, 0 for an open one.
-    lap: usize,
+    closed: bool,
     tolerance: f64,
 }
 
@@ -37,34 +44,55 @@ impl Trace {
         if points.len() < 2 {
             return None;
         }
-        let lap = if contour.closed { points.len() } else { 0 };
-        if contour.closed {
-            points.extend_from_within(..);
-            points.push(points[0]);
-        }
-        let beads = strung(&points, tolerance.mm());
+        let beads = outermost(&points, GROUP * tolerance.mm()).into_iter().map(|i| (i, tolerance.mm()));
+        let beads = strung(&points, contour.closed, beads.collect());
         let lines = lines(&beads);
-        Some(Self { beads, lines, lap, tolerance: tolerance.mm() })
+        Some(Self { points: points.into(), beads, lines, closed: contour.closed, tolerance: tolerance.mm() })
     }
 
     /// The same trace with a band of `share` of the tolerance.
     pub(super) fn narrowed(&self, share: f64) -> Self {
         let band = self.tolerance * share;
         let beads = self.beads.iter().map(|bead| Bead { band, ..*bead }).collect();
-        Self { beads, lines: self.lines.clone(), ..*self }
+        Self { beads, lines: self.lines.clone(), points: self.points.clone(), ..*self }
     }
 
-    /// Narrows the band about bead `i` by a little more than `excess`, in both laps of a closed trace.
-    pub(super) fn narrow(&mut self, i: usize, excess: f64) {
-        let last = self.beads.len() - 1;
-        let near = i.saturating_sub(2)..=(i + 2).min(last);
-        let twins = near.flat_map(|k| [Some(k), k.checked_sub(self.lap), Some(k + self.lap)]);
-        let mut twins: Vec<usize> = twins.flatten().filter(|&k| k <= last).collect();
-        twins.sort_unstable();
-        twins.dedup();
-        for k in twins {
-            self.beads[k].band = (self.beads[k].band - NARROWING * excess).max(self.tolerance / 2.0);
+    /// Holds the search off the places where it strayed: points that it missed become beads; where it missed none that was
+    /// no bead yet, the band about the worst place narrows by a little more than the excess.
+    pub(super) fn mend(&mut self, strayed: &[Strayed]) {
+        let beads = &self.beads[..if self.closed { self.lap() } else { self.beads.len() }];
+        let mut bands: Vec<(usize, f64)> = beads.iter().map(|b| (b.point, b.band)).collect();
+        let last = bands.len() - 1;
+        let mut added = Vec::new();
+        for s in strayed {
+            let before = added.len();
+            for point in s.missed.iter().map(|i| i % self.points.len()) {
+                if let Err(i) = bands.binary_search_by_key(&point, |b| b.0) {
+                    added.push((point, bands[i.min(last)].1));
+                }
+            }
+            if added.len() == before {
+                let i = bands.partition_point(|b| b.0 < s.worst % self.points.len());
+                for (_, band) in &mut bands[i.saturating_sub(2)..=(i + 2).min(last)] {
+                    *band = (*band - NARROWING * s.excess).max(self.tolerance / 2.0);
+                }
+            }
         }
+        bands.extend(added);
+        bands.sort_by_key(|b| b.0);
+        bands.dedup_by_key(|b| b.0);
+        self.beads = strung(&self.points, self.closed, bands);
+        self.lines = lines(&self.beads);
+    }
+
+    /// The point of the given number, counted on from lap to lap.
+    pub(super) fn point(&self, i: usize) -> Point {
+        self.points[if self.closed { i % self.points.len() } else { i }]
+    }
+
+    /// The number of the point after point `i`, or of the last one.
+    pub(super) fn next(&self, i: usize) -> usize {
+        if self.closed { i + 1 } else { (i + 1).min(self.points.len() - 1) }
     }
 
     /// Beads of the trace; of a closed one, two laps and the first bead again.
@@ -79,11 +107,11 @@ impl Trace {
 
     /// Beads in one lap of a closed trace, 0 for an open one.
     pub(super) fn lap(&self) -> usize {
-        self.lap
+        if self.closed { self.beads.len() / 2 } else { 0 }
     }
 
     pub(super) fn closed(&self) -> bool {
-        self.lap > 0
+        self.closed
     }
 
     /// The unit direction of the trace about bead `i`, measured over at least the tolerance on either side.
@@ -123,18 +151,47 @@ fn pieces(span: Span, tolerance: f64) -> u32 {
 
 /// How much the band narrows, in excesses.
 const NARROWING: f64 = 2.0;
+/// Longest group of points of which only the outermost become beads, in tolerances.
+const GROUP: f64 = 5.0;
 /// Longest stretch between two points of the trace, in tolerances.
 const LONGEST: f64 = 10.0;
 /// Most points put on one span.
 const MOST_PIECES: f64 = 2000.0;
 
-fn strung(points: &[Point], band: f64) -> Vec<Bead> {
+/// The beads at the given points with their bands; of a closed trace two laps and the first bead again.
+fn strung(points: &[Point], closed: bool, bands: Vec<(usize, f64)>) -> Vec<Bead> {
+    let laps = if closed { 2 } else { 1 };
+    let bands_of = |lap: usize| bands.iter().map(move |&(i, band)| (i + lap * points.len(), band));
+    let back = closed.then(|| (bands[0].0 + 2 * points.len(), bands[0].1));
     let mut along = 0.0;
-    let mut before = points[0];
-    let bead = |&at: &Point| {
+    let mut before = points[bands[0].0];
+    let bead = |(point, band): (usize, f64)| {
+        let at = points[point % points.len()];
         along += at.distance(before);
         before = at;
-        Bead { at, band, along }
+        Bead { at, band, along, point }
     };
-    points.iter().map(bead).collect()
+    (0..laps).flat_map(bands_of).chain(back).map(bead).collect()
+}
+
+/// The points that bound a path from either side: of every group no longer than `reach` mm the two that lie furthest to the
+/// left and to the right of its chord; and the ends.
+fn outermost(points: &[Point], reach: f64) -> Vec<usize> {
+    let last = points.len() - 1;
+    let mut kept = vec![0];
+    let mut first = 1;
+    while first < last {
+        let from = points[first];
+        let long = |p: &Point| p.distance_squared(from) > reach * reach;
+        let end = points[first..last].iter().position(long).map_or(last, |k| first + k);
+        let chord = points[end] - points[first - 1];
+        let side = |i: &usize| chord.cross(points[*i] - from);
+        let left = (first..end).max_by(|a, b| side(a).total_cmp(&side(b)));
+        let right = (first..end).min_by(|a, b| side(a).total_cmp(&side(b)));
+        kept.extend(left.min(right));
+        kept.extend(left.max(right).filter(|_| left != right));
+        first = end;
+    }
+    kept.extend((last > 0).then_some(last));
+    kept
 }
