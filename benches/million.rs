@@ -46,9 +46,13 @@ fn beside(name: &str, contours: &[Vec<Point>]) {
     let vertices: usize = contours.iter().map(Vec::len).sum();
     println!("{name}: {vertices} vertices, simplified to {left} lines in {simplifying:.2} s");
     let blocks = &report["program"]["motion_blocks"];
-    println!("  posted in {posting:.2} s, {:.1} times as long, {blocks} motion blocks", posting / simplifying);
+    println!(
+        "  posted in {posting:.2} s, {:.1} times as long, {blocks} motion blocks",
+        posting / simplifying
+    );
     let stages = report["timings_ms"].as_object().expect("timings");
-    let mut stages: Vec<(f64, &String)> = stages.iter().filter_map(|(s, ms)| Some((ms.as_f64()?, s))).collect();
+    let mut stages: Vec<(f64, &String)> =
+        stages.iter().filter_map(|(s, ms)| Some((ms.as_f64()?, s))).collect();
     stages.sort_by(|a, b| b.0.total_cmp(&a.0));
     println!("  {}", stages.iter().map(|(ms, s)| format!("{s} {ms:.0}")).collect::<Vec<_>>().join(", "));
 }
@@ -63,18 +67,18 @@ fn text(contours: &[Vec<Point>]) -> String {
 
 /// A leaf of a few lobes in the `k`th field of a sheet.
 fn leaf(k: usize, vertices: usize) -> Vec<Point> {
-    let centre = Point::new(75.0 * (k % 16) as f64, 75.0 * (k / 16) as f64);
     let lobes = 3.0 + (k % 4) as f64;
     let curve = |t: f64| {
         let r = 1.0 + 0.15 * (lobes * t).cos() + 0.05 * (2.0 * t + k as f64).sin();
-        centre + kurbo::Vec2::from_angle(t) * (r * 31.0)
+        Point::ZERO + kurbo::Vec2::from_angle(t) * (r * 31.0)
     };
-    traced(curve, vertices, k as u64)
+    let field = kurbo::Vec2::new(80.0 * (k % 16) as f64, 80.0 * (k / 16) as f64);
+    traced(curve, vertices, k as u64).into_iter().map(|p| p + field).collect()
 }
 
 /// One long contour: a hundred narrow petals.
 fn rosette(vertices: usize) -> Vec<Point> {
-    let curve = |t: f64| Point::ZERO + kurbo::Vec2::from_angle(t) * (450.0 + 150.0 * (100.0 * t).cos());
+    let curve = |t: f64| Point::ZERO + kurbo::Vec2::from_angle(t) * (430.0 + 145.0 * (100.0 * t).cos());
     traced(curve, vertices, 7)
 }
 

@@ -29,7 +29,7 @@ use crate::check;
 use crate::clean::{Cleaned, Roughness};
 use crate::error::Error;
 use crate::fair;
-use crate::fit::{self, Fitted};
+use crate::fit::{self, Fitted, Pace};
 use crate::gcode::{self, Dialect, Program};
 use crate::job::{CheckJob, DrawingSettings, Job};
 use crate::machine::Machine;
@@ -238,6 +238,9 @@ fn once_each(mut told: Vec<String>) -> Vec<String> {
     told
 }
 
+/// The most vertices of a drawing for which the search for the fewest spans may take its time: some seconds.
+const MOST_AT_LEISURE: usize = 50_000;
+
 /// Every contour replaced by its path, in the contours' order however many cores work on them; by the arcs that stand
 /// for its cubics where those are written.
 fn fit(
@@ -249,9 +252,11 @@ fn fit(
     if !cubics.is_empty() {
         return cubics.iter().map(|cubics| cubics.fitted.clone()).collect();
     }
-    progress.begin(contours.iter().map(|contour| contour.path.vertices.len()).sum());
+    let vertices = contours.iter().map(|contour| contour.path.vertices.len()).sum();
+    progress.begin(vertices);
+    let pace = if vertices > MOST_AT_LEISURE { Pace::Brisk } else { Pace::Thorough };
     let fit = |contour: &Contour| {
-        let fitted = fit::fit(&contour.path, tolerance);
+        let fitted = fit::fit(&contour.path, tolerance, pace);
         progress.done(contour.path.vertices.len());
         fitted
     };

@@ -6,6 +6,7 @@ use kurbo::Vec2;
 
 use crate::geom::Span;
 
+use super::effort::Effort;
 use super::keeping::keeps;
 use super::lines::Line;
 use super::reach::{Fan, reach};
@@ -14,22 +15,10 @@ use super::seeds;
 use super::state::State;
 use super::trace::{Bead, Trace};
 
-/// How many states of a level go on by a tangent arc.
-const TANGENT: usize = 48;
-/// How many states of a level may turn a corner.
-const CORNER: usize = 6;
-/// How many states of a level are kept for the straight path behind them.
-const LINES: usize = 8;
 /// By which share of the best reach theirs may be less.
 const NEARLY: f64 = 0.3;
-/// How many ends of a level are refined.
-const REFINED: usize = 24;
-/// How many beads of a reach are tried as its end.
-const ENDS: usize = 12;
 /// The least share of a reach at which an arc may end.
 const LEAST_SHARE: f64 = 0.4;
-/// Places in the fan at a bead that are tried, from the lowest curvature to the highest.
-const PLACES: [f64; 5] = [0.0, 0.25, 0.5, 0.75, 1.0];
 
 /// A state with its promise.
 #[derive(Clone, Copy)]
@@ -48,17 +37,27 @@ pub(super) struct Beam<'a> {
     pub(super) tangent: Vec<Vec<usize>>,
     /// States of each cost that may turn a corner.
     corner: Vec<Vec<usize>>,
+    effort: Effort,
     fans: Vec<Fan>,
     scratch: Vec<Fan>,
 }
 
 impl<'a> Beam<'a> {
     /// A run along `beads` from the given starts, all of cost 0.
-    pub(super) fn new(beads: &'a [Bead], lines: &'a [Line], starts: Vec<State>) -> Self {
+    pub(super) fn new(beads: &'a [Bead], lines: &'a [Line], effort: Effort, starts: Vec<State>) -> Self {
         let all: Vec<usize> = (0..starts.len()).collect();
         let states = starts.into_iter().enumerate().map(|(i, s)| State { parent: i, ..s }).collect();
         let corner = vec![Vec::new()];
-        Self { beads, lines, states, tangent: vec![all], corner, fans: Vec::new(), scratch: Vec::new() }
+        Self {
+            beads,
+            lines,
+            states,
+            tangent: vec![all],
+            corner,
+            effort,
+            fans: Vec::new(),
+            scratch: Vec::new(),
+        }
     }
 
     /// The states of cost `level`.
@@ -95,8 +94,8 @@ impl<'a> Beam<'a> {
         let from = self.beads[state.bead].along;
         let span = self.beads[state.bead + count].along - from;
         let mut next = count;
-        for k in 0..ENDS {
-            let wanted = from + span * (1.0 - (1.0 - LEAST_SHARE) * k as f64 / ENDS as f64);
+        for k in 0..self.effort.ends {
+            let wanted = from + span * (1.0 - (1.0 - LEAST_SHARE) * k as f64 / self.effort.ends as f64);
             while next > 1 && self.beads[state.bead + next].along > wanted {
                 next -= 1;
             }
@@ -130,7 +129,7 @@ impl<'a> Beam<'a> {
         let fan = self.fans[ahead - 1];
         let bead = state.bead + ahead;
         let straight = (fan.low <= 0.0 && fan.high >= 0.0).then_some(0.0);
-        let places = PLACES.iter().map(|p| fan.low + (fan.high - fan.low) * p);
+        let places = self.effort.places.iter().map(|p| fan.low + (fan.high - fan.low) * p);
         for curvature in places.chain(straight) {
             if !curvature.is_finite() {
                 continue;
@@ -150,7 +149,7 @@ impl<'a> Beam<'a> {
         let chosen: Vec<State> = candidates
             .iter()
             .filter(|c| seen.insert((c.state.parent, c.state.bead)))
-            .take(REFINED)
+            .take(self.effort.refined)
             .map(|c| c.state)
             .collect();
         for to in chosen {
@@ -159,7 +158,7 @@ impl<'a> Beam<'a> {
             let from = State { parent: to.parent, ..parent.turned(heading) };
             reach(&from, self.beads, &mut self.fans);
             let refining = Refining { from, beads: self.beads, fans: &self.fans };
-            if let Some(end) = refining.best_near(&to, &mut self.scratch) {
+            if let Some(end) = refining.best_near(&to, self.effort.halvings, &mut self.scratch) {
                 let state = State { corner: to.corner, ..end.state };
                 candidates.push(Candidate { state, reach: end.reach });
             }
@@ -170,12 +169,12 @@ impl<'a> Beam<'a> {
     fn keep(&mut self, mut candidates: Vec<Candidate>) {
         self.refine(&mut candidates);
         candidates.sort_by(|a, b| b.reach.total_cmp(&a.reach));
-        let mut tangent = self.chosen(&candidates, TANGENT);
+        let mut tangent = self.chosen(&candidates, self.effort.tangent);
         tangent.extend(self.straightest(&candidates));
         candidates.sort_by(|a, b| {
             b.state.bead.cmp(&a.state.bead).then(b.state.straight.total_cmp(&a.state.straight))
         });
-        let corner = self.chosen(&candidates, CORNER);
+        let corner = self.chosen(&candidates, self.effort.corner);
         self.tangent.push(tangent);
         self.corner.push(corner);
     }
@@ -188,7 +187,7 @@ impl<'a> Beam<'a> {
         let near = candidates.iter().take_while(|c| c.reach >= enough).filter(|c| c.state.straight > 0.0);
         let mut near: Vec<Candidate> = near.copied().collect();
         near.sort_by(|a, b| b.state.straight.total_cmp(&a.state.straight).then(b.reach.total_cmp(&a.reach)));
-        self.chosen(&near, LINES)
+        self.chosen(&near, self.effort.lines)
     }
 
     /// The first `most` candidates that hold their beads in order and differ from those before.
@@ -282,7 +281,7 @@ pub(super) fn starts(trace: &Trace, at: usize) -> Vec<State> {
 /// The path of least cost along an open trace.
 pub(super) fn open(trace: &Trace) -> Run {
     let last = trace.beads().len() - 1;
-    let mut beam = Beam::new(trace.beads(), trace.lines(), starts(trace, 0));
+    let mut beam = Beam::new(trace.beads(), trace.lines(), trace.effort(), starts(trace, 0));
     loop {
         let goes_on = beam.step();
         let level = beam.tangent.len() - 1;

@@ -6,6 +6,7 @@ use kurbo::{Point, Vec2};
 use crate::geom::Span;
 
 use super::beam::{Beam, Run, starts};
+use super::effort::Effort;
 use super::keeping::keeps;
 use super::lines::Line;
 use super::reach::reach;
@@ -21,9 +22,6 @@ const CLOSING: usize = 1;
 const STARTS: usize = 24;
 /// Shares of the longest possible first tangent that are tried for the last two arcs.
 const SHARES: [f64; 9] = [0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9];
-
-/// How many places to start from are tried where the run that warms up comes all the way round.
-const TRIES: usize = 3;
 
 /// The path of least cost around a closed trace.
 pub(super) fn closed(trace: &Trace) -> Run {
@@ -42,7 +40,17 @@ fn lap_from(trace: &Trace, start: Start) -> Option<(usize, Run)> {
         vec![first]
     };
     let heading = (!start.corner).then_some(first.heading);
-    around(&Goal { at: first.at, heading, beads, trace: trace.beads(), lines: trace.lines() }, starts)
+    around(
+        &Goal {
+            at: first.at,
+            heading,
+            beads,
+            trace: trace.beads(),
+            lines: trace.lines(),
+            effort: trace.effort(),
+        },
+        starts,
+    )
 }
 
 /// The path of least cost along an open trace from its first bead exactly to its last.
@@ -60,7 +68,14 @@ pub(super) fn pinned(trace: &Trace) -> Run {
     };
     let starts = seeds::aimed(&first, beads, &mut Vec::new()).into_iter().map(|(_, s)| s);
     let starts = starts.take(STARTS).collect();
-    let goal = Goal { at: beads[last].at, heading: None, beads, trace: beads, lines: trace.lines() };
+    let goal = Goal {
+        at: beads[last].at,
+        heading: None,
+        beads,
+        trace: beads,
+        lines: trace.lines(),
+        effort: trace.effort(),
+    };
     around(&goal, starts).map_or_else(|| Run::straight(beads, 0, last), |(_, run)| run)
 }
 
@@ -73,7 +88,7 @@ struct Start {
 /// Joints of a run that has warmed up: the corner nearest to its middle where it has one, else the end of a line, then
 /// the middle joint, and where the run comes all the way round, others at a distance from it.
 fn starts_on_a_run(trace: &Trace) -> Vec<Start> {
-    let mut beam = Beam::new(trace.beads(), trace.lines(), starts(trace, 0));
+    let mut beam = Beam::new(trace.beads(), trace.lines(), trace.effort().warming_up(), starts(trace, 0));
     for _ in 0..WARM_UP {
         if !beam.step() || furthest(&beam).is_some_and(|id| beam.states[id].bead + 1 >= trace.beads().len()) {
             break;
@@ -91,7 +106,7 @@ fn starts_on_a_run(trace: &Trace) -> Vec<Start> {
     let mut joints: Vec<usize> = corner.or(line).into_iter().chain(others).collect();
     joints.dedup();
     joints.retain(|&k| k < chain.len());
-    joints.truncate(if comes_round { TRIES } else { 1 });
+    joints.truncate(if comes_round { trace.effort().tries } else { 1 });
     let start = |k: usize| {
         let mut state = beam.states[chain[k]];
         state.bead %= trace.lap();
@@ -116,11 +131,12 @@ struct Goal<'a> {
     /// The beads beyond it too: the goal may lie past the last bead of the lap.
     trace: &'a [Bead],
     lines: &'a [Line],
+    effort: Effort,
 }
 
 /// The cheapest way from the starts to the goal, for a closed run back to it, with its cost.
 fn around(goal: &Goal, starts: Vec<State>) -> Option<(usize, Run)> {
-    let mut beam = Beam::new(goal.beads, goal.lines, starts);
+    let mut beam = Beam::new(goal.beads, goal.lines, goal.effort, starts);
     let mut best: Option<Closed> = None;
     for level in 0.. {
         for id in beam.level(level).collect::<Vec<_>>() {

@@ -25,7 +25,6 @@ fn beside(beads: &[Bead], i: usize, p: Point) -> Point {
 /// maximum and the running minimum from behind); matched places must lie within the band, and so must three places
 /// between them, where the distance is the line between those at the ends less the arc's height over its chord.
 pub(super) fn keeps(span: &Span, beads: &[Bead], first: usize, last: usize) -> bool {
-    let band = beads[last].band;
     let start = Matched { foot: 0.0, bead: Bead { at: beside(beads, first, span.start), ..beads[first] } };
     let end =
         Matched { foot: span.length(), bead: Bead { at: beside(beads, last, span.end), ..beads[last] } };

@@ -8,6 +8,7 @@ mod beam;
 mod canonical;
 mod circle;
 mod closing;
+mod effort;
 mod keeping;
 mod lines;
 mod narrowing;
@@ -24,8 +25,10 @@ use kurbo::Point;
 use crate::geom::{ArcSpline, frechet_within};
 use crate::num::{Deviation, Tolerance};
 use beam::Run;
+use effort::Effort;
 use trace::Trace;
 
+pub use effort::Pace;
 pub use pinned::fit_pinned;
 pub use simplify::simplify;
 
@@ -57,21 +60,42 @@ impl Fitted {
     }
 }
 
-/// Replaces `contour` with the fewest tangent arcs and lines that stay within `tolerance` of it, both ways and in order.
+/// Replaces `contour` with the fewest tangent arcs and lines that stay within `tolerance` of it, both ways and in order,
+/// as far as `pace` leaves time to find them.
 ///
 /// The result does not depend on the vertex a closed contour starts at, nor on the direction. A contour without
 /// length comes back as it is. The deviation returned is at most `tolerance`.
-pub fn fit(contour: &ArcSpline, tolerance: Tolerance) -> Fitted {
+pub fn fit(contour: &ArcSpline, tolerance: Tolerance, pace: Pace) -> Fitted {
     let (canonical, against) = canonical::canonical(contour);
-    let fitted = fitted(&canonical, tolerance);
+    let (first, later) = pace.efforts();
+    let mut found = fitted(&canonical, tolerance, first);
+    for effort in later {
+        if found.searched {
+            break;
+        }
+        let again = fitted(&canonical, tolerance, *effort);
+        let best = if again.best.cost() < found.best.cost() { again.best } else { found.best };
+        found = Found { best, ..again };
+    }
+    let fitted = found.best;
     if against { Fitted { path: fitted.path.reversed(), ..fitted } } else { fitted }
 }
 
+/// What a search came to.
+#[derive(Clone)]
+struct Found {
+    best: Fitted,
+    /// True when no other search is likely to find better.
+    searched: bool,
+}
+
 /// The fit of a contour in canonical order.
-fn fitted(contour: &ArcSpline, tolerance: Tolerance) -> Fitted {
-    let Some(trace) = Trace::new(contour, tolerance) else { return Fitted::as_drawn(contour) };
+fn fitted(contour: &ArcSpline, tolerance: Tolerance, effort: Effort) -> Found {
+    let Some(trace) = Trace::new(contour, tolerance, effort) else {
+        return Found { best: Fitted::as_drawn(contour), searched: true };
+    };
     match circle::whole(&trace).and_then(|circle| Fitted::held(circle, contour, tolerance)) {
-        Some(circle) => circle,
+        Some(circle) => Found { best: circle, searched: true },
         None => least(&trace, contour, tolerance, searched),
     }
 }
@@ -81,16 +105,29 @@ fn searched(trace: &Trace) -> Run {
 }
 
 /// The cheapest that holds the tolerance of what the search finds, straight-line simplification and the contour itself.
-fn least(trace: &Trace, contour: &ArcSpline, tolerance: Tolerance, search: fn(&Trace) -> Run) -> Fitted {
+fn least(trace: &Trace, contour: &ArcSpline, tolerance: Tolerance, search: fn(&Trace) -> Run) -> Found {
     let held = |path| Fitted::held(path, contour, tolerance);
-    let found =
-        SHARES.iter().find_map(|share| held(narrowing::within(trace.narrowed(*share), tolerance, search)));
+    let search = |share: &f64| {
+        let narrowed = narrowing::within(trace.narrowed(*share), tolerance, search);
+        held(narrowed.path)
+            .map(|best| Found { best, searched: narrowed.patches == 0 || trace.effort().gives_up })
+    };
+    let found = SHARES.iter().find_map(search);
+    let corners_and_lines = 2 * simplify::lines_of(trace, tolerance);
+    if let Some(found) =
+        found.as_ref().filter(|f| WELL_BELOW * f.best.cost() as f64 <= corners_and_lines as f64)
+    {
+        return found.clone();
+    }
     let best = |best: Fitted, other: Fitted| if other.cost() < best.cost() { other } else { best };
-    [found, held(simplify(contour, tolerance))].into_iter().flatten().fold(Fitted::as_drawn(contour), best)
+    let others = [found.map(|f| f.best), held(simplify(contour, tolerance))].into_iter().flatten();
+    Found { best: others.fold(Fitted::as_drawn(contour), best), searched: false }
 }
 
 /// The shares of the tolerance that the search may use, tried in turn: what certifying the path costs is seldom more
 /// than the first leaves.
 const SHARES: [f64; 3] = [0.993, 0.97, 0.9];
+/// How many times a path must be cheaper than straight lines for them not to be looked at.
+const WELL_BELOW: f64 = 1.3;
 /// The last place that programs are written to, in mm: a smaller break of tangent is not a corner.
 const LAST_PLACE: f64 = 0.001;

@@ -10,17 +10,18 @@ use crate::num::Tolerance;
 use super::LAST_PLACE;
 use super::beam::Run;
 use super::keeping::keeps;
+use super::simplify;
 use super::trace::Trace;
 
-/// How often the search is repeated before spans that stray are given up.
-const ATTEMPTS: usize = 8;
+/// The share of the tolerance that straight lines keep to in place of a span that strays.
+const STRAIGHT: f64 = 0.9;
 
 /// The path of least cost that `search` finds and that stays within `tolerance` of the trace.
 ///
-/// A span that strays still after the last attempt gives way to the trace's own vertices.
-pub(super) fn within(mut trace: Trace, tolerance: Tolerance, search: fn(&Trace) -> Run) -> ArcSpline {
+/// A span that strays still after the last attempt gives way to straight lines.
+pub(super) fn within(mut trace: Trace, tolerance: Tolerance, search: fn(&Trace) -> Run) -> Narrowed {
     let mut run = search(&trace);
-    for _ in 1..ATTEMPTS {
+    for _ in 1..trace.effort().attempts {
         let strayed = strayed(&run, &trace, tolerance);
         if strayed.is_empty() {
             break;
@@ -34,11 +35,18 @@ pub(super) fn within(mut trace: Trace, tolerance: Tolerance, search: fn(&Trace) 
     let stretches = run.spans.iter().zip(joints.windows(2)).enumerate();
     let spans: Vec<Span> = stretches
         .flat_map(|(i, (span, ends))| match strayed.binary_search(&i) {
-            Ok(_) => straight(span, ends, &trace),
+            Ok(_) => straight(span, ends, &trace, tolerance),
             Err(_) => vec![*span],
         })
         .collect();
-    ArcSpline::from_spans(&spans, trace.closed())
+    Narrowed { path: ArcSpline::from_spans(&spans, trace.closed()), patches: strayed.len() }
+}
+
+/// What the search came to.
+pub(super) struct Narrowed {
+    pub(super) path: ArcSpline,
+    /// How many spans strayed to the last and gave way to straight lines.
+    pub(super) patches: usize,
 }
 
 /// Replaces arcs that run from corner to corner by lines where those keep to the trace too.
@@ -120,15 +128,17 @@ fn beside(trace: &Trace, i: usize, p: Point) -> Joint {
     let next = trace.beads().get(i + 1).map_or(first, |next| next.point);
     let foot = |k: usize| (k, Span::line(trace.point(k), trace.point(k + 1)).nearest(p));
     let nearest = (first..next).map(foot).min_by(|a, b| a.1.distance.total_cmp(&b.1.distance));
-    nearest.map_or(Joint { after: first, at: trace.point(first) }, |(after, foot)| Joint { after, at: foot.at })
+    nearest
+        .map_or(Joint { after: first, at: trace.point(first) }, |(after, foot)| Joint { after, at: foot.at })
 }
 
-/// The straight way from a span's start to its end by the points it passes.
-fn straight(span: &Span, ends: &[Joint], trace: &Trace) -> Vec<Span> {
+/// The way from a span's start to its end by as few of the points it passes as straight lines need.
+fn straight(span: &Span, ends: &[Joint], trace: &Trace, tolerance: Tolerance) -> Vec<Span> {
     let inner = (ends[0].after + 1..=ends[1].after).map(|k| trace.point(k));
     let mut points: Vec<Point> = [span.start].into_iter().chain(inner).chain([span.end]).collect();
     points.dedup();
-    points.windows(2).map(|w| Span::line(w[0], w[1])).collect()
+    let left = simplify::left(&points, STRAIGHT * tolerance.mm());
+    left.windows(2).map(|w| Span::line(w[0], w[1])).collect()
 }
 
 /// The part of the trace that belongs to a span.

@@ -3,19 +3,20 @@
 use crate::geom::{ArcSpline, Span};
 use crate::num::Tolerance;
 
+use super::effort::Effort;
 use super::state::SHORTEST;
 use super::trace::Trace;
-use super::{Fitted, closing, fit, least};
+use super::{Fitted, Pace, closing, fit, least};
 
 /// Replaces the open `contour` as [`fit`] does, but from its very first point to its very last.
 ///
 /// For a stretch of something longer, which must go on where it went on before. A lap is one whose ends are one place.
 pub fn fit_pinned(contour: &ArcSpline, tolerance: Tolerance) -> Fitted {
-    let trace = Trace::new(contour, tolerance).filter(|trace| !trace.closed());
+    let trace = Trace::new(contour, tolerance, Effort::FULL).filter(|trace| !trace.closed());
     let (Some(trace), Some(free)) = (trace, free(contour, tolerance)) else {
         return Fitted::as_drawn(contour);
     };
-    let pinned = least(&trace, contour, tolerance, closing::pinned);
+    let pinned = least(&trace, contour, tolerance, closing::pinned).best;
     let best = fewer(moored(&free, contour, tolerance), pinned);
     if best.path.len() <= free.len() + 1 {
         return best;
@@ -40,11 +41,11 @@ fn fewer(other: Option<Fitted>, best: Fitted) -> Fitted {
 fn free(contour: &ArcSpline, tolerance: Tolerance) -> Option<ArcSpline> {
     let (first, last) = (contour.vertices.first()?, contour.vertices.last()?);
     if first.at != last.at {
-        return Some(fit(contour, tolerance).path);
+        return Some(fit(contour, tolerance, Pace::Thorough).path);
     }
     let mut lap = ArcSpline { vertices: contour.vertices.clone(), closed: true };
     lap.vertices.pop();
-    let lap = fit(&lap, tolerance).path;
+    let lap = fit(&lap, tolerance, Pace::Thorough).path;
     let distance = |i: &usize| lap.span(*i).nearest(first.at).distance;
     let at = (0..lap.len()).min_by(|a, b| distance(a).total_cmp(&distance(b)))?;
     let (cut, t) = (lap.span(at), lap.span(at).nearest(first.at).t);

@@ -7,9 +7,6 @@ use super::reach::{Fan, reach};
 use super::state::State;
 use super::trace::Bead;
 
-/// How often the steps are halved.
-const HALVINGS: usize = 8;
-
 /// An arc that leaves `from`, and how far the arc after it can go.
 pub(super) struct Refining<'a> {
     pub(super) from: State,
@@ -30,13 +27,13 @@ pub(super) struct End {
 
 impl Refining<'_> {
     /// The best end near that of `to`, by steps along the arc and in its curvature that are halved when none helps.
-    pub(super) fn best_near(&self, to: &State, scratch: &mut Vec<Fan>) -> Option<End> {
+    pub(super) fn best_near(&self, to: &State, halvings: usize, scratch: &mut Vec<Fan>) -> Option<End> {
         let span = to.span_from(&self.from);
         let length = span.length();
         let mut best = self.end(span.curvature(), length, to.bead, scratch)?;
         let mut along = length / 8.0;
         let mut bend = 0.5 * self.beads[to.bead].band / (length * length);
-        for _ in 0..HALVINGS {
+        for _ in 0..halvings {
             let steps =
                 [(along, 0.0), (-along, 0.0), (0.0, bend), (0.0, -bend), (along, bend), (-along, -bend)];
             let tried = steps.iter().filter_map(|&(ds, dk)| {

@@ -59,13 +59,14 @@ impl State {
         if length.is_nan() || length < SHORTEST || half.abs() > FRAC_PI_2 {
             return None;
         }
-        let chord = if half == 0.0 { length } else { length * half.sin() / half };
-        let along = rotated(self.heading, half);
+        let (sin, cos) = half.sin_cos();
+        let chord = if half == 0.0 { length } else { length * sin / half };
+        let along = rotated(self.heading, sin, cos);
         Some(Self {
             at: self.at + along * chord,
-            heading: rotated(along, half).normalize(),
+            heading: rotated(along, sin, cos).normalize(),
             bead,
-            bulge: (half / 2.0).tan(),
+            bulge: sin / (1.0 + cos),
             parent: self.parent,
             corner: false,
             straight: self.straight + if curvature == 0.0 { length } else { 0.0 },
@@ -78,7 +79,7 @@ impl State {
     }
 }
 
-fn rotated(v: Vec2, angle: f64) -> Vec2 {
-    let (sin, cos) = angle.sin_cos();
+/// `v` turned by the angle of the given sine and cosine.
+fn rotated(v: Vec2, sin: f64, cos: f64) -> Vec2 {
     Vec2::new(v.x * cos - v.y * sin, v.x * sin + v.y * cos)
 }

@@ -1,5 +1,6 @@
 //! The contour as the search sees it: vertices with the band that the path must keep to.
 
+use std::ops::Range;
 use std::rc::Rc;
 
 use kurbo::{Point, Vec2};
@@ -7,6 +8,7 @@ use kurbo::{Point, Vec2};
 use crate::geom::{ArcSpline, Span};
 use crate::num::Tolerance;
 
+use super::effort::Effort;
 use super::lines::{Line, lines};
 use super::narrowing::Strayed;
 
@@ -31,11 +33,12 @@ pub(super) struct Trace {
     lines: Vec<Line>,
     closed: bool,
     tolerance: f64,
+    effort: Effort,
 }
 
 impl Trace {
     /// The trace of `contour`; `None` when it has no length.
-    pub(super) fn new(contour: &ArcSpline, tolerance: Tolerance) -> Option<Self> {
+    pub(super) fn new(contour: &ArcSpline, tolerance: Tolerance, effort: Effort) -> Option<Self> {
         let mut points = sampled(contour, tolerance.mm());
         points.dedup();
         if contour.closed && points.len() > 1 && points.first() == points.last() {
@@ -44,10 +47,12 @@ impl Trace {
         if points.len() < 2 {
             return None;
         }
-        let beads = outermost(&points, GROUP * tolerance.mm()).into_iter().map(|i| (i, tolerance.mm()));
+        let beads =
+            outermost(&points, effort.group * tolerance.mm()).into_iter().map(|i| (i, tolerance.mm()));
         let beads = strung(&points, contour.closed, beads.collect());
         let lines = lines(&beads);
-        Some(Self { points: points.into(), beads, lines, closed: contour.closed, tolerance: tolerance.mm() })
+        let (closed, tolerance) = (contour.closed, tolerance.mm());
+        Some(Self { points: points.into(), beads, lines, closed, tolerance, effort })
     }
 
     /// The same trace with a band of `share` of the tolerance.
@@ -60,8 +65,7 @@ impl Trace {
     /// Holds the search off the places where it strayed: points that it missed become beads; where it missed none that was
     /// no bead yet, the band about the worst place narrows by a little more than the excess.
     pub(super) fn mend(&mut self, strayed: &[Strayed]) {
-        let beads = &self.beads[..if self.closed { self.lap() } else { self.beads.len() }];
-        let mut bands: Vec<(usize, f64)> = beads.iter().map(|b| (b.point, b.band)).collect();
+        let mut bands: Vec<(usize, f64)> = self.once().iter().map(|b| (b.point, b.band)).collect();
         let last = bands.len() - 1;
         let mut added = Vec::new();
         for s in strayed {
@@ -100,6 +104,11 @@ impl Trace {
         &self.beads
     }
 
+    /// How widely to search.
+    pub(super) fn effort(&self) -> Effort {
+        self.effort
+    }
+
     /// The straight runs among the beads.
     pub(super) fn lines(&self) -> &[Line] {
         &self.lines
@@ -108,6 +117,11 @@ impl Trace {
     /// Beads in one lap of a closed trace, 0 for an open one.
     pub(super) fn lap(&self) -> usize {
         if self.closed { self.beads.len() / 2 } else { 0 }
+    }
+
+    /// The beads of one lap of a closed trace, or of the whole of an open one.
+    pub(super) fn once(&self) -> &[Bead] {
+        &self.beads[..if self.closed { self.lap() } else { self.beads.len() }]
     }
 
     pub(super) fn closed(&self) -> bool {
@@ -151,8 +165,6 @@ fn pieces(span: Span, tolerance: f64) -> u32 {
 
 /// How much the band narrows, in excesses.
 const NARROWING: f64 = 2.0;
-/// Longest group of points of which only the outermost become beads, in tolerances.
-const GROUP: f64 = 5.0;
 /// Longest stretch between two points of the trace, in tolerances.
 const LONGEST: f64 = 10.0;
 /// Most points put on one span.
@@ -175,23 +187,67 @@ fn strung(points: &[Point], closed: bool, bands: Vec<(usize, f64)>) -> Vec<Bead>
 }
 
 /// The points that bound a path from either side: of every group no longer than `reach` mm the two that lie furthest to the
-/// left and to the right of its chord; and the ends.
+/// left and to the right of the bend that the trace has there, and the trace's ends.
 fn outermost(points: &[Point], reach: f64) -> Vec<usize> {
-    let last = points.len() - 1;
+    let groups = groups(points, reach);
+    let means: Vec<Point> = groups.iter().map(|group| mean(&points[group.clone()])).collect();
     let mut kept = vec![0];
-    let mut first = 1;
-    while first < last {
-        let from = points[first];
-        let long = |p: &Point| p.distance_squared(from) > reach * reach;
-        let end = points[first..last].iter().position(long).map_or(last, |k| first + k);
-        let chord = points[end] - points[first - 1];
-        let side = |i: &usize| chord.cross(points[*i] - from);
-        let left = (first..end).max_by(|a, b| side(a).total_cmp(&side(b)));
-        let right = (first..end).min_by(|a, b| side(a).total_cmp(&side(b)));
+    for (i, group) in groups.iter().enumerate() {
+        let (before, here, after) =
+            (means[i.saturating_sub(1)], means[i], means[(i + 1).min(means.len() - 1)]);
+        let bend = Bend::through(before, here, after);
+        let sides = group.clone().map(|k| (k, bend.side(points[k])));
+        let left = sides.clone().max_by(|a, b| a.1.total_cmp(&b.1)).map(|s| s.0);
+        let right = sides.min_by(|a, b| a.1.total_cmp(&b.1)).map(|s| s.0);
         kept.extend(left.min(right));
-        kept.extend(left.max(right).filter(|_| left != right));
+        kept.extend(left.max(right));
+    }
+    kept.push(points.len() - 1);
+    kept.dedup();
+    kept
+}
+
+/// The points in groups, in order; no point of a group is further than `reach` mm from its first.
+fn groups(points: &[Point], reach: f64) -> Vec<Range<usize>> {
+    let mut groups = Vec::new();
+    let mut first = 0;
+    while first < points.len() {
+        let far = |p: &Point| p.distance_squared(points[first]) > reach * reach;
+        let end = points[first..].iter().position(far).map_or(points.len(), |k| first + k);
+        groups.push(first..end);
         first = end;
     }
-    kept.extend((last > 0).then_some(last));
-    kept
+    groups
+}
+
+fn mean(points: &[Point]) -> Point {
+    (points.iter().map(|p| p.to_vec2()).sum::<Vec2>() / points.len() as f64).to_point()
+}
+
+/// A parabola for a short stretch of the trace.
+struct Bend {
+    at: Point,
+    along: Vec2,
+    /// In 1/mm.
+    curvature: f64,
+}
+
+impl Bend {
+    fn through(before: Point, at: Point, after: Point) -> Self {
+        let (to, on) = (at - before, after - at);
+        let chord = after - before;
+        let length = chord.hypot();
+        if length == 0.0 {
+            return Self { at, along: Vec2::ZERO, curvature: 0.0 };
+        }
+        let curvature = 2.0 * to.cross(on) / (to.hypot() * on.hypot() * length);
+        Self { at, along: chord / length, curvature: if curvature.is_finite() { curvature } else { 0.0 } }
+    }
+
+    /// How far to the left of the parabola a point lies.
+    fn side(&self, p: Point) -> f64 {
+        let d = p - self.at;
+        let u = self.along.dot(d);
+        self.along.cross(d) - self.curvature * u * u / 2.0
+    }
 }

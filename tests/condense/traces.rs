@@ -3,7 +3,7 @@
 use std::path::Path;
 
 use ribband::condense::condense;
-use ribband::fit::fit;
+use ribband::fit::{Pace, fit};
 use ribband::gcode::{Dialect, Program, interpret, read};
 use ribband::geom::{ArcSpline, frechet};
 use ribband::machine::Machine;
@@ -77,7 +77,7 @@ fn condensed_traces_stay_within_tolerance_and_come_near_the_fewest() {
             assert!(deviation.mm <= tolerance.mm() * 1.05, "{name}: {deviation:?} of {tolerance:?}");
         }
         let left = tolerance.less(0.0015).expect("above zero");
-        let best: usize = paths.iter().map(|path| fit(path, left).path.len()).sum();
+        let best: usize = paths.iter().map(|path| fit(path, left, Pace::Thorough).path.len()).sum();
         let got = new.iter().map(|(_, path)| path.len()).sum::<usize>() as f64 / 3.0;
         let most = (1.1 * best as f64).max(best as f64 + 2.0 * paths.len() as f64);
         assert!(got <= most, "{name}: {got} spans, and {best} from the drawing");

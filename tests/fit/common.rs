@@ -13,7 +13,7 @@ pub(crate) fn tolerance(mm: f64) -> Tolerance {
 }
 
 pub(crate) fn fitted(contour: &ArcSpline, mm: f64) -> Fitted {
-    fit(contour, tolerance(mm))
+    fit(contour, tolerance(mm), Pace::Thorough)
 }
 
 /// Spans plus corners.

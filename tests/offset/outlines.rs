@@ -9,7 +9,7 @@ use geo::{Area, Buffer as _, CoordsIter, MultiPolygon};
 use kurbo::{Point, Vec2};
 use proptest::prelude::*;
 use rayon::prelude::*;
-use ribband::fit::fit;
+use ribband::fit::{Pace, fit};
 use ribband::geom::{ArcSpline, Span, SpanIndex};
 use ribband::num::Tolerance;
 use ribband::offset::{Corners, Side, compensate};
@@ -155,7 +155,7 @@ fn as_drawn(path: ArcSpline, _: Tolerance) -> ArcSpline {
 }
 
 fn as_fitted(path: ArcSpline, tolerance: Tolerance) -> ArcSpline {
-    fit(&path, tolerance).path
+    fit(&path, tolerance, Pace::Thorough).path
 }
 
 /// All eight ways of cutting.

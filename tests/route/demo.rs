@@ -3,7 +3,7 @@
 use std::fs;
 use std::path::Path;
 
-use ribband::fit::fit;
+use ribband::fit::{Pace, fit};
 use ribband::num::Tolerance;
 use ribband::read::{Scale, read};
 use ribband::route::{
@@ -25,7 +25,7 @@ fn cut_out(name: &str, tabs: usize) -> (Sided, Routing) {
     let cut = Cut { side: Side::Outside, depth_mm, pass_mm: 3.0, tabs, entry: Entry::Ramp, ..cut() };
     let outline = |contour: &ribband::sketch::Contour| Outline {
         id: contour.id,
-        path: fit(&contour.path, tolerance).path,
+        path: fit(&contour.path, tolerance, Pace::Thorough).path,
         cut: cut.clone(),
     };
     let outlines: Vec<Outline> = sketch.contours.iter().map(outline).collect();
