@@ -1,7 +1,7 @@
 //! Curves to fit, and a reading of the result that shares nothing with the fitter.
 
 use kurbo::Point;
-use ribband::fit::{Fitted, fit};
+use ribband::fit::{Fitted, Pace, fit};
 use ribband::geom::ArcSpline;
 use ribband::num::Tolerance;
 
