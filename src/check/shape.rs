@@ -6,7 +6,7 @@ use super::Asked;
 use super::claim::{Claim, Spot, State, Worst};
 use super::cuts::{Cuts, Pass};
 use super::place::Drawn;
-use crate::geom::{Along, ArcSpline, SpanIndex, Vertex, frechet_within};
+use crate::geom::{Along, ArcSpline, Span, SpanIndex, Vertex, frechet_within};
 use crate::machine::Machine;
 use crate::num::Deviation;
 
@@ -75,8 +75,10 @@ struct Comparison {
     targets: Vec<Target>,
     /// The targets in the order of the left sides of their boxes.
     by_left: Vec<usize>,
-    /// The spans of all targets; built when a cut does not follow a single contour.
+    /// The spans of all targets; built when a cut is off the drawing, or there are many to look at.
     index: Option<SpanIndex>,
+    /// How many more spans may be looked at one by one before that.
+    patience: usize,
     stray: Worst,
     worst: Option<(Deviation, Spot)>,
 }
@@ -93,7 +95,9 @@ impl Comparison {
         by_left.sort_by(|&a, &b| targets[a].bbox.x0.total_cmp(&targets[b].bbox.x0));
         let allowed = asked.tolerance.mm();
         let tolerance = (allowed - unsure).max(allowed / 2.0);
-        Self { tolerance, unsure, targets, by_left, index: None, stray: Worst::none(), worst: None }
+        let patience = LOOKS * targets.iter().map(|target| target.path.len()).sum::<usize>();
+        let stray = Worst::none();
+        Self { tolerance, unsure, targets, by_left, index: None, patience, stray, worst: None }
     }
 
     /// Compares one pass with the contours whose boxes it fits; true when it follows one.
@@ -187,12 +191,28 @@ impl Comparison {
     }
 
     fn note_stray(&mut self, m: &crate::toolpath::Move) {
-        let targets = &self.targets;
-        let index = self
-            .index
-            .get_or_insert_with(|| SpanIndex::new(targets.iter().flat_map(|target| target.path.spans())));
-        let (distance, at) = index.farthest(&m.span(), self.tolerance);
+        let span = m.span();
+        let near = self.near(span.bbox().inflate(self.tolerance, self.tolerance));
+        let (mut distance, mut at) = SpanIndex::new(near).farthest(&span, self.tolerance);
+        if distance > self.tolerance {
+            let targets = &self.targets;
+            let all = || SpanIndex::new(targets.iter().flat_map(|target| target.path.spans()));
+            (distance, at) = self.index.get_or_insert_with(all).farthest(&span, self.tolerance);
+        }
         self.stray.note(distance, || Spot::on(m, at));
+    }
+
+    /// The spans of the drawing whose boxes meet `area`; none once the patience for looking is spent.
+    fn near(&mut self, area: Rect) -> Vec<Span> {
+        let mut near = Vec::new();
+        for target in self.targets.iter().filter(|target| meet(target.bbox, area)) {
+            if self.patience < target.path.len() {
+                return Vec::new();
+            }
+            self.patience -= target.path.len();
+            near.extend(target.path.spans().filter(|span| meet(span.bbox(), area)));
+        }
+        near
     }
 
     fn conclude(mut self, machine: &Machine, asked: &Asked) -> Shape {
@@ -282,6 +302,13 @@ fn first_laps(chain: &ArcSpline, gap: f64) -> Vec<ArcSpline> {
     let closing = |k: usize| Vertex { at: vertices[k].at, bulge: 0.0 };
     let lap = |k: usize| vertices[..k].iter().copied().chain([closing(k)]).collect();
     returns.map(|k| ArcSpline { vertices: lap(k), closed: true }).collect()
+}
+
+/// How often every span of the drawing may be looked at before an index of them is worth its making.
+const LOOKS: usize = 8;
+
+fn meet(a: Rect, b: Rect) -> bool {
+    a.x0 <= b.x1 && b.x0 <= a.x1 && a.y0 <= b.y1 && b.y0 <= a.y1
 }
 
 /// How far the sides of two boxes are apart at most: chains within a distance of each other differ by no more.

@@ -116,18 +116,25 @@ fn polyline_distance(path: &Chords, contour: &Chords, enough: f64) -> Bound {
         match (path.closed, contour.closed) {
             (false, false) => open_bound(&p, &q, enough),
             (true, true) => closed_bound(&p, &q, enough),
-            (true, false) => nearest_opening(&p, q[0], |p| open_bound(p, &q, enough)),
-            (false, true) => nearest_opening(&q, p[0], |q| open_bound(&p, q, enough)),
+            (true, false) => nearest_opening(&p, q[0], enough, |p| open_bound(p, &q, enough)),
+            (false, true) => nearest_opening(&q, p[0], enough, |q| open_bound(&p, q, enough)),
         }
     };
     let bound = in_direction(directions.against);
     if bound.mm <= directions.other { bound } else { bound.least(in_direction(!directions.against)) }
 }
 
-/// The least of the bounds for a lap opened beside `start`.
-fn nearest_opening(lap: &[Point], start: Point, bound: impl Fn(&[Point]) -> Bound) -> Bound {
-    let bounds = openings(lap, start).map(|opening| bound(&opening.lap));
-    bounds.reduce(Bound::least).unwrap_or(Bound::none(start))
+/// The least of the bounds for a lap opened beside `start`; one of them that is enough will do, and none comes below the
+/// distance between the ends that it matches.
+fn nearest_opening(lap: &[Point], start: Point, enough: f64, bound: impl Fn(&[Point]) -> Bound) -> Bound {
+    let mut best = Bound::none(start);
+    for opening in openings(lap, start) {
+        if best.mm <= enough.max(opening.distance) {
+            break;
+        }
+        best = best.least(bound(&opening.lap));
+    }
+    best
 }
 
 /// In which direction to walk the contour first.
