@@ -113,21 +113,24 @@ fn least(trace: &Trace, contour: &ArcSpline, tolerance: Tolerance, search: fn(&T
             .map(|best| Found { best, searched: narrowed.patches == 0 || trace.effort().gives_up })
     };
     let found = SHARES.iter().find_map(search);
-    let corners_and_lines = 2 * simplify::lines_of(trace, tolerance);
-    if let Some(found) =
-        found.as_ref().filter(|f| WELL_BELOW * f.best.cost() as f64 <= corners_and_lines as f64)
-    {
+    let straight = 2 * simplify::lines_of(trace, tolerance);
+    let sure = |found: &&Found| {
+        let cost = found.best.cost();
+        cost <= contour.len() && WELL_BELOW * cost as f64 <= straight as f64
+    };
+    if let Some(found) = found.as_ref().filter(sure) {
         return found.clone();
     }
+    let searched = found.as_ref().is_some_and(|found| found.searched) && !trace.effort().gives_up;
     let best = |best: Fitted, other: Fitted| if other.cost() < best.cost() { other } else { best };
-    let others = [found.map(|f| f.best), held(simplify(contour, tolerance))].into_iter().flatten();
-    Found { best: others.fold(Fitted::as_drawn(contour), best), searched: false }
+    let others = [found.map(|found| found.best), held(simplify(contour, tolerance))].into_iter().flatten();
+    Found { best: others.fold(Fitted::as_drawn(contour), best), searched }
 }
 
 /// The shares of the tolerance that the search may use, tried in turn: what certifying the path costs is seldom more
 /// than the first leaves.
 const SHARES: [f64; 3] = [0.993, 0.97, 0.9];
-/// How many times a path must be cheaper than straight lines for them not to be looked at.
+/// How many times cheaper than straight lines from bead to bead a path must be for them not to be looked at closer.
 const WELL_BELOW: f64 = 1.3;
 /// The last place that programs are written to, in mm: a smaller break of tangent is not a corner.
 const LAST_PLACE: f64 = 0.001;
