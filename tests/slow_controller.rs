@@ -146,7 +146,8 @@ fn programs_of_chords_alone_starve_nowhere() {
 fn ours_starve_nowhere_and_take_half_the_time() {
     let mut cuts = cuts("old-controller", 1);
     assert!(cuts.len() >= 75, "{} traces", cuts.len());
-    assert!(cuts.iter().all(|cut| cut.arcs > 0), "arcs are written");
+    let straight: Vec<&str> = cuts.iter().filter(|cut| cut.arcs == 0).map(|cut| cut.id.as_str()).collect();
+    assert!(straight.is_empty(), "arcs are written for all but {straight:?}");
     let drawn: usize = cuts.iter().map(|cut| cut.drawn_starved).sum();
     assert!(drawn > 20_000, "as drawn {drawn} blocks starve");
     cuts.sort_by(|a, b| a.ratio.total_cmp(&b.ratio));

@@ -69,7 +69,9 @@ pub(super) fn run(toolpath: &Toolpath, limits: &Limits, mut tell: impl FnMut(Hap
             let run = stretch.run(speed, next);
             let speeds = [speed.sqrt(), run.peak.sqrt(), run.peak.sqrt(), next.sqrt()];
             let mut from = stretch.from;
-            for (part, &length) in run.lengths.iter().enumerate().filter(|(_, length)| **length > 0.0) {
+            // A part so short that its place cannot tell has speeds that differ by rounding only.
+            let least = 16.0 * f64::EPSILON * (stretch.from + stretch.length);
+            for (part, &length) in run.lengths.iter().enumerate().filter(|(_, length)| **length > least) {
                 let phase =
                     Phase { of: stretch.of, from, length, start: speeds[part], end: speeds[part + 1] };
                 now += phase.time();

@@ -17,17 +17,20 @@ pub fn fit_pinned(contour: &ArcSpline, tolerance: Tolerance) -> Fitted {
         return Fitted::as_drawn(contour);
     };
     let pinned = least(&trace, contour, tolerance, closing::pinned).best;
-    let best = fewer(moored(&free, contour, tolerance), pinned);
-    if best.path.len() <= free.len() + 1 {
-        return best;
-    }
+    let mut best = fewer(moored(&free, contour, tolerance), pinned);
     // A free path in a narrower band can be bent to the ends further.
-    let narrow = Tolerance::new(NARROWER * tolerance.mm()).and_then(|narrow| self::free(contour, narrow));
-    fewer(narrow.and_then(|free| moored(&free, contour, tolerance)), best)
+    for share in NARROWER {
+        if best.path.len() <= free.len() + 1 {
+            break;
+        }
+        let narrow = Tolerance::new(share * tolerance.mm()).and_then(|narrow| self::free(contour, narrow));
+        best = fewer(narrow.and_then(|free| moored(&free, contour, tolerance)), best);
+    }
+    best
 }
 
-/// The share of the band that a free path keeps to where it must be bent further.
-const NARROWER: f64 = 0.7;
+/// The shares of the band that a free path keeps to in turn where it must be bent further.
+const NARROWER: [f64; 3] = [0.95, 0.85, 0.7];
 /// Shares of the first span that are cut off where the contour's start is led on to the rest of it.
 const CUT_OFF: [f64; 3] = [0.5, 0.2, 0.05];
 

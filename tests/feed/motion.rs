@@ -94,6 +94,19 @@ proptest! {
     }
 }
 
+/// Found by the test above.
+#[test]
+fn tight_arcs_after_long_ones_keep_to_the_axes() {
+    let pieces = [(10.06095810256556, -0.24183094053078077), (3.0 / 0.6753682488126238, 0.6753682488126238)];
+    let pieces = [
+        &pieces[..],
+        &[(5.659069441245889, 0.11808085647068566), (3.0 / 0.63650103853946, 0.63650103853946)],
+    ];
+    let toolpath = cut(&tangent_chain(&pieces.concat()), 7180.303830090744);
+    let (speed, acceleration) = load(&toolpath, &Limits { queue: 2, ..uneven() });
+    assert!(speed <= 1.0 + 1e-9 && acceleration <= 1.0 + 1e-6, "{speed} {acceleration}");
+}
+
 /// The motion uses its limits fully: it is not merely slow.
 #[test]
 fn the_limits_are_used() {
