@@ -88,6 +88,11 @@ fn fitted(beads: &[Bead], first: usize, last: usize) -> Option<Line> {
 }
 
 impl Line {
+    /// The same run from bead `first` to bead `last`.
+    pub(super) fn between(self, first: usize, last: usize) -> Self {
+        Self { first, last, ..self }
+    }
+
     /// The curvature and length of the arc that leaves `state` and runs into the line; `None` where none does.
     ///
     /// The tangents of an arc at its ends meet at equal distances from them.

@@ -129,7 +129,7 @@ fn least(trace: &Trace, contour: &ArcSpline, tolerance: Tolerance, search: fn(&T
 
 /// The shares of the tolerance that the search may use, tried in turn: what certifying the path costs is seldom more
 /// than the first leaves.
-const SHARES: [f64; 3] = [0.993, 0.97, 0.9];
+const SHARES: [f64; 5] = [0.993, 0.97, 0.9, 0.8, 0.7];
 /// How many times cheaper than straight lines from bead to bead a path must be for them not to be looked at closer.
 const WELL_BELOW: f64 = 1.3;
 /// The last place that programs are written to, in mm: a smaller break of tangent is not a corner.

@@ -30,6 +30,9 @@ pub(super) struct Bead {
 pub(super) struct Trace {
     points: Rc<[Point]>,
     beads: Vec<Bead>,
+    /// The straight runs among the points.
+    runs: Rc<[Line]>,
+    /// The same among the beads.
     lines: Vec<Line>,
     closed: bool,
     tolerance: f64,
@@ -50,16 +53,24 @@ impl Trace {
         let beads =
             outermost(&points, effort.group * tolerance.mm()).into_iter().map(|i| (i, tolerance.mm()));
         let beads = strung(&points, contour.closed, beads.collect());
-        let lines = lines(&beads);
+        let all = (0..points.len()).map(|i| (i, tolerance.mm())).collect();
+        let runs: Rc<[Line]> = lines(&strung(&points, contour.closed, all)).into();
+        let lines = among(&runs, &beads);
         let (closed, tolerance) = (contour.closed, tolerance.mm());
-        Some(Self { points: points.into(), beads, lines, closed, tolerance, effort })
+        Some(Self { points: points.into(), beads, runs, lines, closed, tolerance, effort })
     }
 
     /// The same trace with a band of `share` of the tolerance.
     pub(super) fn narrowed(&self, share: f64) -> Self {
         let band = self.tolerance * share;
         let beads = self.beads.iter().map(|bead| Bead { band, ..*bead }).collect();
-        Self { beads, lines: self.lines.clone(), points: self.points.clone(), ..*self }
+        Self {
+            beads,
+            lines: self.lines.clone(),
+            runs: self.runs.clone(),
+            points: self.points.clone(),
+            ..*self
+        }
     }
 
     /// Holds the search off the places where it strayed: points that it missed become beads; where it missed none that was
@@ -86,7 +97,7 @@ impl Trace {
         bands.sort_by_key(|b| b.0);
         bands.dedup_by_key(|b| b.0);
         self.beads = strung(&self.points, self.closed, bands);
-        self.lines = lines(&self.beads);
+        self.lines = among(&self.runs, &self.beads);
     }
 
     /// The point of the given number, counted on from lap to lap.
@@ -169,6 +180,13 @@ const NARROWING: f64 = 2.0;
 const LONGEST: f64 = 10.0;
 /// Most points put on one span.
 const MOST_PIECES: f64 = 2000.0;
+
+/// Straight runs among all points as runs of beads.
+fn among(runs: &[Line], beads: &[Bead]) -> Vec<Line> {
+    let first = |run: &Line| beads.partition_point(|bead| bead.point < run.first);
+    let last = |run: &Line| beads.partition_point(|bead| bead.point <= run.last).saturating_sub(1);
+    runs.iter().map(|run| run.between(first(run), last(run))).collect()
+}
 
 /// The beads at the given points with their bands; of a closed trace two laps and the first bead again.
 fn strung(points: &[Point], closed: bool, bands: Vec<(usize, f64)>) -> Vec<Bead> {

@@ -64,6 +64,8 @@ fn bounded(path: &ArcSpline, contour: &ArcSpline, limit: f64) -> Deviation {
         let enough = enough.max(limit - spent - rounding);
         let flat = polyline_distance(&p, &q, enough);
         let mm = if flat.mm + spent == 0.0 { 0.0 } else { flat.mm + spent + rounding };
+        // What was settled to be below the limit is, whatever the last place of the sum.
+        let mm = if flat.mm <= limit - spent - rounding { mm.min(limit) } else { mm };
         if flat.mm >= enough || sagitta <= least || mm <= limit {
             return Deviation { mm, at: flat.at, certified: true };
         }
