@@ -25,7 +25,8 @@ const SHARES: [f64; 9] = [0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9];
 
 /// The path of least cost around a closed trace.
 pub(super) fn closed(trace: &Trace) -> Run {
-    let laps = starts_on_a_run(trace).into_iter().filter_map(|start| lap_from(trace, start));
+    let (starts, wanted) = starts_on_a_run(trace);
+    let laps = starts.into_iter().filter_map(|start| lap_from(trace, start)).take(wanted);
     let best = laps.reduce(|best, other| if other.0 < best.0 { other } else { best });
     best.map_or_else(|| Run::straight(trace.beads(), 0, trace.lap()), |(_, run)| run)
 }
@@ -85,9 +86,10 @@ struct Start {
     corner: bool,
 }
 
-/// Joints of a run that has warmed up: the corner nearest to its middle where it has one, else the end of a line, then
-/// the middle joint, and where the run comes all the way round, others at a distance from it.
-fn starts_on_a_run(trace: &Trace) -> Vec<Start> {
+/// Joints of a run that has warmed up, and how many laps are wanted from them: the corner nearest to its middle where it has
+/// one, else the end of a line, then the middle joint and others at a distance from it. More than one lap is wanted where the
+/// run comes all the way round; the other joints are for where a lap from the first does not close.
+fn starts_on_a_run(trace: &Trace) -> (Vec<Start>, usize) {
     let mut beam = Beam::new(trace.beads(), trace.lines(), trace.effort().warming_up(), starts(trace, 0));
     for _ in 0..WARM_UP {
         if !beam.step() || furthest(&beam).is_some_and(|id| beam.states[id].bead + 1 >= trace.beads().len()) {
@@ -106,13 +108,13 @@ fn starts_on_a_run(trace: &Trace) -> Vec<Start> {
     let mut joints: Vec<usize> = corner.or(line).into_iter().chain(others).collect();
     joints.dedup();
     joints.retain(|&k| k < chain.len());
-    joints.truncate(if comes_round { trace.effort().tries } else { 1 });
+    let wanted = if comes_round { trace.effort().tries } else { 1 };
     let start = |k: usize| {
         let mut state = beam.states[chain[k]];
         state.bead %= trace.lap();
         Start { state, corner: is_corner(k) }
     };
-    joints.into_iter().map(start).collect()
+    (joints.into_iter().map(start).collect(), wanted)
 }
 
 /// The state of the last level that has come furthest.
