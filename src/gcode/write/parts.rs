@@ -27,7 +27,7 @@ pub struct Part {
 /// at a retract, or at a [`lift`](super::lift()).
 ///
 /// # Errors
-/// Those of [`write()`]; and [`Kind::Refused`] when what lies between two retracts is longer than the memory.
+/// Those of [`write`](super::write()); and [`Kind::Refused`] when what lies between two retracts is longer than the memory.
 pub fn write_parts(toolpath: &Toolpath, header: &Header, machine: &Machine) -> Result<Vec<Part>, Error> {
     let Written { text: whole, lines } = write_lines(toolpath, header, machine)?;
     let memory = machine.controller.memory_bytes.map_or(usize::MAX, |bytes| bytes as usize);
